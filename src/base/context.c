@@ -1,0 +1,129 @@
+/* See context.h and picket/context.h. */
+#include "base/context.h"
+
+#include <stdarg.h>
+#include <stdio.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include "base/context_private.h"
+#include "base/memory.h"
+
+void picket_context_options_init(picket_context_options *options) {
+  if (!options) {
+    return;
+  }
+  memset(options, 0, sizeof *options);
+  options->size = sizeof *options;
+  options->log_level = PICKET_LOG_INFO;
+}
+
+static void *allocate_first(const picket_context_options *options, size_t bytes) {
+  return options->allocate ? options->allocate(bytes, options->memory_user) : malloc(bytes);
+}
+
+picket_status picket_context_create(const picket_context_options *options, picket_context **out) {
+  picket_context_options defaults;
+  picket_context_options_init(&defaults);
+  if (!options) {
+    options = &defaults;
+  }
+  if (!out || options->size != sizeof *options || !options->allocate != !options->release) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  picket_context *context = allocate_first(options, sizeof *context);
+  if (!context) {
+    return PICKET_ERROR_MEMORY;
+  }
+  memset(context, 0, sizeof *context);
+  context->options = *options;
+  atomic_init(&context->holds, 1);
+  atomic_flag_clear(&context->busy);
+  *out = context;
+  return PICKET_OK;
+}
+
+picket_context *pk_context_hold(picket_context *context) {
+  atomic_fetch_add(&context->holds, 1);
+  return context;
+}
+
+void pk_context_release(picket_context *context) {
+  if (context && atomic_fetch_sub(&context->holds, 1) == 1) {
+    pk_free(context, context);
+  }
+}
+
+void picket_context_free(picket_context *context) {
+  pk_context_release(context);
+}
+
+const char *picket_context_message(const picket_context *context) {
+  return context ? context->message : "";
+}
+
+bool pk_context_enter(picket_context *context) {
+  return !atomic_flag_test_and_set(&context->busy);
+}
+
+void pk_context_leave(picket_context *context) {
+  atomic_flag_clear(&context->busy);
+}
+
+void pk_message_clear(picket_context *context) {
+  context->message[0] = '\0';
+}
+
+picket_status pk_fail(picket_context *context, picket_status status, const char *format, ...) {
+  va_list arguments;
+  va_start(arguments, format);
+  vsnprintf(context->message, sizeof context->message, format, arguments);
+  va_end(arguments);
+  return status;
+}
+
+picket_status pk_fail_at(picket_context *context, picket_status status, pk_place place,
+                         const char *format, ...) {
+  int used = 0;
+  if (place.file && place.line > 0) {
+    used = snprintf(context->message, sizeof context->message, "%s:%d:%d: ", place.file,
+                    place.line, place.column);
+  } else if (place.file) {
+    used = snprintf(context->message, sizeof context->message, "%s: ", place.file);
+  }
+  if (used < 0 || (size_t)used >= sizeof context->message) {
+    used = 0;
+  }
+  va_list arguments;
+  va_start(arguments, format);
+  vsnprintf(context->message + used, sizeof context->message - (size_t)used, format, arguments);
+  va_end(arguments);
+  return status;
+}
+
+bool pk_log_wanted(const picket_context *context, picket_log_level level) {
+  return context->options.log && level <= context->options.log_level;
+}
+
+void pk_log(picket_context *context, picket_log_level level, const char *format, ...) {
+  if (!pk_log_wanted(context, level)) {
+    return;
+  }
+  char line[PK_MESSAGE_CAPACITY];
+  va_list arguments;
+  va_start(arguments, format);
+  vsnprintf(line, sizeof line, format, arguments);
+  va_end(arguments);
+  context->options.log(level, line, context->options.log_user);
+}
+
+picket_status pk_progress(picket_context *context, const char *phase, double fraction) {
+  if (!context->options.progress) {
+    return PICKET_OK;
+  }
+  picket_progress progress = {phase, fraction};
+  if (context->options.progress(&progress, context->options.progress_user) == PICKET_CONTINUE) {
+    return PICKET_OK;
+  }
+  return pk_fail(context, PICKET_ERROR_STOPPED, "stopped on request during: %s", phase);
+}

@@ -1,0 +1,111 @@
+/* Shapes painted over each other in a plane, and exact questions about them.
+ *
+ * The plane has axes u and v: (z, x) for a cell, (x, y) for a section. Later shapes cover earlier
+ * ones; where nothing is painted there is the background. In a periodic direction a shape may lie
+ * across the boundary: it wraps. Crossing the v boundary of a doubly periodic plane can advance u
+ * by a shift (rhombic and triangular lattices).
+ *
+ * Every boundary is a chain of straight edges and circular arcs. Areas and interface normals of a
+ * box come from an exact sweep: the box is cut into strips at every vertex, crossing and extreme;
+ * inside a strip the order of the curves is fixed, so each piece has a closed form. */
+#ifndef PK_GEOMETRY_GEOMETRY_H
+#define PK_GEOMETRY_GEOMETRY_H
+
+#include <stdbool.h>
+
+#include "base/context.h"
+
+enum { PK_BOX_MEDIA = 8 }; /* distinct media that one averaging box may hold */
+
+typedef enum pk_axis_name { PK_U = 0, PK_V = 1 } pk_axis_name;
+
+typedef struct pk_geometry pk_geometry;
+
+/* The plane in which shapes are painted. Media are small integers given by the caller. */
+typedef struct pk_frame {
+  double from[2], to[2]; /* extent along u and v, µm; from < to; INFINITE v extent is allowed for
+                            an open side (-INFINITY, INFINITY) */
+  bool periodic[2];
+  double shift;          /* crossing the v boundary upwards advances u by this length, µm; only if
+                            both directions are periodic */
+  int background;        /* medium where nothing is painted */
+} pk_frame;
+
+picket_status pk_geometry_create(picket_context *context, const pk_frame *frame, pk_geometry **out);
+void pk_geometry_free(pk_geometry *geometry); /* accepts null */
+
+/* Painting. Lengths in µm; `at` is the centre (u, v). Sizes must be above 0 (PICKET_ERROR_INPUT at
+ * `place` otherwise). A shape that lies wholly outside the frame, or is longer than the period in a
+ * periodic direction, is PICKET_ERROR_INPUT. */
+picket_status pk_geometry_add_rect(pk_geometry *geometry, pk_place place, int medium,
+                                   const double at[2], const double size[2]);
+picket_status pk_geometry_add_disc(pk_geometry *geometry, pk_place place, int medium,
+                                   const double at[2], double diameter);
+/* corners [count][2] in either sense of rotation, 3 to 1000, not self-crossing, area above 0. */
+picket_status pk_geometry_add_polygon(pk_geometry *geometry, pk_place place, int medium, int count,
+                                      const double (*corners)[2]);
+/* Fills a range of one axis over the whole other axis; ±INFINITY allowed, from < to. */
+picket_status pk_geometry_add_stripe(pk_geometry *geometry, pk_place place, int medium,
+                                     pk_axis_name across, double from, double to);
+
+int pk_geometry_shape_count(const pk_geometry *geometry);
+const pk_frame *pk_geometry_frame(const pk_geometry *geometry);
+
+/* The medium at a point (wrapped into the frame in periodic directions). */
+int pk_geometry_medium_at(const pk_geometry *geometry, double u, double v);
+
+/* What an axis-parallel box holds: area fractions that add up to 1, and the interface.
+ * `normal` is the sum over the interface pieces inside the box of (length × unit normal), each
+ * normal pointing to the side of the larger medium number of the pair ordered by `rank`, divided by
+ * the box area: a zero vector when the box holds one medium. `curved` is true if any interface
+ * piece in the box is not parallel to an axis. */
+typedef struct pk_box {
+  int count;                     /* media present with a fraction above 1e-13 */
+  int medium[PK_BOX_MEDIA];
+  double fraction[PK_BOX_MEDIA];
+  double normal[2];
+  bool oblique;                  /* an interface that is not parallel to an axis */
+} pk_box;
+
+/* Contents of the box from `low` to `high`. The box may reach outside the frame: in a periodic
+ * direction it wraps, elsewhere the outside is what the paint continues to (stripes and background
+ * extend; finite shapes end where they end). Coordinates closer than 1e-9 of the frame's u extent
+ * to an axis-parallel interface are taken to lie on it.
+ * PICKET_ERROR_UNSUPPORTED for more than PK_BOX_MEDIA media in one box. */
+picket_status pk_geometry_box(const pk_geometry *geometry, const double low[2],
+                              const double high[2], pk_box *box);
+
+/* The coordinates a grid should have lines on: of every visible axis-parallel edge, the extremes of
+ * discs and oblique shapes are not included. Sorted, unique to 1e-9 of the u extent, inside the open
+ * interval of the frame (frame boundaries are not included). In *out, owned by the caller
+ * (pk_free). Shapes that wrap contribute their wrapped coordinates. */
+picket_status pk_geometry_lines(const pk_geometry *geometry, pk_axis_name axis, double **out,
+                                int *count);
+
+/* The extremes (lowest and highest coordinate) over all finite shapes and finite stripe edges of an
+ * axis: the extent of the structure. False if there is nothing finite. */
+bool pk_geometry_extent(const pk_geometry *geometry, pk_axis_name axis, double *low, double *high);
+
+/* The shortest distance between neighbouring interfaces met along lines parallel to the axes through the
+ * shapes (teeth and gaps), µm; INFINITY if none. For advice and for the base grid. */
+double pk_geometry_smallest_feature(const pk_geometry *geometry);
+
+/* True if reflecting the painted plane about the line axis = centre maps every medium onto itself.
+ * Candidates for `centre` are tried: 0, the middle of the frame, and the middles between lines.
+ * Periodic directions are compared modulo the period. Exact comparison to 1e-9 of the u extent. */
+bool pk_geometry_mirror(const pk_geometry *geometry, pk_axis_name axis, double *centre);
+
+/* True if no visible interface is oblique or curved. */
+bool pk_geometry_is_rectangular(const pk_geometry *geometry);
+
+/* True if there is a point where visible interfaces meet or bend (a corner): three or more media
+ * sectors, or an interface that turns. */
+bool pk_geometry_has_corners(const pk_geometry *geometry);
+
+/* The fraction of each medium along the line v = constant over one period of u, as a profile of
+ * intervals: boundaries[0..count], media[0..count-1]; rising u from frame.from to frame.to, merged
+ * where neighbours are equal. Capacity is in intervals; PICKET_ERROR_UNSUPPORTED if it is too small. */
+picket_status pk_geometry_profile(const pk_geometry *geometry, double v, int capacity,
+                                  double *boundaries, int *media, int *count);
+
+#endif
