@@ -1,0 +1,23 @@
+/* See problem.h. */
+#include "study/problem.h"
+
+#include "base/memory.h"
+
+void pk_problem_free(pk_problem *problem) {
+  if (!problem) {
+    return;
+  }
+  picket_context *context = problem->context;
+  pk_free(context, problem->name);
+  pk_free(context, problem->light.wavelength_um);
+  pk_materials_free(problem->materials);
+  pk_geometry_free(problem->cell.geometry);
+  for (int i = 0; problem->path.point && i < problem->path.count; i++) {
+    pk_free(context, problem->path.point[i].label);
+  }
+  pk_free(context, problem->path.point);
+  pk_free(context, (void *)problem->slab.recipe.film_material);
+  pk_free(context, (void *)problem->slab.recipe.film_thickness_um);
+  pk_free(context, problem);
+  pk_context_release(context);
+}

@@ -1,0 +1,57 @@
+/* A problem as it was understood: what a file (or a program) says, checked, in the units of the
+ * library (µm, °C), ready for the studies. Made by io from a document; read-only afterwards. */
+#ifndef PK_STUDY_PROBLEM_H
+#define PK_STUDY_PROBLEM_H
+
+#include <stdbool.h>
+
+#include "base/context.h"
+#include "geometry/cell.h"
+#include "material/material.h"
+
+typedef enum pk_polarization { PK_EY, PK_HY } pk_polarization;
+
+typedef struct pk_light {
+  bool given;
+  pk_place place;
+  int count;            /* wavelengths, rising */
+  double *wavelength_um;
+  bool wanted[2];       /* [PK_EY], [PK_HY] */
+} pk_light;
+
+typedef struct pk_path_point {
+  double at[2]; /* k_z in π/pitch, k_x in π/lateral span */
+  char *label;  /* or null */
+} pk_path_point;
+
+typedef struct pk_path {
+  bool given;
+  int count;
+  pk_path_point *point;
+} pk_path;
+
+typedef struct pk_slab_block {
+  bool given;
+  pk_place place;
+  pk_slab_recipe recipe;  /* arrays owned by the block; `order` unused */
+  bool wanted[2];         /* [PK_SLAB_TE], [PK_SLAB_TM] */
+} pk_slab_block;
+
+typedef struct pk_problem {
+  picket_context *context; /* held */
+  char *name;              /* "" if not given */
+  double temperature_c;
+  pk_light light;
+  pk_materials *materials;
+  bool has_cell;
+  pk_place cell_place;
+  pk_cell cell;
+  double smallest_um; /* of the shapes in the file, for advice */
+  pk_path path;
+  pk_slab_block slab;
+} pk_problem;
+
+/* Accepts null and half-built problems. */
+void pk_problem_free(pk_problem *problem);
+
+#endif
