@@ -54,16 +54,15 @@ const pk_frame *pk_geometry_frame(const pk_geometry *geometry);
 /* The medium at a point (wrapped into the frame in periodic directions). */
 int pk_geometry_medium_at(const pk_geometry *geometry, double u, double v);
 
-/* What an axis-parallel box holds: area fractions that add up to 1, and the interface.
- * `normal` is the sum over the interface pieces inside the box of (length × unit normal), each
- * normal pointing to the side of the larger medium number of the pair ordered by `rank`, divided by
- * the box area: a zero vector when the box holds one medium. `curved` is true if any interface
- * piece in the box is not parallel to an axis. */
+/* What an axis-parallel box holds: area fractions that add up to 1, and how its interface lies.
+ * `facing` is the mean of n nᵀ over all interface pieces inside the box (between different media,
+ * weighted by length, n the unit normal): entries uu, uv, vv, with uu + vv = 1; all zero when the
+ * box holds one medium. It has no sign, so thin films and several media need no convention. */
 typedef struct pk_box {
   int count;                     /* media present with a fraction above 1e-13 */
   int medium[PK_BOX_MEDIA];
   double fraction[PK_BOX_MEDIA];
-  double normal[2];
+  double facing[3];
   bool oblique;                  /* an interface that is not parallel to an axis */
 } pk_box;
 

@@ -8,8 +8,7 @@
 #include "base/context.h"
 #include "geometry/cell.h"
 #include "material/material.h"
-
-typedef enum pk_polarization { PK_EY, PK_HY } pk_polarization;
+#include "operator/operator.h"
 
 typedef struct pk_light {
   bool given;
