@@ -22,13 +22,13 @@ heading() {
   printf '\n== %s\n' "$*"
 }
 
-# build <preset> <folder> [-DNAME=VALUE ...]
+# build <preset> <folder>
 build() {
   preset=$1
   folder=$2
-  shift 2
   heading "$preset: build"
-  sh tests/setup/configure.sh "$preset" -DPICKET_TESTS=ON -DPICKET_WERROR=ON "$@" >"$logs/$preset.configure" 2>&1 || {
+  sh tests/setup/configure.sh "$preset" -DPICKET_TESTS=ON -DPICKET_WERROR=ON \
+    >"$logs/$preset.configure" 2>&1 || {
     cat "$logs/$preset.configure"
     problem "$preset does not configure"
     return 1
@@ -42,13 +42,16 @@ build() {
   }
 }
 
-# run_tests <preset> [ctest arguments]; counts what ctest itself reports.
+# run_tests <preset> <folder> [ctest arguments]; counts what ctest itself reports.
 run_tests() {
   preset=$1
-  shift
+  folder=$2
+  shift 2
   heading "$preset: tests"
-  { ctest --preset "$preset" --parallel "$jobs" "$@"; echo $? >"$logs/$preset.status"; } 2>&1 |
-    tee "$logs/$preset.tests"
+  {
+    ctest --test-dir "$folder" --parallel "$jobs" --output-on-failure --no-tests=error "$@"
+    echo $? >"$logs/$preset.status"
+  } 2>&1 | tee "$logs/$preset.tests"
   # ctest: "97% tests passed, 2 tests failed out of 61"
   counts=$(sed -n 's/^[0-9]*% tests passed, \([0-9]*\) tests\{0,1\} failed out of \([0-9]*\).*/\1 \2/p' \
     "$logs/$preset.tests" | tail -n 1)
@@ -85,16 +88,17 @@ mkdir -p "$logs"
 : >"$logs/made-by.txt"
 
 if build release build; then
-  run_tests release
+  run_tests release build
 fi
 build clang build/clang
 # The repository's own tests look at the same files in every build: once is enough.
+quick='^(slow|repo)$'
 if build asan build/asan; then
-  run_tests asan --label-exclude '^(slow|repo)$'
+  run_tests asan build/asan --label-exclude "$quick"
 fi
 if build coverage build/coverage; then
   find build/coverage -name '*.gcda' -exec rm -f {} +
-  run_tests coverage --label-exclude '^(slow|repo)$'
+  run_tests coverage build/coverage --label-exclude "$quick"
   coverage_summary
 fi
 

@@ -9,7 +9,7 @@ import unittest
 BUILD = pathlib.Path(os.environ.get('PICKET_BUILD_DIR', 'build'))
 # Sanitizers and coverage put names of their own into the library, and a program linked to it from
 # outside the build would need them too.
-PLAIN = (BUILD / 'libpicket.so').exists() and not os.environ.get('PICKET_SANITIZE')
+PLAIN = (BUILD / 'libpicket.so').exists() and not os.environ.get('PICKET_INSTRUMENTED')
 
 PROGRAM = '''
 #include <picket/context.h>
@@ -27,12 +27,12 @@ def _run(*command, **options):
 
 
 def _strangers(library):
-    """Exported names without the prefix, and how many have it. Those of the profiler and of the
-    loader begin with an underscore."""
+    """Exported names without the prefix, and how many have it. Those of the linker begin with an
+    underscore."""
     listed = _run('nm', '-D', '--defined-only', '--format=posix', str(library))
     names = [line.split()[0] for line in listed.stdout.splitlines()]
     ours = [name for name in names if name.startswith('picket_')]
-    return [n for n in names if n not in ours and not n.startswith(('_', 'gcov', 'mangle_path'))], len(ours)
+    return [n for n in names if n not in ours and not n.startswith('_')], len(ours)
 
 
 class ExportedNames(unittest.TestCase):
