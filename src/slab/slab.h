@@ -25,8 +25,8 @@ typedef struct pk_slab_film {
 } pk_slab_film;
 
 typedef struct pk_slab {
-  pk_slab_medium substrate; /* x below all films */
-  int film_count;           /* at least 1 */
+  pk_slab_medium substrate;  /* x below all films */
+  int film_count;            /* at least 1 */
   const pk_slab_film *films; /* from substrate to cover */
   pk_slab_medium cover;
 } pk_slab;
@@ -46,10 +46,27 @@ typedef struct pk_slab_mode {
  *   capacity       modes that fit in `modes`; more guided modes than that are counted, not stored
  *   count          receives the number of guided modes (0 is an outcome, not an error)
  * PICKET_ERROR_NUMERIC if a lossy mode cannot be followed, PICKET_ERROR_UNSUPPORTED for a metal
- * film (Re ε <= 0). */
+ * film or surrounding (Re ε <= 0). */
 picket_status pk_slab_modes(picket_context *context, const pk_slab *slab,
                             pk_slab_polarization polarization, double wavelength_um, int capacity,
                             pk_slab_mode *modes, int *count);
+
+/* What one medium does to a mode: the change of n² per change of each entry of its permittivity. By
+ * the stationary functional these are shares of the field's energy, exact to first order, so any
+ * small change of the media (heat, absorption, a tuned index) moves n² by the sum of pull times
+ * change. */
+typedef struct pk_slab_pull {
+  double complex normal, across, along;
+} pk_slab_pull;
+
+/* The one mode of an order, 0 or more.
+ *   mode    receives it
+ *   pulls   null, or receives film_count + 2 entries: substrate, films, cover
+ *   count   null, or receives the number of guided modes of the lossless twin
+ * PICKET_ERROR_NO_MODE if the order is cut off (`count` is then filled all the same). */
+picket_status pk_slab_mode_of_order(picket_context *context, const pk_slab *slab,
+                                    pk_slab_polarization polarization, double wavelength_um,
+                                    int order, pk_slab_mode *mode, pk_slab_pull *pulls, int *count);
 
 /* An isotropic medium. */
 pk_slab_medium pk_slab_isotropic(double complex permittivity, double complex slope);
