@@ -76,6 +76,7 @@ BAD_FILES = (
 GOOD_FILES = (
     ('memory by another name', 'src/io/x.c', 'void f(o *p) { p->free(p); pk_free(p); p->x.free(p); }\n'),
     ('forbidden words in comments and texts', 'src/io/x.c', '/* printf( */ // exit(\nchar *s = "free(p)";\n'),
+    ('a name that ends like a Fortran routine', 'src/io/x.c', 'void f(o *p) { int complex_ = p->real_(2); }\n'),
     ('printing into a text', 'src/io/x.c', 'void f(char *s) { snprintf(s, 1, "x"); }\n'),
     ('an earlier room', 'src/api/x.c', '#include "io/x.h"\n#include <math.h>\n#include <picket/status.h>\n'),
     ('a tool that prints and allocates', 'src/cli/x.c', 'void f(void) { printf("x"); exit(free(malloc(1))); }\n'),

@@ -142,7 +142,7 @@ def _angle_fault(root, room, name):
 def _check_walls(where, text, users):
     inside = where[len('src/'):] if where.startswith('src/') else where
     headers = [(line, name) for line, _, name in c_source.includes(text)]
-    called = [(line, word) for line, word, _ in c_source.words(text)]
+    called = [(line, word) for line, word, rest in c_source.words(text) if rest.startswith('(')]
     found = []
     for wall in WALLS:
         lines = [line for line, name in headers if wall.headers.fullmatch(name)]
