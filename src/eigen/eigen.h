@@ -8,6 +8,7 @@
 #define PK_EIGEN_EIGEN_H
 
 #include <complex.h>
+#include <stdbool.h>
 #include <stdint.h>
 
 #include "base/context.h"
@@ -17,18 +18,27 @@ typedef picket_status (*pk_apply_complex)(void *user, const double complex *x, d
 
 typedef struct pk_eigen_request {
   int64_t n;         /* order of the operator */
-  int wanted;        /* 1 <= wanted < n - 1 */
-  int basis;         /* Krylov vectors; 0: max(20, 2 wanted + 1), never above n */
+  int wanted;        /* 1 <= wanted <= n */
+  int basis;         /* Krylov vectors; 0: max(20, 2 wanted + 1); never above n */
   double tolerance;  /* relative, of the Ritz values; 0: 1e-10 */
   uint64_t seed;     /* of the start vector: same seed, same digits */
   const void *start; /* null, or n values of the operator's scalar: a guess of the eigenvector */
+  bool every_copy;   /* see below */
 } pk_eigen_request;
+
+/* A Krylov sequence holds one vector of each eigenspace: further copies of a multiple eigenvalue
+ * come in by rounding only, and about one run in ten misses one (a fourfold eigenvalue nearly
+ * always). With every_copy set, the found space is taken out of the operator and its largest
+ * remaining eigenvalue estimated, which costs 8 to 15 more applications; what was missed is then
+ * found and merged. */
 
 /* Symmetric real operator. values[wanted] by falling magnitude; vectors [wanted][n] orthonormal.
  *   found          how many converged (fewer than wanted is an outcome, not an error)
  *   applications   how often Op was applied; may be null
- * For n too small for ARPACK (n < 3 or wanted > n - 2) the operator is applied to unit vectors and
- * a dense solver used, so that any wanted <= n works. */
+ * For n no larger than the basis (and so for any n too small for ARPACK) the operator is applied to
+ * unit vectors and a dense solver used, so that any wanted <= n works.
+ * On failure values and vectors may hold anything, found is as it was; a failure of `apply` is
+ * passed on with its status. `apply` must not call this room: the lock is held around it. */
 picket_status pk_eigen_symmetric(picket_context *context, const pk_eigen_request *request,
                                  pk_apply_real apply, void *user, double *values, double *vectors,
                                  int *found, int *applications);
