@@ -53,6 +53,9 @@ void pk_operator_free(pk_operator *op); /* accepts null */
 int64_t pk_operator_size(const pk_operator *op);
 const pk_pattern *pk_operator_pattern(const pk_operator *op);
 
+/* True if medium m has a share in any site. */
+bool pk_operator_uses(const pk_operator *op, int medium);
+
 /* Gives the media their permittivities [media]: computes A and B. */
 void pk_operator_load(pk_operator *op, const double complex *permittivity);
 

@@ -1,0 +1,17 @@
+/* Picket: Floquet–Bloch modes and band edges of segmented optical waveguides, each number with an
+ * error bar. This header brings in the whole public interface. */
+#ifndef PICKET_H
+#define PICKET_H
+
+#include <picket/bands.h>
+#include <picket/context.h>
+#include <picket/edges.h>
+#include <picket/options.h>
+#include <picket/problem.h>
+#include <picket/quantity.h>
+#include <picket/result.h>
+#include <picket/slab.h>
+#include <picket/status.h>
+#include <picket/summary.h>
+
+#endif

@@ -1,0 +1,235 @@
+/* See wavenumber.h.
+ *
+ * Linearised with x = (v, ξv), the shift-inverted pencil needs one solve with T(σ) per step, and its
+ * right-hand side only where the wrap-around couples:
+ *   s = T(σ)⁻¹ (C₊ x₂ - C₋ x₁/σ),   w₁ = -(x₁ + s)/σ,   w₂ = -s,   w = θ x,  θ = 1/(ξ - σ).
+ * The eigenvector is then refined by residual inverse iteration (A. Neumaier, SIAM J. Numer. Anal. 22,
+ * 914 (1985)) with ξ from the Rayleigh functional lᵀ T(ξ) v = 0. */
+#include "bloch/wavenumber.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "base/memory.h"
+#include "dense/dense.h"
+#include "eigen/eigen.h"
+
+enum {
+  KRYLOV = 10,      /* basis for one mode near a good guess */
+  REFINEMENTS = 12, /* each gains the factor |ξ - σ| over the distance to the next wave */
+  LEFT_STEPS = 4    /* inverse iterations for the left vector */
+};
+
+/* Small enough that the second-order functional is at rounding level; see PK_RESIDUAL_LIMIT. */
+static const double RESIDUAL_GOAL = 1e-11;
+static const uint64_t START_SEED = 20221;
+
+typedef struct search {
+  picket_context *context;
+  pk_operator *op;
+  pk_factor *factor;
+  pk_phase phase;           /* xi = σ */
+  double k0;
+  int64_t n;
+  double complex *work, *other; /* [n] each */
+} search;
+
+static picket_status apply(void *user, const double complex *x, double complex *w) {
+  search *s = user;
+  const double complex *x1 = x, *x2 = x + s->n;
+  double complex sigma = s->phase.xi, *w1 = w, *w2 = w + s->n;
+  pk_operator_forward_times(s->op, s->phase.chi, x2, s->work);
+  pk_operator_backward_times(s->op, s->phase.chi, x1, s->other);
+  for (int64_t p = 0; p < s->n; p++) {
+    s->work[p] -= s->other[p] / sigma;
+  }
+  picket_status status = pk_factor_solve_complex(s->factor, s->work, w2);
+  for (int64_t p = 0; status == PICKET_OK && p < s->n; p++) {
+    w1[p] = -(x1[p] + w2[p]) / sigma;
+    w2[p] = -w2[p];
+  }
+  return status;
+}
+
+static void scale_to_unit(int64_t n, double complex *x) {
+  double norm = pk_dense_norm((long)n, x);
+  for (int64_t p = 0; p < n; p++) {
+    x[p] /= norm;
+  }
+}
+
+/* A first pair from a short Arnoldi run. */
+static picket_status first_pair(search *s, const double complex *start, double complex *xi,
+                                double complex *right) {
+  double complex *vector = PK_NEW(s->context, 4 * s->n, double complex);
+  if (!vector) {
+    return PICKET_ERROR_MEMORY;
+  }
+  double complex *guess = vector + 2 * s->n;
+  for (int64_t p = 0; start && p < s->n; p++) {
+    guess[p] = start[p];
+    guess[s->n + p] = s->phase.xi * start[p];
+  }
+  pk_eigen_request request = {.n = 2 * s->n, .wanted = 1, .basis = KRYLOV, .tolerance = 1e-9,
+                              .seed = START_SEED, .start = start ? guess : NULL};
+  double complex theta;
+  int found = 0;
+  picket_status status =
+      pk_eigen_complex(s->context, &request, apply, s, &theta, vector, &found, NULL);
+  if (status == PICKET_OK && found == 0) {
+    status = pk_fail(s->context, PICKET_ERROR_NUMERIC,
+                     "no Bloch wave near exp(ikΛ) = %g%+gi converged", creal(s->phase.xi),
+                     cimag(s->phase.xi));
+  }
+  if (status == PICKET_OK) {
+    *xi = s->phase.xi + 1 / theta;
+    memcpy(right, vector, (size_t)s->n * sizeof *right);
+    scale_to_unit(s->n, right);
+  }
+  pk_free(s->context, vector);
+  return status;
+}
+
+/* lᵀT(σ) = 0 nearly, so inverse iteration with the transposed factor gives the left vector. */
+static picket_status left_vector(search *s, const double complex *right, double complex *left) {
+  const double complex *mass = pk_operator_mass(s->op);
+  for (int64_t p = 0; p < s->n; p++) {
+    left[p] = conj(right[p]);
+  }
+  picket_status status = PICKET_OK;
+  for (int step = 0; status == PICKET_OK && step < LEFT_STEPS; step++) {
+    for (int64_t p = 0; p < s->n; p++) {
+      s->work[p] = mass[p] * left[p];
+    }
+    status = pk_factor_solve_transposed_complex(s->factor, s->work, left);
+    scale_to_unit(s->n, left);
+  }
+  return status;
+}
+
+static double complex plain_dot(int64_t n, const double complex *l, const double complex *r) {
+  double complex sum = 0;
+  for (int64_t p = 0; p < n; p++) {
+    sum += l[p] * r[p];
+  }
+  return sum;
+}
+
+/* The root of lᵀT(ξ)r = ξ a + b + c/ξ = 0 nearest to ξ. */
+static double complex rayleigh(search *s, const double complex *left, const double complex *right,
+                               double complex xi, double complex *values) {
+  pk_phase phase = {xi, s->phase.chi, s->phase.kx};
+  pk_operator_forward_times(s->op, s->phase.chi, right, s->work);
+  double complex a = plain_dot(s->n, left, s->work);
+  pk_operator_backward_times(s->op, s->phase.chi, right, s->work);
+  double complex c = plain_dot(s->n, left, s->work);
+  pk_operator_values(s->op, phase, s->k0 * s->k0, values);
+  pk_sparse_times_complex(pk_operator_pattern(s->op), values, right, s->work);
+  double complex rest = plain_dot(s->n, left, s->work); /* lᵀT(ξ)r at the old ξ */
+  /* With ξ' = ξ(1 + δ): aξ δ + c/ξ (1/(1+δ) - 1) + rest = 0, a quadratic in δ without cancellation. */
+  double complex A = a * xi, C = c / xi;
+  double complex linear = A - C + rest;
+  double complex root = csqrt(linear * linear - 4 * A * rest);
+  double complex denominator = creal(conj(linear) * root) >= 0 ? linear + root : linear - root;
+  return denominator == 0 ? xi : xi * (1 - 2 * rest / denominator);
+}
+
+/* |T(ξ)r| / (k0² |B r|), leaving T(ξ)r in s->other. */
+static double residual_of(search *s, double complex xi, const double complex *right,
+                          double complex *values) {
+  pk_phase phase = {xi, s->phase.chi, s->phase.kx};
+  const double complex *mass = pk_operator_mass(s->op);
+  pk_operator_values(s->op, phase, s->k0 * s->k0, values);
+  pk_sparse_times_complex(pk_operator_pattern(s->op), values, right, s->other);
+  double weight = 0;
+  for (int64_t p = 0; p < s->n; p++) {
+    double m = cabs(mass[p] * right[p]);
+    weight += m * m;
+  }
+  return pk_dense_norm((long)s->n, s->other) / (s->k0 * s->k0 * sqrt(weight));
+}
+
+static picket_status refine(search *s, double complex *values, pk_wave *wave) {
+  picket_status status = PICKET_OK;
+  double previous = INFINITY;
+  for (int step = 0; step < REFINEMENTS; step++) {
+    status = left_vector(s, wave->right, wave->left);
+    if (status != PICKET_OK) {
+      return status;
+    }
+    wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
+    wave->residual = residual_of(s, wave->xi, wave->right, values);
+    if (wave->residual < RESIDUAL_GOAL || wave->residual > 0.5 * previous) {
+      break;
+    }
+    previous = wave->residual;
+    status = pk_factor_solve_complex(s->factor, s->other, s->work);
+    if (status != PICKET_OK) {
+      return status;
+    }
+    for (int64_t p = 0; p < s->n; p++) {
+      wave->right[p] -= s->work[p];
+    }
+    scale_to_unit(s->n, wave->right);
+  }
+  if (!(wave->residual <= PK_RESIDUAL_LIMIT)) {
+    return pk_fail(s->context, PICKET_ERROR_NUMERIC,
+                   "a Bloch wave has a residual of %.1e, allowed %.1e", wave->residual,
+                   PK_RESIDUAL_LIMIT);
+  }
+  return PICKET_OK;
+}
+
+void pk_wave_clear(picket_context *context, pk_wave *wave) {
+  pk_free(context, wave->right);
+  pk_free(context, wave->left);
+  memset(wave, 0, sizeof *wave);
+}
+
+picket_status pk_wave_near(pk_solver *solver, pk_phase phase, double k0, double complex xi_guess,
+                           const double complex *start, pk_wave *out) {
+  search s = {.op = pk_solver_operator(solver), .phase = phase, .k0 = k0};
+  s.context = pk_solver_context(solver);
+  s.n = pk_operator_size(s.op);
+  s.phase.xi = xi_guess;
+  int64_t entries = pk_operator_pattern(s.op)->start[s.n];
+  double complex *values = PK_NEW(s.context, entries, double complex);
+  pk_wave wave = {.right = PK_NEW(s.context, s.n, double complex),
+                  .left = PK_NEW(s.context, s.n, double complex)};
+  s.work = PK_NEW(s.context, s.n, double complex);
+  s.other = PK_NEW(s.context, s.n, double complex);
+  picket_status status = PICKET_ERROR_MEMORY;
+  if (values && wave.right && wave.left && s.work && s.other) {
+    status = pk_solver_factor(solver, s.phase, k0 * k0, &s.factor);
+  }
+  if (status == PICKET_OK) {
+    status = first_pair(&s, start, &wave.xi, wave.right);
+  }
+  if (status == PICKET_OK) {
+    status = refine(&s, values, &wave);
+  }
+  pk_free(s.context, values);
+  pk_free(s.context, s.work);
+  pk_free(s.context, s.other);
+  if (status == PICKET_OK) {
+    *out = wave;
+  } else {
+    pk_wave_clear(s.context, &wave);
+  }
+  return status;
+}
+
+picket_status pk_wave_slope(const pk_media *media, const pk_operator *op, pk_phase phase, double k0,
+                            double pitch_um, double shift, const pk_wave *wave,
+                            double complex *dk_dk0) {
+  phase.xi = wave->xi;
+  double complex frequency;
+  picket_status status =
+      pk_media_frequency_form(media, op, phase, k0, wave->left, wave->right, &frequency);
+  if (status == PICKET_OK) {
+    double complex wavenumber =
+        I * pitch_um * pk_operator_phase_form(op, phase, 1, shift, wave->left, wave->right);
+    *dk_dk0 = -frequency / wavenumber;
+  }
+  return status;
+}

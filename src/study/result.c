@@ -1,0 +1,84 @@
+/* See result.h. */
+#include "study/result.h"
+
+#include "base/memory.h"
+
+picket_status pk_result_create(picket_context *context, pk_result_kind kind, const char *name,
+                               double accuracy, picket_result **out) {
+  picket_result *result = PK_NEW(context, 1, picket_result);
+  if (!result) {
+    return PICKET_ERROR_MEMORY;
+  }
+  result->context = pk_context_hold(context);
+  result->kind = kind;
+  result->accuracy = accuracy;
+  result->complete = true;
+  result->name = pk_text_copy(context, name);
+  if (!result->name) {
+    pk_result_free(result);
+    return PICKET_ERROR_MEMORY;
+  }
+  *out = result;
+  return PICKET_OK;
+}
+
+static void free_edges(picket_context *context, int count, picket_edges_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    pk_free(context, (void *)answers[i].bands);
+  }
+  pk_free(context, answers);
+}
+
+static void free_bands(picket_context *context, int count, picket_bands_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    for (int p = 0; answers[i].points && p < answers[i].point_count; p++) {
+      pk_free(context, (void *)answers[i].points[p].label);
+      pk_free(context, (void *)answers[i].points[p].frequency);
+    }
+    pk_free(context, (void *)answers[i].points);
+    pk_free(context, (void *)answers[i].gaps);
+  }
+  pk_free(context, answers);
+}
+
+static void free_slab(picket_context *context, int count, picket_slab_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    for (int p = 0; answers[i].points && p < answers[i].point_count; p++) {
+      pk_free(context, (void *)answers[i].points[p].modes);
+    }
+    pk_free(context, (void *)answers[i].points);
+  }
+  pk_free(context, answers);
+}
+
+static void free_summary(picket_result *result) {
+  for (int i = 0; i < result->count; i++) {
+    if (result->summary) {
+      pk_free(result->context, result->summary[i].name);
+      pk_free(result->context, result->summary[i].text);
+      pk_free(result->context, result->summary[i].unit);
+    }
+    if (result->lines) {
+      pk_free(result->context, result->lines[i]);
+    }
+  }
+  pk_free(result->context, result->summary);
+  pk_free(result->context, result->lines);
+}
+
+void pk_result_free(picket_result *result) {
+  if (!result) {
+    return;
+  }
+  picket_context *context = result->context;
+  free_edges(context, result->count, result->edges);
+  free_bands(context, result->count, result->bands);
+  free_slab(context, result->count, result->slab);
+  free_summary(result);
+  pk_free(context, result->name);
+  pk_free(context, result->shortfall);
+  pk_free(context, result->json);
+  pk_free(context, result->csv);
+  pk_free(context, result);
+  pk_context_release(context);
+}
