@@ -15,12 +15,12 @@ typedef struct pk_materials pk_materials;
 
 /* A material at one wavelength and temperature. */
 typedef struct pk_medium {
-  double complex permittivity;       /* ε = (n + iκ)² */
-  double complex slope;              /* k0 dε/dk0, at constant temperature */
-  double complex temperature_slope;  /* dε/dT, 1/K */
+  double complex permittivity;      /* ε = (n + iκ)² */
+  double complex slope;             /* k0 dε/dk0, at constant temperature */
+  double complex temperature_slope; /* dε/dT, 1/K */
 } pk_medium;
 
-/* The known range; 0 and INFINITY where there is no limit. */
+/* The known range; where there is no limit 0 and INFINITY, and -273.15 (absolute zero). */
 typedef struct pk_material_range {
   double shortest_um, longest_um;
   double coldest_c, hottest_c;
@@ -42,7 +42,7 @@ pk_material_range pk_materials_range(const pk_materials *materials, int material
  * Values out of range are PICKET_ERROR_INPUT at `place`. */
 
 /* n + iκ at 20 °C, linear in temperature: n(T) = index + dn_dt (T - 20 °C).
- * index > 0; extinction >= 0 unless gain is allowed. */
+ * index > 0; extinction >= 0. */
 picket_status pk_materials_add_constant(pk_materials *materials, pk_place place, const char *name,
                                         double index, double extinction, double dn_dt_per_k);
 
@@ -51,8 +51,9 @@ picket_status pk_materials_add_constant(pk_materials *materials, pk_place place,
 picket_status pk_materials_add_sellmeier(pk_materials *materials, pk_place place, const char *name,
                                          int count, const double *b, const double *c_um);
 
-/* n and κ at `count` rising wavelengths (µm), at least 4; a cubic spline between them (natural ends),
- * valid from the first to the last. κ is clipped at zero between points where the data are >= 0. */
+/* n and κ at `count` rising wavelengths (µm), at least 4; a cubic spline between them (natural
+ * ends), valid from the first to the last. n > 0 and κ >= 0; κ is clipped at zero between points.
+ */
 picket_status pk_materials_add_table(pk_materials *materials, pk_place place, const char *name,
                                      int count, const double *wavelength_um, const double *n,
                                      const double *k);
@@ -65,7 +66,9 @@ const char *pk_catalogue_entry(int i);
 
 /* The effective index of a film stack (effective index method), dispersive and temperature
  * dependent through its films; a mode of order `order`. Films are numbers of materials of this set
- * that were added before. A cut-off slab is PICKET_ERROR_NO_MODE at evaluation. */
+ * that were added before; slabs may stand on slabs, PK_SLAB_NESTING deep. A cut-off slab is
+ * PICKET_ERROR_NO_MODE at evaluation. */
+enum { PK_SLAB_NESTING = 4, PK_SLAB_FILMS = 1000 };
 typedef struct pk_slab_recipe {
   int substrate, cover;
   int film_count;

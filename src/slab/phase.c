@@ -95,7 +95,9 @@ int pk_stack_guided(const pk_stack *stack) {
     return 0;
   }
   double count = ceil(pk_stack_phase(stack, stack->floor) / pi);
-  return count > 0 ? (int)count : 0;
+  /* More than can be told apart in b: the count is then only a bound. */
+  const double most = 1e9;
+  return count > 0 ? (int)fmin(count, most) : 0;
 }
 
 double pk_stack_root(const pk_stack *stack, int order, double above) {
