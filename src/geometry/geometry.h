@@ -119,7 +119,7 @@ typedef struct pk_corner {
 /* All corners with four quadrants, each once per period, wrapped into the frame and strictly inside
  * its open sides, sorted by v, then u. *out is owned by the caller (pk_free). `other_count`
  * receives the number of corners at which an oblique or curved interface takes part; these are not
- * listed. */
+ * listed. An interface that turns by less than 0.01 rad counts as smooth. */
 picket_status pk_geometry_corners(const pk_geometry *geometry, pk_corner **out, int *count,
                                   int *other_count);
 
