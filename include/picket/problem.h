@@ -2,8 +2,8 @@
  *
  * A problem is a document of keys and values (the problem file, format 1). Values are reached by
  * dotted paths, list elements by number: "cell.pitch_nm", "cell.shapes.0.rect.length_nm" or, with
- * the shape's kind left out, "cell.shapes.0.length_nm". Reading takes any well-formed document; what it
- * says is checked as a whole at the first use after reading or a change, or by
+ * the shape's kind left out, "cell.shapes.0.length_nm". Reading takes any well-formed document;
+ * what it says is checked as a whole at the first use after reading or a change, or by
  * picket_problem_check. So a value can be set before the whole makes sense. */
 #ifndef PICKET_PROBLEM_H
 #define PICKET_PROBLEM_H
@@ -23,12 +23,11 @@ typedef struct picket_problem picket_problem;
  * PICKET_ERROR_MEMORY. */
 PICKET_EXPORT picket_status picket_problem_create(picket_context *context, picket_problem **out);
 
-/* Reads a problem file. Paths inside the file (tables) are relative to the file's folder; a table is
- * read when the problem is checked.
- *   path  file name; "-" is not special here
- * PICKET_ERROR_FILE if it can't be read or is longer than 4 MB; PICKET_ERROR_INPUT if it is not a
- * block of keys in YAML: the message starts with FILE:LINE:COLUMN. Anchors, tags, keys given twice
- * and nesting deeper than 32 are refused. Keys and values are checked later, see above. */
+/* Reads a problem file. Paths inside the file (tables) are relative to the file's folder; a table
+ * is read when the problem is checked. path  file name; "-" is not special here PICKET_ERROR_FILE
+ * if it can't be read or is longer than 4 MB; PICKET_ERROR_INPUT if it is not a block of keys in
+ * YAML: the message starts with FILE:LINE:COLUMN. Anchors, tags, keys given twice and nesting
+ * deeper than 32 are refused. Keys and values are checked later, see above. */
 PICKET_EXPORT picket_status picket_problem_read_file(picket_context *context, const char *path,
                                                      picket_problem **out);
 
@@ -44,8 +43,8 @@ PICKET_EXPORT picket_status picket_problem_read_text(picket_context *context, co
  * are made; a list takes the element one past its end, and one that is missing is made when its
  * element 0 is set. The whole is checked at the next use; messages about the value then begin with
  * "set PATH:" in the place of a line.
- * PICKET_ERROR_INPUT if the path or the text is malformed or the path leads into a single value; the
- * problem is then unchanged. */
+ * PICKET_ERROR_INPUT if the path or the text is malformed or the path leads into a single value;
+ * the problem is then unchanged. */
 PICKET_EXPORT picket_status picket_problem_set(picket_problem *problem, const char *path,
                                                const char *value);
 
@@ -55,9 +54,9 @@ PICKET_EXPORT picket_status picket_problem_set_number(picket_problem *problem, c
                                                       double value);
 
 /* Checks the whole problem now; the message of the first fault is in the context.
- * PICKET_ERROR_INPUT for an unknown key or a value that is wrong, PICKET_ERROR_FILE for a table that
- * can't be read, PICKET_ERROR_UNSUPPORTED for a block that this version does not do. Whether the
- * materials are known at the wavelengths of `light` shows only when they are used. */
+ * PICKET_ERROR_INPUT for an unknown key or a value that is wrong, PICKET_ERROR_FILE for a table
+ * that can't be read, PICKET_ERROR_UNSUPPORTED for a block that this version does not do. Whether
+ * the materials are known at the wavelengths of `light` shows only when they are used. */
 PICKET_EXPORT picket_status picket_problem_check(picket_problem *problem);
 
 /* Lets go of a problem; null is accepted. */
