@@ -55,9 +55,8 @@ static double complex *conjugate_copy(picket_context *context, int64_t n, const 
   return copy;
 }
 
-/* The Newton step of f(k0) = λ(k0) - k0² at a mode of λ. */
-static picket_status newton_step(const pk_media *media, pk_operator *op, pk_phase phase, double k0,
-                                 const pk_mode *mode, double *next) {
+picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_phase phase, double k0,
+                             const pk_mode *mode, double *next) {
   if (!media->dispersive) {
     *next = sqrt(creal(mode->lambda));
     return PICKET_OK;
@@ -102,7 +101,7 @@ static picket_status track_once(pk_solver *solver, pk_media *media, pk_phase pha
   }
   int chosen = choose(op, known, lambda, found, modes);
   double next = t->k0;
-  status = newton_step(media, op, phase, t->k0, &modes[chosen], &next);
+  status = pk_mode_newton(media, op, phase, t->k0, &modes[chosen], &next);
   if (status == PICKET_OK) {
     pk_free(context, t->field);
     t->field = modes[chosen].field;

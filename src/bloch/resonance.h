@@ -26,6 +26,10 @@ picket_status pk_resonance_slope(const pk_media *media, const pk_operator *op, p
                                  double pitch_um, double shift, const pk_resonance *resonance,
                                  double *dk0_dk);
 
+/* The next frequency of Newton's method on f(k0) = λ(k0) - k0², from a mode of the media at k0. */
+picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_phase phase, double k0,
+                             const pk_mode *mode, double *next);
+
 /* |⟨a, B b⟩|² / (⟨a, B a⟩ ⟨b, B b⟩), 0 to 1. */
 double pk_overlap(const pk_operator *op, const double complex *a, const double complex *b);
 

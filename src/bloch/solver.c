@@ -15,6 +15,7 @@ struct pk_solver {
   picket_context *context;
   pk_operator *op;
   int64_t n;
+  bool every_copy;
   pk_factor *real_factor, *complex_factor; /* made when first needed */
   double *real_values, *real_work;         /* [nnz], [n] */
   double complex *values, *work;           /* [nnz], [2n] */
@@ -62,6 +63,10 @@ void pk_solver_free(pk_solver *solver) {
 
 pk_operator *pk_solver_operator(const pk_solver *solver) {
   return solver->op;
+}
+
+void pk_solver_want_every_copy(pk_solver *solver, bool wanted) {
+  solver->every_copy = wanted;
 }
 
 void pk_modes_clear(picket_context *context, int count, pk_mode *modes) {
@@ -177,7 +182,7 @@ static picket_status run_real(pk_solver *solver, const run *r, double complex *v
       start[p] = creal(solver->root[p] * r->start[p]);
     }
     pk_eigen_request request = {.n = solver->n, .wanted = r->wanted, .seed = START_SEED,
-                                .start = start};
+                                .start = start, .every_copy = solver->every_copy};
     status = factor_real(solver, r->phase, r->shift);
     if (status == PICKET_OK) {
       status = pk_eigen_symmetric(context, &request, apply_real, solver, real_values, real_vectors,
@@ -207,7 +212,7 @@ static picket_status run_complex(pk_solver *solver, const run *r, double complex
     start[p] = solver->root[p] * r->start[p];
   }
   pk_eigen_request request = {.n = solver->n, .wanted = r->wanted, .seed = START_SEED,
-                              .start = start};
+                              .start = start, .every_copy = solver->every_copy};
   pk_factor *factor;
   picket_status status = pk_solver_factor(solver, r->phase, r->shift, &factor);
   if (status == PICKET_OK) {

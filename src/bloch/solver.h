@@ -41,6 +41,10 @@ picket_context *pk_solver_context(const pk_solver *solver);
 picket_status pk_solver_modes(pk_solver *solver, pk_phase phase, double shift, int wanted,
                               const double complex *start, pk_mode *modes, int *found);
 
+/* From now on look for every copy of a multiple eigenvalue (off at first): Arnoldi can miss copies, and
+ * does in about one case of ten for twofold levels; costs about a quarter more solves. */
+void pk_solver_want_every_copy(pk_solver *solver, bool wanted);
+
 /* The factor of the last complex factorisation, for callers that know what was factored; see
  * wavenumber.c. Makes one of T = A(phase) - shift B. */
 picket_status pk_solver_factor(pk_solver *solver, pk_phase phase, double complex shift,

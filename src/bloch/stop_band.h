@@ -34,13 +34,13 @@ typedef struct pk_stop_band {
 typedef struct pk_stop_band_request {
   double pitch_um;
   double lateral_shift;   /* fraction of the pitch */
-  int first_order, last_order;
+  int last_order;              /* orders 1 to last_order are found */
   double k0_start;        /* where the media are taken for a first look */
   bool open;              /* sides are open: a light line exists */
   int side_medium[2];     /* media at -x and +x of an open cell */
 } pk_stop_band_request;
 
-/* bands[last_order - first_order + 1].
+/* bands[last_order].
  * PICKET_ERROR_NO_MODE if the cell guides no mode at the zone edge. */
 picket_status pk_stop_bands(pk_solver *solver, pk_media *media, const pk_stop_band_request *request,
                             pk_stop_band *bands);

@@ -445,7 +445,21 @@ bool pk_operator_uses(const pk_operator *op, int medium) {
   return false;
 }
 
-void pk_operator_position(const pk_operator *op, int64_t p, double *u, double *v) {
-  *u = op->u.line[p / op->nv + pk_axis_first_line(&op->u)];
-  *v = op->nv == 1 ? 0 : op->v.line[p % op->nv + pk_axis_first_line(&op->v)];
+int pk_operator_lines(const pk_operator *op, pk_axis_name axis) {
+  return axis == PK_U ? op->nu : op->nv;
+}
+
+void pk_operator_line(const pk_operator *op, pk_axis_name axis, int i, double *at, double *length) {
+  const pk_axis *a = axis == PK_U ? &op->u : &op->v;
+  if (axis == PK_V && op->lateral) {
+    *at = 0; /* a uniform axis: any unit of length */
+    *length = 1;
+    return;
+  }
+  int line = i + pk_axis_first_line(a);
+  double low, high;
+  double complex stretched;
+  pk_axis_dual(a, line, &low, &high, &stretched);
+  *at = a->line[line];
+  *length = high - low;
 }

@@ -89,7 +89,8 @@ void pk_operator_media_forms(const pk_operator *op, pk_phase phase, const double
 double complex pk_operator_mass_form(const pk_operator *op, const double complex *l,
                                      const double complex *r);
 
-/* Where unknown p sits: line numbers on the two axes, coordinates in µm. */
-void pk_operator_position(const pk_operator *op, int64_t p, double *u, double *v);
+/* Unknowns along an axis; coordinate and (unstretched) dual length of the i-th. */
+int pk_operator_lines(const pk_operator *op, pk_axis_name axis);
+void pk_operator_line(const pk_operator *op, pk_axis_name axis, int i, double *at, double *length);
 
 #endif

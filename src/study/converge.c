@@ -1,0 +1,177 @@
+/* See converge.h. */
+#include "study/converge.h"
+
+#include <math.h>
+#include <stdio.h>
+
+#include "base/memory.h"
+#include "study/level.h"
+
+/* Members of the family on each attempt. Three grids settle two exponents; a fourth tells scatter from
+ * law where interfaces cut the cells, and a third exponent on one-dimensional stacks. */
+enum { ATTEMPTS = 4, MOST_GRIDS = 4 };
+static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {{2, 3, 4}, {3, 4, 6}, {4, 6, 8}, {6, 8, 12}};
+static const int MEMBERS_FOUR[ATTEMPTS][MOST_GRIDS] = {
+    {2, 3, 4, 6}, {4, 5, 6, 8}, {6, 8, 10, 12}, {8, 12, 16, 20}};
+
+/* Open sides end where the field has fallen to a tenth of the accuracy in power, and one more decay
+ * length. */
+static double reach_for(double accuracy) {
+  return 0.5 * log(10 / accuracy) + 1;
+}
+
+typedef struct family {
+  const pk_converge_request *request;
+  picket_context *context;
+  pk_cell_grid base;
+  int count;            /* grids */
+  const int *m;
+  double *values;       /* [MOST_GRIDS][quantities] */
+  double *span_error;   /* [quantities] of cutting off open sides */
+} family;
+
+static picket_status sample_grids(family *f, int attempt) {
+  int quantities = f->request->count;
+  picket_status status = PICKET_OK;
+  for (int g = 0; status == PICKET_OK && g < f->count; g++) {
+    double done = (attempt + (double)g / f->count) / ATTEMPTS;
+    status = pk_progress(f->context, f->request->phase, done);
+    if (status == PICKET_OK) {
+      status = f->request->sample(f->request->user, &f->base, f->m[g], f->values + g * quantities);
+    }
+    if (status == PICKET_OK) {
+      pk_log(f->context, PICKET_LOG_INFO, "%s: grid %d of %d, %.0f unknowns", f->request->phase,
+             g + 1, f->count, pk_level_unknowns(&f->base, f->m[g]));
+    }
+  }
+  return status;
+}
+
+/* Walls where the slope vanishes move a value the other way than walls where the field does, by the same
+ * amount to first order: half the difference is the error of either. */
+static picket_status sample_span_error(family *f) {
+  const pk_survey *survey = f->request->survey;
+  int quantities = f->request->count;
+  for (int i = 0; i < quantities; i++) {
+    f->span_error[i] = 0;
+  }
+  if (!survey->open) {
+    return PICKET_OK;
+  }
+  pk_lay_plan plan = {reach_for(f->request->options->accuracy), f->request->mirror, false};
+  pk_cell_grid base;
+  picket_status status = pk_survey_lay(survey, &plan, &base);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  status = f->request->sample(f->request->user, &base, f->m[0], f->span_error);
+  pk_cell_grid_clear(f->context, &base);
+  for (int i = 0; i < quantities; i++) {
+    f->span_error[i] = 0.5 * fabs(f->span_error[i] - f->values[i]);
+  }
+  return status;
+}
+
+static void log_table(const family *f, const picket_quantity *quantities) {
+  if (!pk_log_wanted(f->context, PICKET_LOG_DETAIL)) {
+    return;
+  }
+  for (int i = 0; i < f->request->count; i++) {
+    char line[256];
+    int used = 0;
+    for (int g = 0; g < f->count && used < (int)sizeof line; g++) {
+      used += snprintf(line + used, sizeof line - (size_t)used, "  1/%d: %.10g", f->m[g],
+                       f->values[g * f->request->count + i]);
+    }
+    pk_log(f->context, PICKET_LOG_DETAIL, "%s, quantity %d:%s -> %.10g ± %.1e (sides %.1e)",
+           f->request->phase, i, line, quantities[i].value, quantities[i].uncertainty,
+           f->span_error[i]);
+  }
+}
+
+static void judge(const family *f, picket_quantity *quantities) {
+  int quantities_count = f->request->count;
+  for (int i = 0; i < quantities_count; i++) {
+    double column[MOST_GRIDS];
+    for (int g = 0; g < f->count; g++) {
+      column[g] = f->values[g * quantities_count + i];
+    }
+    quantities[i] = pk_extrapolate(&f->request->survey->law, f->count, f->m, column);
+    if (isfinite(f->span_error[i])) {
+      quantities[i].uncertainty += f->span_error[i];
+    }
+  }
+  log_table(f, quantities);
+}
+
+/* The largest bar as a multiple of what was asked; 0 when nothing has a bar. */
+static double worst_of(const family *f, const picket_quantity *quantities) {
+  double worst = 0;
+  for (int i = 0; i < f->request->count; i++) {
+    if (isfinite(quantities[i].uncertainty) && isfinite(quantities[i].value)) {
+      double allowed = f->request->options->accuracy * fabs(quantities[i].value);
+      worst = fmax(worst, quantities[i].uncertainty / allowed);
+    }
+  }
+  return worst;
+}
+
+static picket_status mark_partial(const family *f, double worst, picket_result *result) {
+  char text[256];
+  snprintf(text, sizeof text,
+           "%s: the largest uncertainty is %.2g of its value, %.1g was asked; allow more unknowns "
+           "(now %.0f) or ask for less",
+           f->request->phase, worst * f->request->options->accuracy, f->request->options->accuracy,
+           f->request->options->unknowns);
+  result->complete = false;
+  pk_free(f->context, result->shortfall);
+  result->shortfall = pk_text_copy(f->context, text);
+  return result->shortfall ? PICKET_OK : PICKET_ERROR_MEMORY;
+}
+
+static picket_status run_family(family *f, picket_quantity *quantities, picket_result *result) {
+  const pk_error_law *law = &f->request->survey->law;
+  bool four = !law->smooth || law->count > 2;
+  f->count = four ? 4 : 3;
+  double worst = 0;
+  for (int attempt = 0; attempt < ATTEMPTS; attempt++) {
+    const int *m = four ? MEMBERS_FOUR[attempt] : MEMBERS_SMOOTH[attempt];
+    if (attempt > 0 &&
+        pk_level_unknowns(&f->base, m[f->count - 1]) > f->request->options->unknowns) {
+      break;
+    }
+    f->m = m;
+    picket_status status = sample_grids(f, attempt);
+    if (status == PICKET_OK && attempt == 0) {
+      status = sample_span_error(f);
+    }
+    if (status != PICKET_OK) {
+      return status;
+    }
+    judge(f, quantities);
+    worst = worst_of(f, quantities);
+    if (worst <= 1) {
+      return PICKET_OK;
+    }
+  }
+  return mark_partial(f, worst, result);
+}
+
+picket_status pk_converge(const pk_converge_request *request, picket_quantity *quantities,
+                          picket_result *result) {
+  family f = {.request = request, .context = request->survey->problem->context};
+  f.values = PK_NEW(f.context, MOST_GRIDS * request->count, double);
+  f.span_error = PK_NEW(f.context, request->count, double);
+  picket_status status = f.values && f.span_error ? PICKET_OK : PICKET_ERROR_MEMORY;
+  pk_lay_plan plan = {reach_for(request->options->accuracy), request->mirror, true};
+  if (status == PICKET_OK) {
+    status = pk_survey_lay(request->survey, &plan, &f.base);
+  }
+  if (status == PICKET_OK) {
+    status = run_family(&f, quantities, result);
+    pk_cell_grid_clear(f.context, &f.base);
+  }
+  pk_free(f.context, f.values);
+  pk_free(f.context, f.span_error);
+  return status;
+}

@@ -1,0 +1,106 @@
+/* See extrapolate.h. */
+#include "study/extrapolate.h"
+
+#include <math.h>
+
+/* Scattered values (curved interfaces): calibrated on the exact square lattice of rods, both
+ * polarizations, all bands below the fifth: the largest error was below the largest misfit or half the
+ * last step; twice that is kept. */
+static const double SCATTER_SAFETY = 2;
+
+/* Rounding of an eigenvalue: residuals of 1e-12 and sums over 1e5 terms. */
+static const double ROUNDING = 2e-12;
+
+/* Solves the small dense system by elimination with row exchange; size at most PK_GRIDS. */
+static double solve_first(int n, double a[PK_GRIDS][PK_GRIDS], double *b) {
+  for (int k = 0; k < n; k++) {
+    int pivot = k;
+    for (int i = k + 1; i < n; i++) {
+      pivot = fabs(a[i][k]) > fabs(a[pivot][k]) ? i : pivot;
+    }
+    for (int j = 0; j < n; j++) {
+      double swap = a[k][j];
+      a[k][j] = a[pivot][j];
+      a[pivot][j] = swap;
+    }
+    double swap = b[k];
+    b[k] = b[pivot];
+    b[pivot] = swap;
+    for (int i = k + 1; i < n; i++) {
+      double factor = a[i][k] / a[k][k];
+      for (int j = k; j < n; j++) {
+        a[i][j] -= factor * a[k][j];
+      }
+      b[i] -= factor * b[k];
+    }
+  }
+  for (int k = n - 1; k >= 0; k--) {
+    for (int j = k + 1; j < n; j++) {
+      b[k] -= a[k][j] * b[j];
+    }
+    b[k] /= a[k][k];
+  }
+  return b[0];
+}
+
+double pk_extrapolated(const pk_error_law *law, int count, const int *m, const double *values,
+                       int used) {
+  double a[PK_GRIDS][PK_GRIDS], b[PK_GRIDS];
+  int first = count - used;
+  for (int i = 0; i < used; i++) {
+    a[i][0] = 1;
+    for (int j = 1; j < used; j++) {
+      a[i][j] = pow((double)m[first + i] / m[count - 1], -law->exponent[j - 1]);
+    }
+    b[i] = values[first + i];
+  }
+  return solve_first(used, a, b);
+}
+
+static picket_quantity smooth(const pk_error_law *law, int count, const int *m,
+                              const double *values) {
+  int most = law->count + 1;
+  int used = count < most ? count : most;
+  double best = pk_extrapolated(law, count, m, values, used);
+  double bar = ROUNDING * fabs(best);
+  bar = fmax(bar, fabs(best - pk_extrapolated(law, count, m, values, used - 1)));
+  if (count > used) {
+    bar = fmax(bar, fabs(best - pk_extrapolated(law, count - 1, m, values, used)));
+  }
+  return (picket_quantity){best, bar, 0};
+}
+
+static picket_quantity scattered(int count, const int *m, const double *values) {
+  double n = count, sx = 0, sy = 0, sxx = 0, sxy = 0;
+  for (int i = 0; i < count; i++) {
+    double x = 1.0 / ((double)m[i] * m[i]);
+    sx += x;
+    sy += values[i];
+    sxx += x * x;
+    sxy += x * values[i];
+  }
+  double slope = (n * sxy - sx * sy) / (n * sxx - sx * sx);
+  double best = (sy - slope * sx) / n;
+  double misfit = 0;
+  for (int i = 0; i < count; i++) {
+    misfit = fmax(misfit, fabs(values[i] - best - slope / ((double)m[i] * m[i])));
+  }
+  double step = 0.5 * fabs(values[count - 1] - best);
+  return (picket_quantity){best, SCATTER_SAFETY * fmax(misfit, step), 0};
+}
+
+picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
+                               const double *values) {
+  for (int i = 0; i < count; i++) {
+    if (!isfinite(values[i])) {
+      return (picket_quantity){NAN, NAN, 0};
+    }
+  }
+  picket_quantity q =
+      law->smooth ? smooth(law, count, m, values) : scattered(count, m, values);
+  if (law->no_bar) {
+    q.uncertainty = NAN;
+    q.note = law->no_bar;
+  }
+  return q;
+}

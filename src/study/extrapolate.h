@@ -1,0 +1,35 @@
+/* From values on exactly proportional grids to a value and a bar.
+ *
+ *   v(m) = X + Σ_j c_j m^(-p_j),   h = h_base / m
+ *
+ * with known exponents p_j (L. F. Richardson, Phil. Trans. R. Soc. A 210, 307 (1911); exponents of
+ * singular solutions: see the corner room of operator). */
+#ifndef PK_STUDY_EXTRAPOLATE_H
+#define PK_STUDY_EXTRAPOLATE_H
+
+#include <picket/quantity.h>
+
+enum { PK_GRIDS = 6, PK_EXPONENTS = 5 };
+
+/* How values of a quantity depend on the grid. */
+typedef struct pk_error_law {
+  int count;                     /* exponents that are known, rising */
+  double exponent[PK_EXPONENTS];
+  int smooth;                    /* 1: interfaces lie on grid lines and the law holds; 0: interfaces cut
+                                    the cells and the values scatter about it */
+  const char *no_bar;            /* why no bar can be vouched for, or null; static text */
+} pk_error_law;
+
+/* X from the last `used` of `count` grids with the first used - 1 exponents of the law. */
+double pk_extrapolated(const pk_error_law *law, int count, const int *m, const double *values,
+                       int used);
+
+/* Value and bar from `count` grids (2 to PK_GRIDS), m rising.
+ * Smooth law: the value takes every grid; the bar is the largest difference to the values with the
+ * last exponent left out, and without the coarsest grid, and never below rounding.
+ * Scattered values: least squares with h² on all grids; the bar is SCATTER_SAFETY times the largest
+ * misfit or step. A NaN among the values gives NaN. */
+picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
+                               const double *values);
+
+#endif

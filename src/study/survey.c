@@ -1,0 +1,153 @@
+/* See survey.h. */
+#include "study/survey.h"
+
+#include <math.h>
+
+#include "study/estimate.h"
+
+static const double PI = 3.141592653589793238;
+
+enum {
+  STEPS_PER_PITCH = 8,       /* of the base: the family starts at 16, where h² rules */
+  STEPS_PER_PITCH_STACK = 24 /* one-dimensional: costs nothing */
+};
+
+static const double LONGEST_DECAY = 100; /* in pitches */
+
+static const char NOTE_CORNERS[] =
+    "no error bar: the magnetic field is singular at the corners of this cell, so the error does "
+    "not fall as the square of the grid spacing";
+
+/* The error law of a cell: see NOTE_CORNERS and extrapolate.h. */
+static pk_error_law law_of(const pk_problem *problem, pk_polarization polarization) {
+  const pk_geometry *geometry = problem->cell.geometry;
+  pk_error_law law = {.count = 2, .exponent = {2, 4, 6}, .smooth = 1};
+  if (problem->cell.lateral == PK_LATERAL_UNIFORM) {
+    law.count = 3;
+  } else if (!pk_geometry_is_rectangular(geometry)) {
+    law.smooth = 0;
+  }
+  if (polarization == PK_HY && problem->cell.lateral != PK_LATERAL_UNIFORM &&
+      pk_geometry_has_corners(geometry)) {
+    law.no_bar = NOTE_CORNERS;
+  }
+  return law;
+}
+
+/* Real part of the permittivity of a material at k0, moved into its known range. */
+static double permittivity_near(const pk_problem *problem, int material, double k0) {
+  pk_material_range range = pk_materials_range(problem->materials, material);
+  double wavelength = fmin(fmax(2 * PI / k0, range.shortest_um), range.longest_um);
+  pk_medium medium;
+  if (pk_materials_at(problem->materials, material, wavelength, problem->temperature_c, &medium) !=
+      PICKET_OK) {
+    return 1;
+  }
+  return creal(medium.permittivity);
+}
+
+/* Mean index of the structure: of the whole cell if it is closed, of the extent of the shapes if it
+ * is open. */
+static double mean_index(const pk_problem *problem, double k0) {
+  const pk_cell *cell = &problem->cell;
+  double low[2] = {-0.5 * cell->pitch_um, -0.5}, high[2] = {0.5 * cell->pitch_um, 0.5};
+  if (cell->lateral == PK_LATERAL_OPEN) {
+    pk_geometry_extent(cell->geometry, PK_V, &low[1], &high[1]);
+  } else if (cell->lateral != PK_LATERAL_UNIFORM) {
+    low[1] = -0.5 * cell->span_um;
+    high[1] = 0.5 * cell->span_um;
+  }
+  pk_box box;
+  double mean = 0;
+  if (pk_geometry_box(cell->geometry, low, high, &box) != PICKET_OK) {
+    return 1.5; /* any index of a solid: only a place to start */
+  }
+  for (int i = 0; i < box.count; i++) {
+    mean += box.fraction[i] * permittivity_near(problem, box.medium[i], k0);
+  }
+  return sqrt(mean);
+}
+
+/* Frequency of the Bragg condition k0 n = π/Λ, from the estimate if there is one. */
+static picket_status find_start(pk_survey *survey) {
+  picket_edge_estimate estimate;
+  double pitch = survey->problem->cell.pitch_um;
+  picket_status status = pk_estimate(survey->problem, survey->polarization, &estimate);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  if (isfinite(estimate.centre_um)) {
+    survey->k0_start = 2 * PI / estimate.centre_um;
+    return PICKET_OK;
+  }
+  double k0 = PI / (1.5 * pitch);
+  for (int i = 0; i < 4; i++) {
+    k0 = PI / (mean_index(survey->problem, k0) * pitch);
+  }
+  survey->k0_start = k0;
+  return PICKET_OK;
+}
+
+double pk_survey_decay(const pk_survey *survey, int side, double k, double k0) {
+  double pitch = survey->problem->cell.pitch_um;
+  double square =
+      k * k - k0 * k0 * permittivity_near(survey->problem, survey->side_medium[side], k0);
+  double slowest = 1 / (LONGEST_DECAY * pitch);
+  return 1 / sqrt(fmax(square, slowest * slowest));
+}
+
+double pk_survey_side_index(const pk_survey *survey, int side, double k0) {
+  return sqrt(permittivity_near(survey->problem, survey->side_medium[side], k0));
+}
+
+double pk_survey_light_line(const pk_survey *survey) {
+  double line = 0;
+  for (int side = 0; survey->open && side < 2; side++) {
+    double at;
+    if (pk_light_line(survey->problem, survey->side_medium[side], &at) == PICKET_OK && at > line) {
+      line = at;
+    }
+  }
+  return line;
+}
+
+picket_status pk_survey_take(const pk_problem *problem, pk_polarization polarization,
+                             pk_survey *out) {
+  pk_survey survey = {.problem = problem, .polarization = polarization};
+  const pk_cell *cell = &problem->cell;
+  survey.law = law_of(problem, polarization);
+  survey.steps_per_pitch =
+      cell->lateral == PK_LATERAL_UNIFORM ? STEPS_PER_PITCH_STACK : STEPS_PER_PITCH;
+  survey.open = cell->lateral == PK_LATERAL_OPEN;
+  if (survey.open && !pk_geometry_side_media(cell->geometry, PK_V, &survey.side_medium[0],
+                                             &survey.side_medium[1])) {
+    return pk_fail(problem->context, PICKET_ERROR_INPUT,
+                   "an open side of the cell holds more than one material");
+  }
+  picket_status status = find_start(&survey);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  for (int side = 0; side < 2; side++) {
+    survey.decay_um[side] =
+        pk_survey_decay(&survey, side, PI / cell->pitch_um, survey.k0_start);
+  }
+  *out = survey;
+  return PICKET_OK;
+}
+
+picket_status pk_survey_lay(const pk_survey *survey, const pk_lay_plan *plan, pk_cell_grid *out) {
+  const pk_cell *cell = &survey->problem->cell;
+  bool zero = plan->zero_walls;
+  if (cell->lateral == PK_LATERAL_ELECTRIC) {
+    zero = survey->polarization == PK_EY;
+  } else if (cell->lateral == PK_LATERAL_MAGNETIC) {
+    zero = survey->polarization == PK_HY;
+  }
+  pk_cell_grid_wish wish = {.steps_per_pitch = survey->steps_per_pitch,
+                            .mirror = plan->mirror,
+                            .zero_walls = zero,
+                            .decay_um = {survey->decay_um[0], survey->decay_um[1]},
+                            .reach = {plan->reach, plan->reach}};
+  return pk_cell_grid_lay(survey->problem->context, cell, &wish, out);
+}
