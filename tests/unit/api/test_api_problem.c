@@ -13,7 +13,7 @@
 /* clang-format on */
 
 #include "api/problem_private.h"
-#include "short_memory.h"
+#include "unit/short_memory.h"
 
 static const char text[] =
     "format: 1\n"

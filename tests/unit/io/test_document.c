@@ -5,7 +5,7 @@
 
 #include "io/document.h"
 #include "reading.h"
-#include "short_memory.h"
+#include "unit/short_memory.h"
 
 static const bad_text bad_texts[] = {
     REFUSED("1:1", "there is nothing in it", ""),

@@ -3,7 +3,7 @@
 
 #include "io/document.h"
 #include "reading.h"
-#include "short_memory.h"
+#include "unit/short_memory.h"
 
 static const char start[] =
     "format: 1\n"

@@ -6,7 +6,7 @@
 #include <string.h>
 
 #include "io/number.h"
-#include "near.h"
+#include "unit/near.h"
 
 static void takes_decimal_numbers(void **state) {
   (void)state;

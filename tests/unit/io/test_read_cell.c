@@ -1,6 +1,6 @@
 /* cell: the frame of one period. */
-#include "near.h"
 #include "reading.h"
+#include "unit/near.h"
 
 static const bad_text bad_cell[] = {
     REFUSED("2:6", "cell is empty, must be a block of keys", FORMAT "cell:\n"),

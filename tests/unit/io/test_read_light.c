@@ -1,6 +1,6 @@
 /* light: wavelengths in all their forms. */
-#include "near.h"
 #include "reading.h"
+#include "unit/near.h"
 
 static const bad_text bad_light[] = {
     REFUSED("2:8", "light is a value, must be a block of keys (wavelength_nm, polarization)",

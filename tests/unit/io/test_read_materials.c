@@ -2,8 +2,8 @@
 #include <complex.h>
 #include <stdlib.h>
 
-#include "near.h"
 #include "reading.h"
+#include "unit/near.h"
 
 static const bad_text bad_materials[] = {
     REFUSED("2:12", "materials must be a block of names", FORMAT "materials: [a]\n"),

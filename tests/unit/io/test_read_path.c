@@ -1,6 +1,6 @@
 /* path: points in the zone. */
-#include "near.h"
 #include "reading.h"
+#include "unit/near.h"
 
 static const bad_text bad_path[] = {
     REFUSED("2:7", "path is a block, must be a list of 2 to 1000 points",

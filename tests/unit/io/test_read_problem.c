@@ -4,7 +4,7 @@
 #include <stdlib.h>
 
 #include "reading.h"
-#include "short_memory.h"
+#include "unit/short_memory.h"
 
 static const bad_text bad_files[] = {
     REFUSED("1:1", "has no \"format\"", "name: a\n"),

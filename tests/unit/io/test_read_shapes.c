@@ -1,6 +1,6 @@
 /* shapes: where the paint of each kind lands, and what has no place in a cell. */
-#include "near.h"
 #include "reading.h"
+#include "unit/near.h"
 
 static const bad_text bad_shapes[] = {
     REFUSED("3:48", "cell.shapes has 0 elements, must be a list of 1 to 1000 shapes",

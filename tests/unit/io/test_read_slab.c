@@ -1,6 +1,6 @@
 /* slab: a stack of films, as a block and as a material. */
-#include "near.h"
 #include "reading.h"
+#include "unit/near.h"
 
 static const bad_text bad_slab[] = {
     REFUSED("3:33", "slab.films has 0 elements, must be a list of 1 to 1000 films",

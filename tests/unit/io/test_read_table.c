@@ -1,9 +1,9 @@
 /* CSV tables of an index: every line that is wrong is named by file, line and column. */
 #include <stdlib.h>
 
-#include "near.h"
 #include "reading.h"
-#include "short_memory.h"
+#include "unit/near.h"
+#include "unit/short_memory.h"
 
 #define HEADER "wavelength_nm,n,k\n"
 #define ROWS "1400,3.5,0\n1500,3.49,0\n1600,3.48,0.1\n"
