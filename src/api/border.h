@@ -1,0 +1,28 @@
+/* What every call from outside does first and last. For the files of this room. */
+#ifndef PK_API_BORDER_H
+#define PK_API_BORDER_H
+
+#include <picket/options.h>
+#include <picket/result.h>
+
+#include "study/problem.h"
+#include "study/result.h"
+
+/* Marks the context as in use and forgets its last message. PICKET_ERROR_BUSY (message untouched,
+ * for it belongs to the other thread) if a call is inside. */
+picket_status pk_border_enter(picket_context *context);
+/* Ends the call and passes its status on. */
+picket_status pk_border_leave(picket_context *context, picket_status status);
+
+/* A study that takes options. */
+typedef picket_status (*pk_study)(const pk_problem *problem, const picket_options *options,
+                                  picket_result **out);
+
+/* The whole of picket_<study>_find: checks, understands the problem, runs the study. */
+picket_status pk_border_study(picket_problem *problem, const picket_options *options,
+                              picket_result **out, pk_study study);
+
+/* Answers of a result: 0 if it is null or of another kind. */
+int pk_border_count(const picket_result *result, pk_result_kind kind);
+
+#endif

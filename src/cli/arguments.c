@@ -1,0 +1,217 @@
+/* The command line: options anywhere, the first other word is the command, the second the file.
+ * Values stand behind their option or after "=". Options with numbers come from the library's own
+ * table. */
+#include <stdio.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include "cli/cli.h"
+
+typedef enum option_kind {
+  OPTION_JSON,
+  OPTION_CSV,
+  OPTION_SET,
+  OPTION_QUIET,
+  OPTION_VERBOSE,
+  OPTION_HELP,
+  OPTION_VERSION,
+  OPTION_NUMBER, /* of picket_option_at */
+  OPTION_LATER   /* known, but not in this version */
+} option_kind;
+
+typedef struct option {
+  const char *name;
+  option_kind kind;
+  const char *value; /* what its value is, null for none */
+} option;
+
+static const option OPTIONS[] = {
+    {"json", OPTION_JSON, NULL},       {"csv", OPTION_CSV, "a file name"},
+    {"set", OPTION_SET, "KEY=VALUE"},  {"quiet", OPTION_QUIET, NULL},
+    {"verbose", OPTION_VERBOSE, NULL}, {"help", OPTION_HELP, NULL},
+    {"version", OPTION_VERSION, NULL}, {"figure", OPTION_LATER, NULL},
+    {"fields", OPTION_LATER, NULL},    {"jobs", OPTION_LATER, NULL},
+};
+enum { OPTION_COUNT = sizeof OPTIONS / sizeof OPTIONS[0], NAME_LENGTH = 40 };
+
+/* The option of a name of `length` letters. */
+static bool find_option(const char *name, size_t length, option *out) {
+  for (int i = 0; i < OPTION_COUNT; i++) {
+    if (strlen(OPTIONS[i].name) == length && strncmp(OPTIONS[i].name, name, length) == 0) {
+      *out = OPTIONS[i];
+      return true;
+    }
+  }
+  const picket_option_description *number;
+  for (int i = 0; (number = picket_option_at(i)) != NULL; i++) {
+    if (strlen(number->name) == length && strncmp(number->name, name, length) == 0) {
+      *out = (option){number->name, OPTION_NUMBER, "a number"};
+      return true;
+    }
+  }
+  return false;
+}
+
+static int unknown_option(const char *name, size_t length) {
+  char word[NAME_LENGTH];
+  pk_nearest near = {NULL, 0};
+  const picket_option_description *number;
+  snprintf(word, sizeof word, "%.*s", (int)(length < sizeof word ? length : sizeof word - 1), name);
+  for (int i = 0; i < OPTION_COUNT; i++) {
+    pk_nearest_try(&near, word, OPTIONS[i].name);
+  }
+  for (int i = 0; (number = picket_option_at(i)) != NULL; i++) {
+    pk_nearest_try(&near, word, number->name);
+  }
+  if (near.best) {
+    return pk_complain(PK_EXIT_WRONG, "there is no option --%s; did you mean --%s?", word,
+                       near.best);
+  }
+  return pk_complain(PK_EXIT_WRONG, "there is no option --%s; picket --help lists them", word);
+}
+
+static int set_number(pk_arguments *a, const char *name, const char *text) {
+  const picket_option_description *d = NULL;
+  for (int i = 0; (d = picket_option_at(i)) != NULL && strcmp(d->name, name) != 0; i++) {
+  }
+  char *end = NULL;
+  /* Decimal only: strtod would take hexadecimal, infinities and NaN too. */
+  bool decimal = text[0] != '\0' && text[strspn(text, "0123456789.eE+-")] == '\0';
+  double value = decimal ? strtod(text, &end) : 0;
+  if (!decimal || *end != '\0' || picket_options_set(&a->options, name, value) != PICKET_OK) {
+    return pk_complain(PK_EXIT_WRONG, "--%s is \"%.40s\", must be %s from %g to %g", name, text,
+                       d->whole ? "a whole number" : "a number", d->least, d->most);
+  }
+  return PK_EXIT_DONE;
+}
+
+static int add_set(pk_arguments *a, const char *text) {
+  const char *equals = strchr(text, '=');
+  if (!equals || equals == text) {
+    return pk_complain(PK_EXIT_WRONG,
+                       "--set is \"%.100s\", must be KEY=VALUE, e.g. cell.pitch_nm=310", text);
+  }
+  a->sets[a->set_count++] = text;
+  return PK_EXIT_DONE;
+}
+
+static int apply(pk_arguments *a, const option *o, const char *value) {
+  switch (o->kind) {
+    case OPTION_JSON: a->json = true; break;
+    case OPTION_QUIET: a->quiet = true; break;
+    case OPTION_VERBOSE: a->verbose = true; break;
+    case OPTION_HELP: a->help = true; break;
+    case OPTION_VERSION: a->version = true; break;
+    case OPTION_SET: return add_set(a, value);
+    case OPTION_NUMBER: return set_number(a, o->name, value);
+    case OPTION_LATER:
+      return pk_complain(PK_EXIT_WRONG, "--%s is not in this version (%s)", o->name,
+                         picket_version());
+    case OPTION_CSV:
+      if (value[0] == '\0' || strcmp(value, "-") == 0) {
+        return pk_complain(PK_EXIT_WRONG, "--csv is \"%s\", must be the name of a file", value);
+      }
+      a->csv = value;
+      break;
+  }
+  return PK_EXIT_DONE;
+}
+
+/* One option at argv[*i], which moves on to its last word. */
+static int parse_option(pk_arguments *a, int argc, char **argv, int *i) {
+  const char *name = argv[*i] + 2;
+  const char *equals = strchr(name, '=');
+  size_t length = equals ? (size_t)(equals - name) : strlen(name);
+  option o;
+  if (!find_option(name, length, &o)) {
+    return unknown_option(name, length);
+  }
+  const char *value = equals ? equals + 1 : NULL;
+  if (!o.value && value && o.kind != OPTION_LATER) {
+    return pk_complain(PK_EXIT_WRONG, "--%s takes no value", o.name);
+  }
+  if (o.value && !value) {
+    if (*i + 1 >= argc || strncmp(argv[*i + 1], "--", 2) == 0) {
+      return pk_complain(PK_EXIT_WRONG, "--%s needs %s behind it", o.name, o.value);
+    }
+    value = argv[++*i];
+  }
+  return apply(a, &o, value);
+}
+
+static int set_command(pk_arguments *a, const char *word) {
+  pk_nearest near = {NULL, 0};
+  for (const pk_command *c = pk_commands; c->name; c++) {
+    if (strcmp(c->name, word) == 0) {
+      a->command = c;
+      return c->find ? PK_EXIT_DONE
+                     : pk_complain(PK_EXIT_WRONG, "the command %s is not in this version (%s)",
+                                   word, picket_version());
+    }
+    pk_nearest_try(&near, word, c->name);
+  }
+  if (near.best) {
+    return pk_complain(PK_EXIT_WRONG, "there is no command \"%.40s\"; did you mean \"%s\"?", word,
+                       near.best);
+  }
+  return pk_complain(PK_EXIT_WRONG, "there is no command \"%.40s\"; picket --help lists them",
+                     word);
+}
+
+static int parse_word(pk_arguments *a, const char *word) {
+  if (!a->command) {
+    return set_command(a, word);
+  }
+  if (a->file) {
+    return pk_complain(PK_EXIT_WRONG, "\"%.100s\" is one file too many: picket %s takes one", word,
+                       a->command->name);
+  }
+  a->file = word;
+  return PK_EXIT_DONE;
+}
+
+static int check_whole(const pk_arguments *a) {
+  if (a->help || a->version) {
+    return PK_EXIT_DONE;
+  }
+  if (!a->command) {
+    return pk_complain(PK_EXIT_WRONG, "no pk_command given; picket --help lists them");
+  }
+  if (!a->file) {
+    return pk_complain(PK_EXIT_WRONG, "picket %s needs a problem file, or - for standard input",
+                       a->command->name);
+  }
+  if (a->quiet && a->verbose) {
+    return pk_complain(PK_EXIT_WRONG, "--quiet and --verbose cannot both be meant");
+  }
+  return PK_EXIT_DONE;
+}
+
+int pk_arguments_parse(int argc, char **argv, pk_arguments *out) {
+  *out = (pk_arguments){0};
+  picket_options_init(&out->options);
+  out->sets = calloc((size_t)argc + 1, sizeof *out->sets);
+  if (!out->sets) {
+    return pk_complain(PK_EXIT_MACHINE, "out of memory");
+  }
+  bool words_only = false; /* after "--" */
+  int status = PK_EXIT_DONE;
+  for (int i = 1; i < argc && status == PK_EXIT_DONE; i++) {
+    if (words_only || argv[i][0] != '-' || argv[i][1] == '\0') {
+      status = parse_word(out, argv[i]);
+    } else if (strcmp(argv[i], "--") == 0) {
+      words_only = true;
+    } else if (argv[i][1] == '-') {
+      status = parse_option(out, argc, argv, &i);
+    } else {
+      status =
+          pk_complain(PK_EXIT_WRONG, "there is no option %.40s; options have two dashes", argv[i]);
+    }
+  }
+  return status == PK_EXIT_DONE ? check_whole(out) : status;
+}
+
+void pk_arguments_free(pk_arguments *arguments) {
+  free(arguments->sets);
+  arguments->sets = NULL;
+}

@@ -1,0 +1,97 @@
+/* The command-line tool: public headers of the library only.
+ *
+ * main.c parses (arguments.c), opens the problem (session.c), asks the command's question, and
+ * writes the answer: as CSV (csv_file.c), as JSON or as text (cmd_<name>.c with text.c). */
+#ifndef PICKET_CLI_H
+#define PICKET_CLI_H
+
+#include <picket.h>
+#include <stdbool.h>
+
+/* The contract of the command line. */
+enum {
+  PK_EXIT_DONE = 0,
+  PK_EXIT_SHORT = 1,   /* the numbers could not be obtained to the accuracy asked */
+  PK_EXIT_WRONG = 2,   /* the command line or the file */
+  PK_EXIT_MACHINE = 3, /* memory, disk, a defect */
+  PK_EXIT_INTERRUPTED = 130
+};
+
+typedef struct pk_command pk_command;
+
+typedef struct pk_arguments {
+  const pk_command *command; /* null with --version and --help alone */
+  const char *file;          /* null until given; "-" is standard input */
+  bool json, quiet, verbose, help, version;
+  const char *csv; /* or null */
+  picket_options options;
+  int set_count;
+  const char **sets; /* [set_count] KEY=VALUE, borrowed from argv; the array is owned */
+} pk_arguments;
+
+/* One row of the table of commands in main.c. */
+struct pk_command {
+  const char *name;
+  const char *answers; /* what the command is for, one line */
+  const char *needs;   /* in the file */
+  /* The question and its answer for people; null for what this version does not have. */
+  picket_status (*find)(picket_problem *problem, const picket_options *options,
+                        picket_result **out);
+  void (*print)(const pk_arguments *arguments, const picket_result *result);
+};
+
+extern const pk_command pk_commands[]; /* ends with an empty row */
+
+void pk_edges_print(const pk_arguments *arguments, const picket_result *result);
+void pk_bands_print(const pk_arguments *arguments, const picket_result *result);
+void pk_slab_print(const pk_arguments *arguments, const picket_result *result);
+picket_status pk_check_find(picket_problem *problem, const picket_options *options,
+                            picket_result **out);
+void pk_check_print(const pk_arguments *arguments, const picket_result *result);
+
+/* ---- arguments.c ---- */
+
+/* PK_EXIT_DONE, or the exit status after saying what is wrong. */
+int pk_arguments_parse(int argc, char **argv, pk_arguments *out);
+void pk_arguments_free(pk_arguments *arguments);
+
+/* ---- help.c ---- */
+
+void pk_help_print(const pk_arguments *arguments);
+
+/* ---- words.c ---- */
+
+/* The word nearest to `word`, null if none is near. */
+typedef struct pk_nearest {
+  const char *best;
+  int distance;
+} pk_nearest;
+/* Takes one more candidate into account; start with {NULL, 0}. */
+void pk_nearest_try(pk_nearest *nearest, const char *word, const char *candidate);
+
+/* ---- session.c ---- */
+
+/* "picket: " and a sentence on standard error; returns `status`. */
+int pk_complain(int status, const char *format, ...) __attribute__((format(printf, 2, 3)));
+
+/* The exit status that a status of the library leads to. */
+int pk_exit_of(picket_status status);
+
+/* A context that logs, shows progress and stops at SIGINT, as the arguments say. */
+picket_status pk_session_open(const pk_arguments *arguments, picket_context **out);
+/* The problem of the arguments with every --set. An exit status; complains. */
+int pk_session_problem(const pk_arguments *arguments, picket_context *context,
+                       picket_problem **out);
+/* Takes the line of progress off the terminal. */
+void pk_session_quiet(void);
+
+/* ---- csv_file.c ---- */
+
+/* A file that appears under its name only when it is whole. */
+typedef struct pk_csv_file pk_csv_file;
+/* Opens it before the work, so that a path that cannot be written is known at once. */
+int pk_csv_open(const char *path, pk_csv_file **out);
+int pk_csv_finish(pk_csv_file *file, const char *text); /* writes, renames and frees */
+void pk_csv_drop(pk_csv_file *file);                    /* leaves nothing behind; accepts null */
+
+#endif

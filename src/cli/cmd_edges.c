@@ -1,0 +1,87 @@
+/* edges: how clear the operating band is, then the stop bands, then how good the estimate was. */
+#include <math.h>
+#include <stdio.h>
+
+#include "cli/text.h"
+
+static const double NM_PER_UM = 1000;
+
+static void print_where(const picket_operating_band *band) {
+  if (band->from_um == band->to_um) {
+    printf("at %.10g nm", NM_PER_UM * band->from_um);
+  } else {
+    printf("from %.10g to %.10g nm", NM_PER_UM * band->from_um, NM_PER_UM * band->to_um);
+  }
+}
+
+static void print_operating(const picket_operating_band *band, const char *word, pk_notes *notes) {
+  static const char *const what[] = {
+      [PICKET_REGIME_UNKNOWN] = "regime unknown",
+      [PICKET_REGIME_SUBWAVELENGTH] = "subwavelength",
+      [PICKET_REGIME_STOP_BAND] = "meets a stop band",
+      [PICKET_REGIME_RADIATING] = "radiating",
+  };
+  if (!band->given) {
+    printf("%s: no operating band given (light.wavelength_nm)\n", word);
+    return;
+  }
+  printf("%s: %s ", word, what[band->regime]);
+  print_where(band);
+  pk_notes_add(notes, band->clearance_um);
+  printf("; clearance %s nm%s\n", pk_quantity_show(band->clearance_um, NM_PER_UM).text,
+         band->clearance_um.value < 0 ? " (negative: it reaches into or past the stop band)" : "");
+}
+
+static void print_stop_bands(const picket_edges_answer *answer, pk_notes *notes) {
+  pk_text_table t = {.columns = 5};
+  pk_table_cell(&t, "order");
+  pk_table_cell(&t, "short edge, nm");
+  pk_table_cell(&t, "long edge, nm");
+  pk_table_cell(&t, "attenuation, dB/pitch");
+  pk_table_cell(&t, "edges confined");
+  for (int i = 0; i < answer->band_count; i++) {
+    const picket_stop_band *band = &answer->bands[i];
+    pk_table_cell(&t, "%d", band->order);
+    pk_table_quantity(&t, notes, band->short_um, NM_PER_UM);
+    pk_table_quantity(&t, notes, band->long_um, NM_PER_UM);
+    pk_table_quantity(&t, notes, band->attenuation_db_per_pitch, 1);
+    pk_table_cell(&t, "%s",
+                  band->short_confined && band->long_confined ? "both"
+                  : band->long_confined                       ? "long only"
+                  : band->short_confined                      ? "short only"
+                                                              : "neither");
+  }
+  pk_table_print(&t);
+}
+
+static void print_estimate(const picket_edge_estimate *estimate, pk_notes *notes) {
+  if (!estimate->method) {
+    return;
+  }
+  printf("  estimate (%s): ", estimate->method);
+  if (isnan(estimate->centre_um)) {
+    printf("no centre where the materials are known\n");
+    return;
+  }
+  printf("centre %.6g nm", NM_PER_UM * estimate->centre_um);
+  if (!isnan(estimate->error_um.value)) {
+    printf(", off by %s nm", pk_quantity_show(estimate->error_um, NM_PER_UM).text);
+  }
+  pk_notes_add(notes, estimate->error_um);
+  printf("\n");
+}
+
+void pk_edges_print(const pk_arguments *arguments, const picket_result *result) {
+  pk_notes seen = {0};
+  for (int i = 0; i < picket_edges_count(result); i++) {
+    picket_edges_answer answer;
+    if (picket_edges_get(result, i, &answer) == PICKET_OK) {
+      print_operating(&answer.operating, answer.polarization == PICKET_EY ? "ey" : "hy", &seen);
+      print_stop_bands(&answer, &seen);
+      print_estimate(&answer.estimate, &seen);
+      printf("\n");
+    }
+  }
+  pk_notes_print(&seen);
+  pk_cautions_print(arguments);
+}

@@ -1,0 +1,53 @@
+/* --help: of the tool, or of one command. Numbers come from the library's table of options. */
+#include <stdio.h>
+
+#include "cli/cli.h"
+
+static void print_options(void) {
+  printf("Options:\n");
+  const picket_option_description *d;
+  for (int i = 0; (d = picket_option_at(i)) != NULL; i++) {
+    printf("  --%-10s %s: %g to %g, usually %g\n", d->name, d->help, d->least, d->most, d->usual);
+  }
+  printf(
+      "  --set KEY=VALUE  override one value of the file, e.g. cell.pitch_nm=310; may be repeated\n"
+      "  --json           one JSON document on standard output, nothing else\n"
+      "  --csv FILE       the table of the result, comma-separated\n"
+      "  --quiet          the answer only\n"
+      "  --verbose        grids and solver settings on standard error\n"
+      "  --version        which version this is\n"
+      "  --help           this text, or that of a command\n\n");
+}
+
+static void print_status(void) {
+  printf(
+      "Exit status: 0 done; 1 the numbers could not be obtained to the accuracy asked (what there\n"
+      "is, is printed and marked); 2 the command line or the file is wrong; 3 the machine failed\n"
+      "(memory, or a file or pipe that cannot be written); 130 interrupted.\n");
+}
+
+static void print_tool(void) {
+  printf("picket %s: modes and band edges of segmented optical waveguides\n\n", picket_version());
+  printf("Usage: picket COMMAND [OPTIONS] FILE.yaml     (- reads standard input)\n\nCommands:\n");
+  for (const pk_command *c = pk_commands; c->name; c++) {
+    if (c->find) {
+      printf("  %-8s %s\n", c->name, c->answers);
+    }
+  }
+  printf("\n");
+  print_options();
+  print_status();
+}
+
+void pk_help_print(const pk_arguments *arguments) {
+  const pk_command *c = arguments->command;
+  if (!c) {
+    print_tool();
+    return;
+  }
+  printf("picket %s: %s\n\nUsage: picket %s [OPTIONS] FILE.yaml     (- reads standard input)\n",
+         c->name, c->answers, c->name);
+  printf("Needs in the file: %s\n\n", c->needs);
+  print_options();
+  print_status();
+}

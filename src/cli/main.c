@@ -1,0 +1,137 @@
+/* The tool: one question about one problem file. See cli.h. */
+#include <errno.h>
+#include <fcntl.h>
+#include <signal.h>
+#include <stdio.h>
+#include <string.h>
+#include <unistd.h>
+
+#include "cli/cli.h"
+
+const pk_command pk_commands[] = {
+    {"check", "is the file sound? what was understood, with derived values", "anything",
+     pk_check_find, pk_check_print},
+    {"edges", "the stop bands, how clear of them the operating band is, the estimate's error",
+     "cell", picket_edges_find, pk_edges_print},
+    {"bands", "bands over a path of wavenumbers, and the gaps between them", "cell",
+     picket_bands_find, pk_bands_print},
+    {"slab", "guided modes of a stack of films, analytic", "slab, light", picket_slab_find,
+     pk_slab_print},
+    {"index", NULL, NULL, NULL, NULL},
+    {"modes", NULL, NULL, NULL, NULL},
+    {"aim", NULL, NULL, NULL, NULL},
+    {"tolerance", NULL, NULL, NULL, NULL},
+    {"match", NULL, NULL, NULL, NULL},
+    {"taper", NULL, NULL, NULL, NULL},
+    {"report", NULL, NULL, NULL, NULL},
+    {"start", NULL, NULL, NULL, NULL},
+    {NULL, NULL, NULL, NULL, NULL},
+};
+
+/* Standard output to the last byte; a full disk shows only here. */
+static int finish_output(int status) {
+  if (fflush(stdout) != 0 || ferror(stdout)) {
+    return pk_complain(PK_EXIT_MACHINE, "standard output cannot be written: %s", strerror(errno));
+  }
+  return status;
+}
+
+static int write_csv(pk_csv_file *file, picket_context *context, picket_result *result) {
+  const char *text = picket_result_csv(result);
+  if (!text) {
+    pk_csv_drop(file);
+    return pk_complain(PK_EXIT_MACHINE, "%s", picket_context_message(context));
+  }
+  return pk_csv_finish(file, text);
+}
+
+static int print_answer(const pk_arguments *a, picket_context *context, picket_result *result) {
+  if (!a->json) {
+    a->command->print(a, result);
+  } else {
+    const char *text = picket_result_json(result);
+    if (!text) {
+      return pk_complain(PK_EXIT_MACHINE, "%s", picket_context_message(context));
+    }
+    printf("%s\n", text);
+  }
+  return PK_EXIT_DONE;
+}
+
+/* Takes over the CSV file, which may be null. The answer is printed even if the file fails: it may
+ * have taken long to get. */
+static int deliver(const pk_arguments *a, picket_context *context, picket_result *result,
+                   pk_csv_file *csv) {
+  int file_status = csv ? write_csv(csv, context, result) : PK_EXIT_DONE;
+  int status = print_answer(a, context, result);
+  if (status == PK_EXIT_DONE && !picket_result_complete(result)) {
+    status =
+        pk_complain(PK_EXIT_SHORT, "the result is partial: %s", picket_result_shortfall(result));
+  }
+  status = finish_output(status);
+  return file_status != PK_EXIT_DONE ? file_status : status;
+}
+
+static int answer(const pk_arguments *a, picket_context *context) {
+  picket_problem *problem = NULL;
+  picket_result *result = NULL;
+  pk_csv_file *csv = NULL;
+  int status = pk_session_problem(a, context, &problem);
+  if (status == PK_EXIT_DONE && a->csv) {
+    status = pk_csv_open(a->csv, &csv);
+  }
+  if (status == PK_EXIT_DONE) {
+    picket_status found = a->command->find(problem, &a->options, &result);
+    pk_session_quiet();
+    if (found != PICKET_OK) {
+      status = pk_complain(pk_exit_of(found), "%s", picket_context_message(context));
+      pk_csv_drop(csv);
+    } else {
+      status = deliver(a, context, result, csv);
+    }
+  }
+  picket_result_free(result);
+  picket_problem_free(problem);
+  return status;
+}
+
+static int run(const pk_arguments *a) {
+  if (a->version) {
+    printf("picket %s\n", picket_version());
+    return finish_output(PK_EXIT_DONE);
+  }
+  if (a->help) {
+    pk_help_print(a);
+    return finish_output(PK_EXIT_DONE);
+  }
+  picket_context *context = NULL;
+  picket_status opened = pk_session_open(a, &context);
+  if (opened != PICKET_OK) {
+    return pk_complain(pk_exit_of(opened), "out of memory");
+  }
+  int status = answer(a, context);
+  picket_context_free(context);
+  return status;
+}
+
+/* A standard stream that the caller closed would give its number to the next file opened, and what
+ * is printed would land in there. An unwritable one takes its place instead. */
+static void hold_streams(void) {
+  for (int descriptor = 0; descriptor <= STDERR_FILENO; descriptor++) {
+    if (fcntl(descriptor, F_GETFD) < 0 && errno == EBADF) {
+      (void)!open("/dev/null", descriptor == STDERR_FILENO ? O_WRONLY : O_RDONLY);
+    }
+  }
+}
+
+int main(int argc, char **argv) {
+  hold_streams();
+  signal(SIGPIPE, SIG_IGN); /* a closed pipe is a failed write like any other */
+  pk_arguments a;
+  int status = pk_arguments_parse(argc, argv, &a);
+  if (status == PK_EXIT_DONE) {
+    status = run(&a);
+  }
+  pk_arguments_free(&a);
+  return status;
+}

@@ -1,0 +1,42 @@
+/* Answers for people: quantities with as many digits as their bar allows, and tables. */
+#ifndef PICKET_CLI_TEXT_H
+#define PICKET_CLI_TEXT_H
+
+#include "cli/cli.h"
+
+enum { PK_QUANTITY_TEXT = 96 };
+
+typedef struct pk_quantity_text {
+  char text[PK_QUANTITY_TEXT];
+} pk_quantity_text;
+
+/* "1117.870 ± 0.034"; "?" stands for a bar that is missing, "none" for a value. */
+pk_quantity_text pk_quantity_show(picket_quantity quantity, double scale);
+
+/* Notes of quantities that lack something, each said once. */
+enum { PK_NOTES = 16 };
+typedef struct pk_notes {
+  int count;
+  const char *text[PK_NOTES];
+} pk_notes;
+void pk_notes_add(pk_notes *notes, picket_quantity quantity);
+void pk_notes_print(const pk_notes *notes);
+
+/* A table whose columns are as wide as their widest cell, measured in characters. */
+typedef struct pk_text_table {
+  int columns;
+  int count, capacity; /* cells */
+  char **cells;
+  bool failed; /* memory ran out */
+} pk_text_table;
+void pk_table_cell(pk_text_table *table, const char *format, ...)
+    __attribute__((format(printf, 2, 3)));
+void pk_table_quantity(pk_text_table *table, pk_notes *notes, picket_quantity quantity,
+                       double scale);
+/* Prints it, nothing if there is only a head, and frees it. */
+void pk_table_print(pk_text_table *table);
+
+/* What a reader must know before using the numbers of a cell. */
+void pk_cautions_print(const pk_arguments *arguments);
+
+#endif

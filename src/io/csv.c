@@ -1,0 +1,224 @@
+/* Results as comma-separated values: RFC 4180 fields, one line feed after each row. See write.h. */
+#include <math.h>
+#include <stdio.h>
+#include <string.h>
+
+#include "base/memory.h"
+#include "io/number.h"
+#include "io/write.h"
+
+enum { FIRST_BYTES = 4096, COLUMN_NAME = 40 };
+
+/* A text being written. After a failure everything further is dropped. */
+typedef struct sheet {
+  picket_context *context;
+  char *text;
+  size_t used, capacity;
+  picket_status status;
+  bool fresh; /* at the start of a row */
+} sheet;
+
+static void append(sheet *s, const char *bytes, size_t count) {
+  if (s->status == PICKET_OK && s->used + count + 1 > s->capacity) {
+    size_t capacity = 2 * (s->used + count + 1) + FIRST_BYTES;
+    char *larger = pk_regrow(s->context, s->text, s->used, capacity, 1);
+    if (larger) {
+      s->text = larger;
+      s->capacity = capacity;
+    } else {
+      s->status = PICKET_ERROR_MEMORY;
+    }
+  }
+  if (s->status == PICKET_OK) {
+    memcpy(s->text + s->used, bytes, count);
+    s->used += count;
+    s->text[s->used] = '\0';
+  }
+}
+
+/* One field; null is an empty one. Quotes go around a text with a comma, a quote or a line break,
+ * or with a space at an end, and are doubled inside. */
+static void put_text(sheet *s, const char *text) {
+  text = text ? text : "";
+  size_t length = strlen(text);
+  bool quoted = strpbrk(text, ",\"\r\n") != NULL || (length > 0 && text[0] == ' ') ||
+                (length > 0 && text[length - 1] == ' ');
+  append(s, ",", s->fresh ? 0 : 1);
+  s->fresh = false;
+  append(s, "\"", quoted);
+  for (size_t i = 0; i < length; i++) {
+    append(s, "\"", text[i] == '"');
+    append(s, text + i, 1);
+  }
+  append(s, "\"", quoted);
+}
+
+static void put_number(sheet *s, double value) {
+  char digits[PK_NUMBER_TEXT] = "";
+  if (isfinite(value)) {
+    pk_number_write(value, digits);
+  }
+  put_text(s, digits);
+}
+
+static void put_quantity(sheet *s, picket_quantity q, double scale) {
+  put_number(s, scale * q.value);
+  put_number(s, scale * q.uncertainty);
+}
+
+static void put_flag(sheet *s, bool flag) {
+  put_text(s, flag ? "true" : "false");
+}
+
+static void end_row(sheet *s) {
+  append(s, "\n", 1);
+  s->fresh = true;
+}
+
+static void put_header(sheet *s, const char *const *names) {
+  for (int i = 0; names[i]; i++) {
+    put_text(s, names[i]);
+  }
+}
+
+static void put_operating(sheet *s, const picket_operating_band *band) {
+  const picket_quantity none = {NAN, NAN, NULL};
+  put_number(s, band->given ? PK_NM_OF_UM * band->from_um : NAN);
+  put_number(s, band->given ? PK_NM_OF_UM * band->to_um : NAN);
+  put_text(s, band->given ? picket_regime_name(band->regime) : NULL);
+  put_quantity(s, band->given ? band->clearance_um : none, PK_NM_OF_UM);
+}
+
+static void write_edges(sheet *s, const picket_result *result) {
+  static const char *const header[] = {"polarization",
+                                       "order",
+                                       "short_nm",
+                                       "short_uncertainty_nm",
+                                       "short_confined",
+                                       "long_nm",
+                                       "long_uncertainty_nm",
+                                       "long_confined",
+                                       "attenuation_db_per_pitch",
+                                       "attenuation_uncertainty_db_per_pitch",
+                                       "operating_from_nm",
+                                       "operating_to_nm",
+                                       "regime",
+                                       "clearance_nm",
+                                       "clearance_uncertainty_nm",
+                                       "estimate_centre_nm",
+                                       "estimate_error_nm",
+                                       "estimate_error_uncertainty_nm",
+                                       NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int i = 0; i < result->count; i++) {
+    const picket_edges_answer *answer = &result->edges[i];
+    for (int b = 0; b < answer->band_count; b++) {
+      const picket_stop_band *band = &answer->bands[b];
+      put_text(s, pk_word_polarization(answer->polarization));
+      put_number(s, band->order);
+      put_quantity(s, band->short_um, PK_NM_OF_UM);
+      put_flag(s, band->short_confined);
+      put_quantity(s, band->long_um, PK_NM_OF_UM);
+      put_flag(s, band->long_confined);
+      put_quantity(s, band->attenuation_db_per_pitch, 1);
+      put_operating(s, &answer->operating);
+      put_number(s, PK_NM_OF_UM * answer->estimate.centre_um);
+      put_quantity(s, answer->estimate.error_um, PK_NM_OF_UM);
+      end_row(s);
+    }
+  }
+}
+
+static void put_frequencies(sheet *s, const picket_bands_answer *answer, int point, int columns) {
+  const picket_quantity none = {NAN, NAN, NULL};
+  for (int b = 0; b < columns; b++) {
+    put_quantity(s, b < answer->band_count ? answer->points[point].frequency[b] : none, 1);
+  }
+}
+
+static void write_bands(sheet *s, const picket_result *result) {
+  static const char *const header[] = {
+      "polarization", "point", "label", "kz_pi_per_pitch", "kx_pi_per_lateral_span", NULL};
+  int columns = 0;
+  for (int i = 0; i < result->count; i++) {
+    columns = result->bands[i].band_count > columns ? result->bands[i].band_count : columns;
+  }
+  put_header(s, header);
+  for (int b = 1; b <= columns; b++) {
+    char name[COLUMN_NAME];
+    snprintf(name, sizeof name, "band_%d_pitch_per_wavelength", b);
+    put_text(s, name);
+    snprintf(name, sizeof name, "band_%d_uncertainty", b);
+    put_text(s, name);
+  }
+  end_row(s);
+  for (int i = 0; i < result->count; i++) {
+    const picket_bands_answer *answer = &result->bands[i];
+    for (int p = 0; p < answer->point_count; p++) {
+      put_text(s, pk_word_polarization(answer->polarization));
+      put_number(s, p);
+      put_text(s, answer->points[p].label);
+      put_number(s, answer->points[p].kz);
+      put_number(s, answer->points[p].kx);
+      put_frequencies(s, answer, p, columns);
+      end_row(s);
+    }
+  }
+}
+
+static void write_slab_point(sheet *s, const picket_slab_answer *answer,
+                             const picket_slab_point *point) {
+  for (int m = 0; m < point->mode_count; m++) {
+    put_text(s, pk_word_slab_polarization(answer->polarization));
+    put_number(s, PK_NM_OF_UM * point->wavelength_um);
+    put_number(s, point->modes[m].order);
+    put_quantity(s, point->modes[m].index, 1);
+    put_quantity(s, point->modes[m].group_index, 1);
+    end_row(s);
+  }
+}
+
+static void write_slab(sheet *s, const picket_result *result) {
+  static const char *const header[] = {
+      "polarization", "wavelength_nm",           "order", "index", "index_uncertainty",
+      "group_index",  "group_index_uncertainty", NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int i = 0; i < result->count; i++) {
+    for (int p = 0; p < result->slab[i].point_count; p++) {
+      write_slab_point(s, &result->slab[i], &result->slab[i].points[p]);
+    }
+  }
+}
+
+static void write_summary(sheet *s, const picket_result *result) {
+  static const char *const header[] = {"name", "value", "unit", "text", NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int i = 0; i < result->count; i++) {
+    const pk_summary_item *item = &result->summary[i];
+    put_text(s, item->name);
+    put_number(s, item->text ? NAN : item->value);
+    put_text(s, item->unit);
+    put_text(s, item->text);
+    end_row(s);
+  }
+}
+
+picket_status pk_csv_write(const picket_result *result, char **out) {
+  static void (*const writers[])(sheet *, const picket_result *) = {
+      [PK_RESULT_EDGES] = write_edges,
+      [PK_RESULT_BANDS] = write_bands,
+      [PK_RESULT_SLAB] = write_slab,
+      [PK_RESULT_SUMMARY] = write_summary,
+  };
+  sheet s = {.context = result->context, .status = PICKET_OK, .fresh = true};
+  writers[result->kind](&s, result);
+  if (s.status != PICKET_OK) {
+    pk_free(result->context, s.text);
+    return s.status;
+  }
+  *out = s.text;
+  return PICKET_OK;
+}

@@ -1,0 +1,227 @@
+/* Results as JSON, through Jansson.
+ *
+ * Objects are built from the inside out. Every function that makes a value returns null when memory
+ * is out, and putting a null somewhere marks the whole document as failed, so nothing in between
+ * needs a check. Jansson's own memory comes from malloc: its allocator is one for the whole
+ * process, so it is not ours to change. The finished text is copied into the context's memory. */
+#include <jansson.h>
+#include <math.h>
+#include <stdbool.h>
+
+#include "base/memory.h"
+#include "io/write.h"
+
+/* 17 digits: reading gives back the same double. */
+enum { LAYOUT = JSON_INDENT(2) | JSON_REAL_PRECISION(17) };
+
+const char *pk_word_polarization(picket_polarization polarization) {
+  return polarization == PICKET_EY ? "ey" : "hy";
+}
+
+const char *pk_word_slab_polarization(picket_slab_polarization polarization) {
+  return polarization == PICKET_TE ? "te" : "tm";
+}
+
+/* Takes over `value`; false (and `object` to be thrown away) when something is null. */
+static bool put(json_t *object, const char *key, json_t *value) {
+  return json_object_set_new(object, key, value) == 0;
+}
+
+/* The object if all went well, else null. */
+static json_t *finish(json_t *value, bool good) {
+  if (!good) {
+    json_decref(value);
+    return NULL;
+  }
+  return value;
+}
+
+static json_t *number(double value) {
+  return isfinite(value) ? json_real(value) : json_null();
+}
+
+static json_t *text(const char *value) {
+  return value ? json_string(value) : json_null();
+}
+
+static json_t *quantity(picket_quantity q, double scale) {
+  json_t *object = json_object();
+  bool missing = !isfinite(q.value) || !isfinite(q.uncertainty);
+  bool good = put(object, "value", number(scale * q.value)) &&
+              put(object, "uncertainty", number(scale * q.uncertainty)) &&
+              (!missing || put(object, "note", text(q.note)));
+  return finish(object, good);
+}
+
+/* An array of `count` elements made by `make(user, i)`. */
+static json_t *array(int count, json_t *(*make)(const void *user, int i), const void *user) {
+  json_t *list = json_array();
+  bool good = list != NULL;
+  for (int i = 0; good && i < count; i++) {
+    good = json_array_append_new(list, make(user, i)) == 0;
+  }
+  return finish(list, good);
+}
+
+/* ---- edges ---- */
+
+static json_t *stop_band(const void *user, int i) {
+  const picket_stop_band *band = (const picket_stop_band *)user + i;
+  json_t *object = json_object();
+  bool good =
+      put(object, "order", json_integer(band->order)) &&
+      put(object, "short_nm", quantity(band->short_um, PK_NM_OF_UM)) &&
+      put(object, "long_nm", quantity(band->long_um, PK_NM_OF_UM)) &&
+      put(object, "attenuation_db_per_pitch", quantity(band->attenuation_db_per_pitch, 1)) &&
+      put(object, "confined", json_boolean(band->short_confined && band->long_confined)) &&
+      put(object, "short_confined", json_boolean(band->short_confined)) &&
+      put(object, "long_confined", json_boolean(band->long_confined));
+  return finish(object, good);
+}
+
+static json_t *operating(const picket_operating_band *band) {
+  if (!band->given) {
+    return json_null();
+  }
+  json_t *object = json_object();
+  bool good = put(object, "from_nm", number(PK_NM_OF_UM * band->from_um)) &&
+              put(object, "to_nm", number(PK_NM_OF_UM * band->to_um)) &&
+              put(object, "regime", text(picket_regime_name(band->regime))) &&
+              put(object, "clearance_nm", quantity(band->clearance_um, PK_NM_OF_UM));
+  return finish(object, good);
+}
+
+static json_t *estimate(const picket_edge_estimate *e) {
+  json_t *object = json_object();
+  bool good = put(object, "method", text(e->method)) &&
+              put(object, "centre_nm", number(PK_NM_OF_UM * e->centre_um)) &&
+              put(object, "error_nm", quantity(e->error_um, PK_NM_OF_UM));
+  return finish(object, good);
+}
+
+static json_t *edges_answer(const void *user, int i) {
+  const picket_edges_answer *answer = ((const picket_result *)user)->edges + i;
+  json_t *object = json_object();
+  bool good = put(object, "polarization", text(pk_word_polarization(answer->polarization))) &&
+              put(object, "stop_bands", array(answer->band_count, stop_band, answer->bands)) &&
+              put(object, "operating", operating(&answer->operating)) &&
+              put(object, "estimate", estimate(&answer->estimate));
+  return finish(object, good);
+}
+
+/* ---- bands ---- */
+
+static json_t *frequency(const void *user, int i) {
+  return quantity(((const picket_quantity *)user)[i], 1);
+}
+
+static json_t *band_point(const void *user, int i) {
+  const picket_bands_answer *answer = user;
+  const picket_band_point *point = &answer->points[i];
+  json_t *object = json_object();
+  json_t *k = json_array();
+  bool good = json_array_append_new(k, number(point->kz)) == 0 &&
+              json_array_append_new(k, number(point->kx)) == 0;
+  good = put(object, "k", k) && good && put(object, "label", text(point->label)) &&
+         put(object, "frequency", array(answer->band_count, frequency, point->frequency));
+  return finish(object, good);
+}
+
+static json_t *gap(const void *user, int i) {
+  const picket_gap *g = (const picket_gap *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "below", json_integer(g->below)) &&
+              put(object, "from", quantity(g->from, 1)) && put(object, "to", quantity(g->to, 1));
+  return finish(object, good);
+}
+
+static json_t *bands_answer(const void *user, int i) {
+  const picket_bands_answer *answer = ((const picket_result *)user)->bands + i;
+  json_t *object = json_object();
+  bool good = put(object, "polarization", text(pk_word_polarization(answer->polarization))) &&
+              put(object, "points", array(answer->point_count, band_point, answer)) &&
+              put(object, "gaps", array(answer->gap_count, gap, answer->gaps));
+  return finish(object, good);
+}
+
+/* ---- slab ---- */
+
+static json_t *slab_mode(const void *user, int i) {
+  const picket_slab_mode *mode = (const picket_slab_mode *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "order", json_integer(mode->order)) &&
+              put(object, "index", quantity(mode->index, 1)) &&
+              put(object, "group_index", quantity(mode->group_index, 1));
+  return finish(object, good);
+}
+
+static json_t *slab_point(const void *user, int i) {
+  const picket_slab_point *point = (const picket_slab_point *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "wavelength_nm", number(PK_NM_OF_UM * point->wavelength_um)) &&
+              put(object, "modes", array(point->mode_count, slab_mode, point->modes));
+  return finish(object, good);
+}
+
+static json_t *slab_answer(const void *user, int i) {
+  const picket_slab_answer *answer = ((const picket_result *)user)->slab + i;
+  json_t *object = json_object();
+  bool good = put(object, "polarization", text(pk_word_slab_polarization(answer->polarization))) &&
+              put(object, "points", array(answer->point_count, slab_point, answer->points));
+  return finish(object, good);
+}
+
+/* ---- summary ---- */
+
+static json_t *summary_item(const void *user, int i) {
+  const pk_summary_item *item = ((const picket_result *)user)->summary + i;
+  json_t *object = json_object();
+  bool good = put(object, "name", text(item->name)) &&
+              put(object, "value", item->text ? json_null() : number(item->value)) &&
+              put(object, "unit", text(item->text ? NULL : item->unit)) &&
+              put(object, "text", text(item->text));
+  return finish(object, good);
+}
+
+/* ---- the document ---- */
+
+typedef struct writer {
+  const char *command;
+  json_t *(*element)(const void *user, int i);
+} writer;
+
+static const writer WRITER[] = {
+    [PK_RESULT_EDGES] = {"edges", edges_answer},
+    [PK_RESULT_BANDS] = {"bands", bands_answer},
+    [PK_RESULT_SLAB] = {"slab", slab_answer},
+    [PK_RESULT_SUMMARY] = {"check", summary_item},
+};
+
+static json_t *document(const picket_result *result) {
+  const writer *w = &WRITER[result->kind];
+  json_t *object = json_object();
+  bool good = put(object, "picket", text(picket_version())) &&
+              put(object, "command", text(w->command)) && put(object, "name", text(result->name)) &&
+              put(object, "accuracy", number(result->accuracy)) &&
+              put(object, "complete", json_boolean(result->complete)) &&
+              put(object, "shortfall", text(result->shortfall)) &&
+              put(object, "results", array(result->count, w->element, result));
+  return finish(object, good);
+}
+
+picket_status pk_json_write(const picket_result *result, char **out) {
+  json_t *object = document(result);
+  size_t length = object ? json_dumpb(object, NULL, 0, LAYOUT) : 0;
+  char *copy = length > 0 ? PK_NEW(result->context, length + 1, char) : NULL;
+  if (copy) {
+    (void)json_dumpb(object, copy, length, LAYOUT);
+  }
+  json_decref(object);
+  if (!copy) {
+    return length > 0 ? PICKET_ERROR_MEMORY
+                      : pk_fail(result->context, PICKET_ERROR_MEMORY,
+                                "out of memory for the JSON document");
+  }
+  *out = copy;
+  return PICKET_OK;
+}
