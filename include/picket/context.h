@@ -22,10 +22,7 @@ typedef enum picket_log_level {
 } picket_log_level;
 
 /* Answer of a progress callback. */
-typedef enum picket_verdict {
-  PICKET_CONTINUE = 0,
-  PICKET_STOP = 1
-} picket_verdict;
+typedef enum picket_verdict { PICKET_CONTINUE = 0, PICKET_STOP = 1 } picket_verdict;
 
 /* What a progress callback is told. Borrowed for the length of the call. */
 typedef struct picket_progress {

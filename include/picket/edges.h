@@ -12,10 +12,10 @@ extern "C" {
 
 /* One stop band of the fundamental guided mode's own family. Wavelengths are vacuum wavelengths. */
 typedef struct picket_stop_band {
-  int order;                    /* m: the band opens at k = mπ/pitch */
-  picket_quantity short_um;     /* short-wavelength edge */
-  picket_quantity long_um;      /* long-wavelength edge */
-  bool short_confined;          /* below the light line of every open side */
+  int order;                /* m: the band opens at k = mπ/pitch */
+  picket_quantity short_um; /* short-wavelength edge */
+  picket_quantity long_um;  /* long-wavelength edge */
+  bool short_confined;      /* below the light line of every open side */
   bool long_confined;
   picket_quantity attenuation_db_per_pitch; /* the largest inside */
 } picket_stop_band;
@@ -28,12 +28,12 @@ typedef struct picket_operating_band {
   picket_quantity clearance_um; /* from_um - long edge of order 1; negative: reaches into it */
 } picket_operating_band;
 
-/* The estimate everyone starts from: second-order Rytov homogenisation of the core, the slab of that
- * core, and the Bragg condition λ = 2 Λ n(λ). */
+/* The estimate everyone starts from: second-order Rytov homogenisation of the core, the slab of
+ * that core, and the Bragg condition λ = 2 Λ n(λ). */
 typedef struct picket_edge_estimate {
-  const char *method;           /* static text; null if the estimate does not apply */
-  double centre_um;             /* estimated centre of the first stop band; NaN if there is none */
-  picket_quantity error_um;     /* estimate minus the centre found */
+  const char *method;       /* static text; null if the estimate does not apply */
+  double centre_um;         /* estimated centre of the first stop band; NaN if there is none */
+  picket_quantity error_um; /* estimate minus the centre found */
 } picket_edge_estimate;
 
 typedef struct picket_edges_answer {
@@ -48,11 +48,11 @@ typedef struct picket_edges_answer {
  * one), `options->count` orders (default 1).
  *   options  null for the defaults
  *   out      receives the result, yours to free
- * PICKET_ERROR_INPUT if the problem is wrong or has no cell, PICKET_ERROR_NO_MODE if the cell guides no
- * mode, PICKET_ERROR_RANGE, PICKET_ERROR_NUMERIC, PICKET_ERROR_MEMORY, PICKET_ERROR_STOPPED.
- * Cost: two or three grids, on each a few sparse factorisations per edge. */
-PICKET_EXPORT picket_status picket_edges_find(picket_problem *problem, const picket_options *options,
-                                              picket_result **out);
+ * PICKET_ERROR_INPUT if the problem is wrong or has no cell, PICKET_ERROR_NO_MODE if the cell
+ * guides no mode, PICKET_ERROR_RANGE, PICKET_ERROR_NUMERIC, PICKET_ERROR_MEMORY,
+ * PICKET_ERROR_STOPPED. Cost: two or three grids, on each a few sparse factorisations per edge. */
+PICKET_EXPORT picket_status picket_edges_find(picket_problem *problem,
+                                              const picket_options *options, picket_result **out);
 
 /* How many polarizations the result of picket_edges_find holds; 0 for another kind of result. */
 PICKET_EXPORT int picket_edges_count(const picket_result *result);

@@ -13,11 +13,11 @@ extern "C" {
 
 /* Fill with picket_options_init, then change what you need. */
 typedef struct picket_options {
-  size_t size;        /* sizeof(picket_options), set by the init function */
-  double accuracy;    /* wanted relative uncertainty, 1e-8 to 1e-2; default 1e-4 */
-  double count;       /* how many bands, modes or stop bands, 1 to 200; 0: the command's own choice */
-  double unknowns;    /* most unknowns of one grid, 1000 to 1e8; default 2e6 */
-  double points;      /* wavenumbers between two neighbours of a path, 1 to 1000; default 12 */
+  size_t size;     /* sizeof(picket_options), set by the init function */
+  double accuracy; /* wanted relative uncertainty, 1e-8 to 1e-2; default 1e-4 */
+  double count;    /* how many bands, modes or stop bands, 1 to 200; 0: the command's own choice */
+  double unknowns; /* most unknowns of one grid, 1000 to 1e8; default 2e6 */
+  double points;   /* wavenumbers between two neighbours of a path, 1 to 1000; default 12 */
 } picket_options;
 
 /* Defaults. Null is ignored. */

@@ -1,5 +1,5 @@
-/* A result: what a study found, kept until it is freed. Ask it for numbers through the header of the
- * study (edges.h, bands.h, slab.h), or for a document. */
+/* A result: what a study found, kept until it is freed. Ask it for numbers through the header of
+ * the study (edges.h, bands.h, slab.h), or for a document. */
 #ifndef PICKET_RESULT_H
 #define PICKET_RESULT_H
 
@@ -15,10 +15,7 @@ extern "C" {
 typedef struct picket_result picket_result;
 
 /* Polarization of a cell, by the field normal to the drawing plane. */
-typedef enum picket_polarization {
-  PICKET_EY = 0,
-  PICKET_HY = 1
-} picket_polarization;
+typedef enum picket_polarization { PICKET_EY = 0, PICKET_HY = 1 } picket_polarization;
 
 /* How a segmented guide works at a wavelength. */
 typedef enum picket_regime {
@@ -38,8 +35,8 @@ PICKET_EXPORT bool picket_result_complete(const picket_result *result);
 /* One sentence on what is missing when the result is partial; "" otherwise. Borrowed. */
 PICKET_EXPORT const char *picket_result_shortfall(const picket_result *result);
 
-/* The result as a JSON document (see the problem-file contract), or as comma-separated values with one
- * header line. Borrowed until the result is freed; null if memory is out. */
+/* The result as a JSON document (see the problem-file contract), or as comma-separated values with
+ * one header line. Borrowed until the result is freed; null if memory is out. */
 PICKET_EXPORT const char *picket_result_json(picket_result *result);
 PICKET_EXPORT const char *picket_result_csv(picket_result *result);
 

@@ -11,13 +11,10 @@ extern "C" {
 #endif
 
 /* Polarization of a slab mode in the planar-waveguide sense: te has E along the films. */
-typedef enum picket_slab_polarization {
-  PICKET_TE = 0,
-  PICKET_TM = 1
-} picket_slab_polarization;
+typedef enum picket_slab_polarization { PICKET_TE = 0, PICKET_TM = 1 } picket_slab_polarization;
 
 typedef struct picket_slab_mode {
-  int order;                   /* number of zeros of the field */
+  int order; /* number of zeros of the field */
   picket_quantity index;
   picket_quantity group_index; /* with material dispersion */
 } picket_slab_mode;
@@ -34,10 +31,10 @@ typedef struct picket_slab_answer {
   const picket_slab_point *points; /* borrowed */
 } picket_slab_answer;
 
-/* All guided modes of the problem's `slab` at each wavelength of its `light`, for the polarization of
- * the slab block (both without one).
- * PICKET_ERROR_INPUT if there is no slab or no light, PICKET_ERROR_RANGE outside a material's range. A
- * stack that guides nothing gives points without modes. */
+/* All guided modes of the problem's `slab` at each wavelength of its `light`, for the polarization
+ * of the slab block (both without one). PICKET_ERROR_INPUT if there is no slab or no light,
+ * PICKET_ERROR_RANGE outside a material's range. A stack that guides nothing gives points without
+ * modes. */
 PICKET_EXPORT picket_status picket_slab_find(picket_problem *problem, const picket_options *options,
                                              picket_result **out);
 

@@ -86,8 +86,8 @@ picket_status pk_fail_at(picket_context *context, picket_status status, pk_place
                          const char *format, ...) {
   int used = 0;
   if (place.file && place.line > 0) {
-    used = snprintf(context->message, sizeof context->message, "%s:%d:%d: ", place.file,
-                    place.line, place.column);
+    used = snprintf(context->message, sizeof context->message, "%s:%d:%d: ", place.file, place.line,
+                    place.column);
   } else if (place.file) {
     used = snprintf(context->message, sizeof context->message, "%s: ", place.file);
   }

@@ -1,5 +1,5 @@
-/* See options.h and options.def. Every option is a double in the public struct, so that one table of
- * offsets serves setting, checking and describing. */
+/* See options.h and options.def. Every option is a double in the public struct, so that one table
+ * of offsets serves setting, checking and describing. */
 #include "base/options.h"
 
 #include <math.h>
@@ -61,8 +61,9 @@ picket_status picket_options_set(picket_options *options, const char *name, doub
 
 picket_status pk_options_check(picket_context *context, const picket_options *options) {
   if (options->size != sizeof *options) {
-    return pk_fail(context, PICKET_ERROR_ARGUMENT, "options: size is %zu, must be %zu: call picket_options_init",
-                   options->size, sizeof *options);
+    return pk_fail(context, PICKET_ERROR_ARGUMENT,
+                   "options: size is %zu, must be %zu: call picket_options_init", options->size,
+                   sizeof *options);
   }
   for (int i = 0; i < OPTIONS; i++) {
     if (!allowed(i, value_of(options, i))) {

@@ -1,8 +1,8 @@
 /* Recognising standing waves of the fundamental family.
  *
- * Near k = mπ/Λ the fundamental mode and its reflection are a(x) exp(±imπz/Λ) with one lateral shape
- * a(x). The likeness of a real standing wave f is the part of its norm in their span:
- *   |⟨a, b⟩|² / (⟨a, a⟩ ⟨f, f⟩ Λ/2),   b(x) = ∫ f exp(-imπz/Λ) dz. */
+ * Near k = mπ/Λ the fundamental mode and its reflection are a(x) exp(±imπz/Λ) with one lateral
+ * shape a(x). The likeness of a real standing wave f is the part of its norm in their span: |⟨a,
+ * b⟩|² / (⟨a, a⟩ ⟨f, f⟩ Λ/2),   b(x) = ∫ f exp(-imπz/Λ) dz. */
 #ifndef PK_BLOCH_FAMILY_H
 #define PK_BLOCH_FAMILY_H
 

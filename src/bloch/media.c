@@ -59,8 +59,7 @@ picket_status pk_media_set(pk_media *media, double k0, pk_operator *op) {
       continue;
     }
     pk_medium at;
-    picket_status status =
-        pk_materials_at(media->materials, m, known, media->temperature_c, &at);
+    picket_status status = pk_materials_at(media->materials, m, known, media->temperature_c, &at);
     if (status != PICKET_OK) {
       return status;
     }

@@ -55,8 +55,8 @@ static double complex *conjugate_copy(picket_context *context, int64_t n, const 
   return copy;
 }
 
-picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_phase phase, double k0,
-                             const pk_mode *mode, double *next) {
+picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_phase phase,
+                             double k0, const pk_mode *mode, double *next) {
   if (!media->dispersive) {
     *next = sqrt(creal(mode->lambda));
     return PICKET_OK;
@@ -67,8 +67,7 @@ picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_ph
   }
   /* lᵀ(∂T/∂k0)r at λ = k0² is λ'(k0) - 2k0 for conj(r) B r = 1. */
   double complex slope;
-  picket_status status =
-      pk_media_frequency_form(media, op, phase, k0, left, mode->field, &slope);
+  picket_status status = pk_media_frequency_form(media, op, phase, k0, left, mode->field, &slope);
   pk_free(media->context, left);
   if (status == PICKET_OK) {
     *next = k0 - (creal(mode->lambda) - k0 * k0) / creal(slope);
@@ -154,8 +153,8 @@ picket_status pk_resonance_slope(const pk_media *media, const pk_operator *op, p
     return PICKET_ERROR_MEMORY;
   }
   double complex frequency;
-  picket_status status = pk_media_frequency_form(media, op, phase, resonance->k0, left,
-                                                 resonance->field, &frequency);
+  picket_status status =
+      pk_media_frequency_form(media, op, phase, resonance->k0, left, resonance->field, &frequency);
   if (status == PICKET_OK) {
     double complex wavenumber =
         I * pitch_um * pk_operator_phase_form(op, phase, 1, shift, left, resonance->field);

@@ -12,7 +12,7 @@ typedef struct pk_resonance {
   double k0;             /* ω/c, 1/µm */
   double complex *field; /* [n], owned */
   double residual;
-  bool known;            /* every material is known at this frequency */
+  bool known; /* every material is known at this frequency */
 } pk_resonance;
 
 /* The mode near k0_guess that looks most like `reference` (null: the nearest one).
@@ -27,8 +27,8 @@ picket_status pk_resonance_slope(const pk_media *media, const pk_operator *op, p
                                  double *dk0_dk);
 
 /* The next frequency of Newton's method on f(k0) = λ(k0) - k0², from a mode of the media at k0. */
-picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_phase phase, double k0,
-                             const pk_mode *mode, double *next);
+picket_status pk_mode_newton(const pk_media *media, const pk_operator *op, pk_phase phase,
+                             double k0, const pk_mode *mode, double *next);
 
 /* |⟨a, B b⟩|² / (⟨a, B a⟩ ⟨b, B b⟩), 0 to 1. */
 double pk_overlap(const pk_operator *op, const double complex *a, const double complex *b);

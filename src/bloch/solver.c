@@ -108,8 +108,9 @@ static picket_status apply_complex(void *user, const double complex *x, double c
 }
 
 static picket_status need_factor(pk_solver *solver, pk_scalar scalar, pk_factor **factor) {
-  return *factor ? PICKET_OK
-                 : pk_factor_create(solver->context, pk_operator_pattern(solver->op), scalar, factor);
+  return *factor
+             ? PICKET_OK
+             : pk_factor_create(solver->context, pk_operator_pattern(solver->op), scalar, factor);
 }
 
 picket_status pk_solver_factor(pk_solver *solver, pk_phase phase, double complex shift,
@@ -181,8 +182,11 @@ static picket_status run_real(pk_solver *solver, const run *r, double complex *v
     for (int64_t p = 0; start && p < solver->n; p++) {
       start[p] = creal(solver->root[p] * r->start[p]);
     }
-    pk_eigen_request request = {.n = solver->n, .wanted = r->wanted, .seed = START_SEED,
-                                .start = start, .every_copy = solver->every_copy};
+    pk_eigen_request request = {.n = solver->n,
+                                .wanted = r->wanted,
+                                .seed = START_SEED,
+                                .start = start,
+                                .every_copy = solver->every_copy};
     status = factor_real(solver, r->phase, r->shift);
     if (status == PICKET_OK) {
       status = pk_eigen_symmetric(context, &request, apply_real, solver, real_values, real_vectors,
@@ -211,12 +215,16 @@ static picket_status run_complex(pk_solver *solver, const run *r, double complex
   for (int64_t p = 0; start && p < solver->n; p++) {
     start[p] = solver->root[p] * r->start[p];
   }
-  pk_eigen_request request = {.n = solver->n, .wanted = r->wanted, .seed = START_SEED,
-                              .start = start, .every_copy = solver->every_copy};
+  pk_eigen_request request = {.n = solver->n,
+                              .wanted = r->wanted,
+                              .seed = START_SEED,
+                              .start = start,
+                              .every_copy = solver->every_copy};
   pk_factor *factor;
   picket_status status = pk_solver_factor(solver, r->phase, r->shift, &factor);
   if (status == PICKET_OK) {
-    status = pk_eigen_complex(context, &request, apply_complex, solver, values, vectors, found, NULL);
+    status =
+        pk_eigen_complex(context, &request, apply_complex, solver, values, vectors, found, NULL);
   }
   pk_free(context, start);
   return status;

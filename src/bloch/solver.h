@@ -2,11 +2,10 @@
  *
  *   A(ξ, χ) v = λ B v,  λ = k0² = (ω/c)²
  *
- * by shift-invert Lanczos/Arnoldi: with B^½ on both sides, Op = B^½ (A - σB)⁻¹ B^½ has the eigenvalues
- * 1/(λ - σ), and those nearest to the shift σ come first. At ξ, χ = ±1 a lossless cell is solved in
- * real arithmetic. Every pair is returned with its true relative residual
- *   |A v - λ B v| / (|λ| |B v|)
- * and none whose residual is above PK_RESIDUAL_LIMIT. */
+ * by shift-invert Lanczos/Arnoldi: with B^½ on both sides, Op = B^½ (A - σB)⁻¹ B^½ has the
+ * eigenvalues 1/(λ - σ), and those nearest to the shift σ come first. At ξ, χ = ±1 a lossless cell
+ * is solved in real arithmetic. Every pair is returned with its true relative residual |A v - λ B
+ * v| / (|λ| |B v|) and none whose residual is above PK_RESIDUAL_LIMIT. */
 #ifndef PK_BLOCH_SOLVER_H
 #define PK_BLOCH_SOLVER_H
 
@@ -41,8 +40,8 @@ picket_context *pk_solver_context(const pk_solver *solver);
 picket_status pk_solver_modes(pk_solver *solver, pk_phase phase, double shift, int wanted,
                               const double complex *start, pk_mode *modes, int *found);
 
-/* From now on look for every copy of a multiple eigenvalue (off at first): Arnoldi can miss copies, and
- * does in about one case of ten for twofold levels; costs about a quarter more solves. */
+/* From now on look for every copy of a multiple eigenvalue (off at first): Arnoldi can miss copies,
+ * and does in about one case of ten for twofold levels; costs about a quarter more solves. */
 void pk_solver_want_every_copy(pk_solver *solver, bool wanted);
 
 /* The factor of the last complex factorisation, for callers that know what was factored; see

@@ -8,12 +8,12 @@
 #include "bloch/wavenumber.h"
 
 enum {
-  STATES = 10,          /* standing waves looked at for each order */
+  STATES = 10, /* standing waves looked at for each order */
   ATTENUATION_STEPS = 25
 };
 
-/* The place of the largest attenuation, as a part of the stop band: κ is stationary there, so it is then
- * right to about the square of this. */
+/* The place of the largest attenuation, as a part of the stop band: κ is stationary there, so it is
+ * then right to about the square of this. */
 static const double STATIONARY = 1e-4;
 
 static const double PI = 3.141592653589793238;
@@ -50,8 +50,8 @@ static bool is_confined(const finder *f, int order, double k0) {
   return !f->request->open || k0 * side_index(f) < folded;
 }
 
-/* Standing waves for the media as they are at k0: for order 1 the lowest ones, above that the nearest
- * to the wavenumber mπ/Λ in a medium like that of the fundamental mode. */
+/* Standing waves for the media as they are at k0: for order 1 the lowest ones, above that the
+ * nearest to the wavenumber mπ/Λ in a medium like that of the fundamental mode. */
 static picket_status standing_waves(finder *f, int order, double k0, pk_mode *modes, int *found) {
   picket_status status = pk_media_set(f->media, k0, f->op);
   if (status != PICKET_OK) {
@@ -61,14 +61,14 @@ static picket_status standing_waves(finder *f, int order, double k0, pk_mode *mo
   return pk_solver_modes(f->solver, phase_of(order), shift, STATES, NULL, modes, found);
 }
 
-/* Indices of the two states most like the family, by rising λ; -1 where there is none. For order 1 the
- * first is the lowest state. */
+/* Indices of the two states most like the family, by rising λ; -1 where there is none. For order 1
+ * the first is the lowest state. */
 static void pick_pair(finder *f, int order, int found, const pk_mode *modes, int pair[2]) {
   double best[2] = {LEAST_LIKENESS, LEAST_LIKENESS};
   pair[0] = pair[1] = -1;
   for (int i = 0; i < found; i++) {
-    double likeness = pk_family_likeness(f->op, f->request->pitch_um, order, f->shape,
-                                         modes[i].field, f->work);
+    double likeness =
+        pk_family_likeness(f->op, f->request->pitch_um, order, f->shape, modes[i].field, f->work);
     pk_log(f->context, PICKET_LOG_DETAIL, "order %d: state %d at %.6g um, likeness %.3f", order, i,
            2 * PI / sqrt(creal(modes[i].lambda)), likeness);
     if (likeness > best[0]) {
@@ -123,20 +123,22 @@ static picket_status settle_edge(finder *f, int order, const pk_mode *mode, pk_e
   return PICKET_OK;
 }
 
-/* --- The largest attenuation inside a stop band -------------------------------------------------- */
+/* --- The largest attenuation inside a stop band --------------------------------------------------
+ */
 
 /* Half the matrix element of ∂T/∂k between the two edges couples them: two-band perturbation theory
  * gives the decay in the middle, κ = (λ₂ - λ₁)/(2 |P₁₂|). */
 static double guess_attenuation(const finder *f, int order, const pk_edge_found edge[2],
                                 double complex *const fields[2]) {
-  double complex p = f->request->pitch_um *
-                     pk_operator_phase_form(f->op, phase_of(order), 1, f->request->lateral_shift,
-                                            fields[0], fields[1]);
+  double complex p = f->request->pitch_um * pk_operator_phase_form(f->op, phase_of(order), 1,
+                                                                   f->request->lateral_shift,
+                                                                   fields[0], fields[1]);
   double gap = edge[1].k0 * edge[1].k0 - edge[0].k0 * edge[0].k0;
   return 0.5 * gap / cabs(p);
 }
 
-/* κ and κ κ' at a frequency inside the band; κ² is nearly a parabola there, so κκ' is nearly a line. */
+/* κ and κ κ' at a frequency inside the band; κ² is nearly a parabola there, so κκ' is nearly a
+ * line. */
 static picket_status attenuation_at(finder *f, int order, double k0, double kappa_guess,
                                     const double complex *start, double *kappa, double *product) {
   picket_status status = pk_media_set(f->media, k0, f->op);
@@ -146,8 +148,8 @@ static picket_status attenuation_at(finder *f, int order, double k0, double kapp
   double sign = order % 2 ? -1 : 1, pitch = f->request->pitch_um;
   double complex slope = 0;
   pk_wave wave;
-  status = pk_wave_near(f->solver, phase_of(order), k0, sign * exp(-kappa_guess * pitch), start,
-                        &wave);
+  status =
+      pk_wave_near(f->solver, phase_of(order), k0, sign * exp(-kappa_guess * pitch), start, &wave);
   if (status != PICKET_OK) {
     return status;
   }
@@ -186,7 +188,8 @@ static picket_status largest_attenuation(finder *f, pk_stop_band *band,
     if (status != PICKET_OK || fabs(step) < enough) {
       break;
     }
-    pk_log(f->context, PICKET_LOG_DETAIL, "attenuation %.9g /um at k0 %.9g, slope product %.3g", kappa, k0, product);
+    pk_log(f->context, PICKET_LOG_DETAIL, "attenuation %.9g /um at k0 %.9g, slope product %.3g",
+           kappa, k0, product);
     /* False position, halving the value of an end that stays (the Illinois rule). */
     if (product > 0) {
       low = k0;
@@ -209,10 +212,16 @@ static picket_status largest_attenuation(finder *f, pk_stop_band *band,
     band->attenuation = kappa;
     band->has_attenuation = true;
   }
-  return status == PICKET_ERROR_NUMERIC ? PICKET_OK : status;
+  if (status == PICKET_ERROR_NUMERIC) {
+    pk_log(f->context, PICKET_LOG_DETAIL, "no attenuation: %s", picket_context_message(f->context));
+    pk_message_clear(f->context);
+    status = PICKET_OK;
+  }
+  return status;
 }
 
-/* --- One order ----------------------------------------------------------------------------------- */
+/* --- One order -----------------------------------------------------------------------------------
+ */
 
 static picket_status one_order(finder *f, int order, double k0_start, pk_stop_band *band) {
   pk_mode modes[STATES];
@@ -251,14 +260,13 @@ static picket_status one_order(finder *f, int order, double k0_start, pk_stop_ba
 
 picket_status pk_stop_bands(pk_solver *solver, pk_media *media, const pk_stop_band_request *request,
                             pk_stop_band *bands) {
-  finder f = {.context = pk_solver_context(solver), .solver = solver, .media = media,
-              .request = request};
+  finder f = {
+      .context = pk_solver_context(solver), .solver = solver, .media = media, .request = request};
   f.op = pk_solver_operator(solver);
   int nv = pk_operator_lines(f.op, PK_V);
   f.shape = PK_NEW(f.context, nv, double complex);
   f.work = PK_NEW(f.context, nv, double complex);
-  picket_status status =
-      f.shape && f.work ? PICKET_OK : PICKET_ERROR_MEMORY;
+  picket_status status = f.shape && f.work ? PICKET_OK : PICKET_ERROR_MEMORY;
   double k0 = request->k0_start;
   for (int order = 1; status == PICKET_OK && order <= request->last_order; order++) {
     status = one_order(&f, order, k0, &bands[order - 1]);

@@ -1,10 +1,10 @@
 /* See wavenumber.h.
  *
- * Linearised with x = (v, ξv), the shift-inverted pencil needs one solve with T(σ) per step, and its
- * right-hand side only where the wrap-around couples:
- *   s = T(σ)⁻¹ (C₊ x₂ - C₋ x₁/σ),   w₁ = -(x₁ + s)/σ,   w₂ = -s,   w = θ x,  θ = 1/(ξ - σ).
- * The eigenvector is then refined by residual inverse iteration (A. Neumaier, SIAM J. Numer. Anal. 22,
- * 914 (1985)) with ξ from the Rayleigh functional lᵀ T(ξ) v = 0. */
+ * Linearised with x = (v, ξv), the shift-inverted pencil needs one solve with T(σ) per step, and
+ * its right-hand side only where the wrap-around couples: s = T(σ)⁻¹ (C₊ x₂ - C₋ x₁/σ),   w₁ = -(x₁
+ * + s)/σ,   w₂ = -s,   w = θ x,  θ = 1/(ξ - σ). The eigenvector is then refined by residual inverse
+ * iteration (A. Neumaier, SIAM J. Numer. Anal. 22, 914 (1985)) with ξ from the Rayleigh functional
+ * lᵀ T(ξ) v = 0. */
 #include "bloch/wavenumber.h"
 
 #include <math.h>
@@ -15,22 +15,34 @@
 #include "eigen/eigen.h"
 
 enum {
-  KRYLOV = 10,      /* basis for one mode near a good guess */
-  REFINEMENTS = 30, /* each gains the factor |ξ - σ| over the distance to the next wave */
-  LEFT_STEPS = 4    /* inverse iterations for the left vector */
+  KRYLOV = 10,     /* basis for one mode near a good guess */
+  REFINEMENTS = 30 /* each gains the factor |ξ - σ| over the distance to the next wave */
 };
 
 /* Small enough that the second-order functional is at rounding level; see PK_RESIDUAL_LIMIT. */
 static const double RESIDUAL_GOAL = 1e-11;
+/* A shift on a good guess would make the matrix singular; this far off, each refinement still gains
+ * three digits. */
+static const double SHIFT_OFFSET = 1e-4;
+
 /* Below this a residual that no longer halves has met rounding. */
 static const double STALLED = 1e-9;
 static const uint64_t START_SEED = 20221;
+
+/* A shift this close to ξ (relative) needs no second factorisation for the left vector. */
+static const double CLOSE = 2e-3;
+
+/* A shift for a wave at ξ: towards the decaying side of a pair (ξ, 1/ξ), so that the wanted one
+ * stays the nearer. */
+static double complex off_centre(double complex xi) {
+  return xi * (cabs(xi) <= 1 ? 1 - SHIFT_OFFSET : 1 + SHIFT_OFFSET);
+}
 
 typedef struct search {
   picket_context *context;
   pk_operator *op;
   pk_factor *factor;
-  pk_phase phase;           /* xi = σ */
+  pk_phase phase; /* xi = σ */
   double k0;
   int64_t n;
   double complex *work, *other; /* [n] each */
@@ -72,16 +84,20 @@ static picket_status first_pair(search *s, const double complex *start, double c
     guess[p] = start[p];
     guess[s->n + p] = s->phase.xi * start[p];
   }
-  pk_eigen_request request = {.n = 2 * s->n, .wanted = 1, .basis = KRYLOV, .tolerance = 1e-9,
-                              .seed = START_SEED, .start = start ? guess : NULL};
+  pk_eigen_request request = {.n = 2 * s->n,
+                              .wanted = 1,
+                              .basis = KRYLOV,
+                              .tolerance = 1e-9,
+                              .seed = START_SEED,
+                              .start = start ? guess : NULL};
   double complex theta;
   int found = 0;
   picket_status status =
       pk_eigen_complex(s->context, &request, apply, s, &theta, vector, &found, NULL);
   if (status == PICKET_OK && found == 0) {
-    status = pk_fail(s->context, PICKET_ERROR_NUMERIC,
-                     "no Bloch wave near exp(ikΛ) = %g%+gi converged", creal(s->phase.xi),
-                     cimag(s->phase.xi));
+    status =
+        pk_fail(s->context, PICKET_ERROR_NUMERIC, "no Bloch wave near exp(ikΛ) = %g%+gi converged",
+                creal(s->phase.xi), cimag(s->phase.xi));
   }
   if (status == PICKET_OK) {
     *xi = s->phase.xi + 1 / theta;
@@ -89,23 +105,6 @@ static picket_status first_pair(search *s, const double complex *start, double c
     scale_to_unit(s->n, right);
   }
   pk_free(s->context, vector);
-  return status;
-}
-
-/* lᵀT(σ) = 0 nearly, so inverse iteration with the transposed factor gives a first left vector. */
-static picket_status first_left(search *s, const double complex *right, double complex *left) {
-  const double complex *mass = pk_operator_mass(s->op);
-  for (int64_t p = 0; p < s->n; p++) {
-    left[p] = conj(right[p]);
-  }
-  picket_status status = PICKET_OK;
-  for (int step = 0; status == PICKET_OK && step < LEFT_STEPS; step++) {
-    for (int64_t p = 0; p < s->n; p++) {
-      s->work[p] = mass[p] * left[p];
-    }
-    status = pk_factor_solve_transposed_complex(s->factor, s->work, left);
-    scale_to_unit(s->n, left);
-  }
   return status;
 }
 
@@ -128,7 +127,8 @@ static double complex rayleigh(search *s, const double complex *left, const doub
   pk_operator_values(s->op, phase, s->k0 * s->k0, values);
   pk_sparse_times_complex(pk_operator_pattern(s->op), values, right, s->work);
   double complex rest = plain_dot(s->n, left, s->work); /* lᵀT(ξ)r at the old ξ */
-  /* With ξ' = ξ(1 + δ): aξ δ + c/ξ (1/(1+δ) - 1) + rest = 0, a quadratic in δ without cancellation. */
+  /* With ξ' = ξ(1 + δ): aξ δ + c/ξ (1/(1+δ) - 1) + rest = 0, a quadratic in δ without cancellation.
+   */
   double complex A = a * xi, C = c / xi;
   double complex linear = A - C + rest;
   double complex root = csqrt(linear * linear - 4 * A * rest);
@@ -136,8 +136,8 @@ static double complex rayleigh(search *s, const double complex *left, const doub
   return denominator == 0 ? xi : xi * (1 - 2 * rest / denominator);
 }
 
-/* |T(ξ)x| / (k0² |B x|) for the right vector, |T(ξ)ᵀx| for the left one; the numerator's vector is left
- * in s->other. */
+/* |T(ξ)x| / (k0² |B x|) for the right vector, |T(ξ)ᵀx| for the left one; the numerator's vector is
+ * left in s->other. */
 static double residual_of(search *s, double complex xi, bool transposed, const double complex *x,
                           double complex *values) {
   pk_phase phase = {xi, s->phase.chi, s->phase.kx};
@@ -171,28 +171,92 @@ static picket_status improve(search *s, bool transposed, double complex *x) {
   return status;
 }
 
-static picket_status refine(search *s, double complex *values, pk_wave *wave) {
-  picket_status status = first_left(s, wave->right, wave->left);
-  double before = INFINITY, now = INFINITY;
-  for (int step = 0; status == PICKET_OK && step < REFINEMENTS; step++) {
+static picket_status refine_right(search *s, double complex *values, pk_wave *wave) {
+  picket_status status = PICKET_OK;
+  double before = INFINITY;
+  for (int step = 0; step < REFINEMENTS; step++) {
     wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
-    double left = residual_of(s, wave->xi, true, wave->left, values);
-    if (left > RESIDUAL_GOAL) {
-      status = improve(s, true, wave->left);
-    }
     wave->residual = residual_of(s, wave->xi, false, wave->right, values);
-    now = fmax(left, wave->residual);
-    if (status != PICKET_OK || now < RESIDUAL_GOAL || (now < STALLED && now > 0.5 * before)) {
+    bool stalled = wave->residual < STALLED && wave->residual > 0.5 * before;
+    if (wave->residual < RESIDUAL_GOAL || stalled) {
       break;
     }
-    before = now;
-    if (wave->residual > RESIDUAL_GOAL) {
-      status = improve(s, false, wave->right);
+    before = wave->residual;
+    status = improve(s, false, wave->right);
+    if (status != PICKET_OK) {
+      break;
     }
   }
-  if (status == PICKET_OK && !(now <= PK_RESIDUAL_LIMIT)) {
+  return status;
+}
+
+/* l ← T(σ)⁻ᵀ T'(σ)ᵀ l, of unit norm: nearly the left vector when σ is near ξ. (Iterating with B in
+ * the place of T' would fail where the attenuation is largest: two frequencies meet there.) */
+static picket_status inverse_step(search *s, double complex *left) {
+  double complex sigma = s->phase.xi;
+  pk_operator_backward_times(s->op, 1 / s->phase.chi, left, s->work);
+  pk_operator_forward_times(s->op, 1 / s->phase.chi, left, s->other);
+  for (int64_t p = 0; p < s->n; p++) {
+    s->work[p] -= s->other[p] / (sigma * sigma);
+  }
+  picket_status status = pk_factor_solve_transposed_complex(s->factor, s->work, left);
+  if (status == PICKET_OK) {
+    scale_to_unit(s->n, left);
+  }
+  return status;
+}
+
+/* The left vector by residual inverse iteration: each step gains the factor |ξ - σ| over the
+ * distance to the next wave, so a shift that turned out to be far off is made anew near ξ. */
+static picket_status find_left(search *s, pk_solver *solver, double complex *values, pk_wave *wave,
+                               double *residual) {
+  *residual = residual_of(s, wave->xi, true, wave->left, values);
+  if (*residual < RESIDUAL_GOAL) {
+    return PICKET_OK; /* a lossless wave that does not decay: conj(right) */
+  }
+  picket_status status = PICKET_OK;
+  if (cabs(s->phase.xi / wave->xi - 1) > CLOSE) {
+    s->phase.xi = off_centre(wave->xi);
+    status = pk_solver_factor(solver, s->phase, s->k0 * s->k0, &s->factor);
+  }
+  for (int step = 0; status == PICKET_OK && step < 2; step++) {
+    status = inverse_step(s, wave->left);
+  }
+  double before = INFINITY;
+  for (int step = 0; status == PICKET_OK && step < REFINEMENTS; step++) {
+    *residual = residual_of(s, wave->xi, true, wave->left, values);
+    bool stalled = *residual<STALLED && * residual> 0.5 * before;
+    if (*residual < RESIDUAL_GOAL || stalled) {
+      break;
+    }
+    before = *residual;
+    status = improve(s, true, wave->left);
+  }
+  return status;
+}
+
+/* Right vector, then left vector (conj(right) is one for lossless waves that do not decay), then ξ
+ * from both. */
+static picket_status refine(search *s, pk_solver *solver, double complex *values, pk_wave *wave) {
+  for (int64_t p = 0; p < s->n; p++) {
+    wave->left[p] = conj(wave->right[p]);
+  }
+  picket_status status = refine_right(s, values, wave);
+  for (int64_t p = 0; p < s->n; p++) {
+    wave->left[p] = conj(wave->right[p]);
+  }
+  double left = INFINITY;
+  if (status == PICKET_OK) {
+    status = find_left(s, solver, values, wave, &left);
+  }
+  if (status == PICKET_OK) {
+    wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
+    wave->residual = fmax(left, residual_of(s, wave->xi, false, wave->right, values));
+  }
+  if (status == PICKET_OK && !(wave->residual <= PK_RESIDUAL_LIMIT)) {
     status = pk_fail(s->context, PICKET_ERROR_NUMERIC,
-                     "a Bloch wave has a residual of %.1e, allowed %.1e", now, PK_RESIDUAL_LIMIT);
+                     "a Bloch wave has a residual of %.1e, allowed %.1e", wave->residual,
+                     PK_RESIDUAL_LIMIT);
   }
   return status;
 }
@@ -208,7 +272,7 @@ picket_status pk_wave_near(pk_solver *solver, pk_phase phase, double k0, double 
   search s = {.op = pk_solver_operator(solver), .phase = phase, .k0 = k0};
   s.context = pk_solver_context(solver);
   s.n = pk_operator_size(s.op);
-  s.phase.xi = xi_guess;
+  s.phase.xi = off_centre(xi_guess);
   int64_t entries = pk_operator_pattern(s.op)->start[s.n];
   double complex *values = PK_NEW(s.context, entries, double complex);
   pk_wave wave = {.right = PK_NEW(s.context, s.n, double complex),
@@ -223,7 +287,7 @@ picket_status pk_wave_near(pk_solver *solver, pk_phase phase, double k0, double 
     status = first_pair(&s, start, &wave.xi, wave.right);
   }
   if (status == PICKET_OK) {
-    status = refine(&s, values, &wave);
+    status = refine(&s, solver, values, &wave);
   }
   pk_free(s.context, values);
   pk_free(s.context, s.work);

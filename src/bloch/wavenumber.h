@@ -2,8 +2,8 @@
  *
  *   T(ξ) v = (ξ C₊ + K + ξ⁻¹ C₋) v = 0,   ξ = exp(ikΛ),   Im k > 0: decays along +z
  *
- * a quadratic eigenproblem in ξ; T(ξ)ᵀ = T(1/ξ), so solutions come in pairs (ξ, 1/ξ) and the left vector
- * of ξ is the right vector of 1/ξ (D. S. Mackey et al., SIAM J. Matrix Anal. Appl. 28, 1029
+ * a quadratic eigenproblem in ξ; T(ξ)ᵀ = T(1/ξ), so solutions come in pairs (ξ, 1/ξ) and the left
+ * vector of ξ is the right vector of 1/ξ (D. S. Mackey et al., SIAM J. Matrix Anal. Appl. 28, 1029
  * (2006), palindromic eigenproblems). */
 #ifndef PK_BLOCH_WAVENUMBER_H
 #define PK_BLOCH_WAVENUMBER_H

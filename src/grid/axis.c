@@ -18,9 +18,9 @@ enum { SAMPLES = 256 }; /* of the integral of 1/h: 1e-5 of an interval, and only
 static const double SLIVER = 2e-3;
 
 typedef struct layout {
-  int count;     /* marks: both ends and the lines between */
-  double *mark;  /* rising */
-  double *step;  /* spacing at each mark */
+  int count;    /* marks: both ends and the lines between */
+  double *mark; /* rising */
+  double *step; /* spacing at each mark */
 } layout;
 
 static void layout_clear(picket_context *context, layout *l) {
@@ -91,7 +91,8 @@ static double size_at(const pk_axis_wish *wish, const layout *l, int k, double s
 }
 
 /* Cumulative ∫ ds/h over segment k at SAMPLES + 1 points, by the midpoint rule. */
-static double segment_integral(const pk_axis_wish *wish, const layout *l, int k, double *cumulated) {
+static double segment_integral(const pk_axis_wish *wish, const layout *l, int k,
+                               double *cumulated) {
   double a = l->mark[k], ds = (l->mark[k + 1] - a) / SAMPLES;
   cumulated[0] = 0;
   for (int i = 0; i < SAMPLES; i++) {

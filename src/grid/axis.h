@@ -21,8 +21,9 @@ typedef enum pk_end {
 typedef struct pk_axis {
   pk_end low, high;
   int intervals;
-  double *line;            /* [intervals + 1] rising */
-  double complex *length;  /* [intervals] line[i+1] - line[i], times the stretch of an absorbing layer */
+  double *line; /* [intervals + 1] rising */
+  double complex
+      *length; /* [intervals] line[i+1] - line[i], times the stretch of an absorbing layer */
 } pk_axis;
 
 /* What a base axis should resolve. Lengths in µm. */
@@ -30,12 +31,12 @@ typedef struct pk_axis_wish {
   pk_end low, high;
   double from, to;
   int line_count;
-  const double *lines;      /* coordinates to have lines on, rising, inside (from, to) */
-  double step;              /* largest spacing inside [inner_from, inner_to] */
+  const double *lines; /* coordinates to have lines on, rising, inside (from, to) */
+  double step;         /* largest spacing inside [inner_from, inner_to] */
   double inner_from, inner_to;
-  double outer_step;        /* largest spacing elsewhere */
-  double growth;            /* spacing may grow by this much per length, e.g. 0.2 */
-  int least_intervals;      /* between neighbouring lines, at least 1 */
+  double outer_step;   /* largest spacing elsewhere */
+  double growth;       /* spacing may grow by this much per length, e.g. 0.2 */
+  int least_intervals; /* between neighbouring lines, at least 1 */
 } pk_axis_wish;
 
 picket_status pk_axis_lay(picket_context *context, const pk_axis_wish *wish, pk_axis *out);
@@ -57,7 +58,6 @@ int pk_axis_first_line(const pk_axis *axis);
 
 /* The dual interval of a line: half of each neighbouring interval that exists. Real bounds for
  * averaging (periodic: may reach below `from`), stretched length for the weights. */
-void pk_axis_dual(const pk_axis *axis, int line, double *low, double *high,
-                  double complex *length);
+void pk_axis_dual(const pk_axis *axis, int line, double *low, double *high, double complex *length);
 
 #endif

@@ -6,8 +6,8 @@
 
 #include "base/memory.h"
 
-/* Spacing may grow by a fifth of the distance: three-point differences stay second order and the open
- * sides cost few lines. */
+/* Spacing may grow by a fifth of the distance: three-point differences stay second order and the
+ * open sides cost few lines. */
 static const double GROWTH = 0.2;
 
 /* In an open side the field falls as exp(-x/decay): this many base steps per decay length. */
@@ -37,8 +37,9 @@ static picket_status lay_along(picket_context *context, const pk_cell *cell, dou
     return status;
   }
   double half = 0.5 * cell->pitch_um;
-  pk_axis_wish wish = {PK_END_PERIODIC, PK_END_PERIODIC, -half, half, count, lines, step, -half,
-                       half, step, GROWTH, LEAST_INTERVALS};
+  pk_axis_wish wish = {
+      PK_END_PERIODIC, PK_END_PERIODIC, -half, half, count, lines, step, -half, half, step,
+      GROWTH,          LEAST_INTERVALS};
   grid->copies = cell->lateral == PK_LATERAL_PERIODIC ? shift_denominator(cell->shift) : 1;
   status = pk_axis_lay_repeated(context, &wish, grid->copies, &grid->u);
   if (status == PICKET_OK) {
@@ -59,7 +60,8 @@ static void lateral_ends(const pk_cell *cell, const pk_cell_grid_wish *wish, pk_
     axis->inner_to = high;
     axis->from = low - wish->reach[0] * wish->decay_um[0];
     axis->to = high + wish->reach[1] * wish->decay_um[1];
-    axis->outer_step = fmax(axis->step, fmin(wish->decay_um[0], wish->decay_um[1]) / STEPS_PER_DECAY);
+    axis->outer_step =
+        fmax(axis->step, fmin(wish->decay_um[0], wish->decay_um[1]) / STEPS_PER_DECAY);
     return;
   }
   axis->from = axis->inner_from = -0.5 * cell->span_um;
@@ -106,8 +108,8 @@ static picket_status lay_across(picket_context *context, const pk_cell *cell,
   if (status != PICKET_OK) {
     return status;
   }
-  pk_axis_wish axis = {.step = step, .outer_step = step, .growth = GROWTH,
-                       .least_intervals = LEAST_INTERVALS};
+  pk_axis_wish axis = {
+      .step = step, .outer_step = step, .growth = GROWTH, .least_intervals = LEAST_INTERVALS};
   lateral_ends(cell, wish, &axis);
   if (wish->mirror) {
     halve(cell, &axis, grid);
@@ -122,8 +124,15 @@ static picket_status lay_across(picket_context *context, const pk_cell *cell,
 /* A lateral axis with a single unknown: its length does not matter, its ends are never used. */
 static picket_status lay_uniform(picket_context *context, pk_cell_grid *grid) {
   grid->uniform_v = true;
-  pk_axis_wish axis = {.low = PK_END_PERIODIC, .high = PK_END_PERIODIC, .from = -0.5, .to = 0.5,
-                       .step = 1, .outer_step = 1, .inner_from = -0.5, .inner_to = 0.5, .growth = 1,
+  pk_axis_wish axis = {.low = PK_END_PERIODIC,
+                       .high = PK_END_PERIODIC,
+                       .from = -0.5,
+                       .to = 0.5,
+                       .step = 1,
+                       .outer_step = 1,
+                       .inner_from = -0.5,
+                       .inner_to = 0.5,
+                       .growth = 1,
                        .least_intervals = 1};
   return pk_axis_lay(context, &axis, &grid->v);
 }

@@ -17,11 +17,12 @@ typedef struct pk_cell_grid_wish {
 
 typedef struct pk_cell_grid {
   pk_axis u, v;
-  bool uniform_v;     /* lateral uniform: one unknown along v */
-  bool halved;        /* v starts at a mirror plane with a free end */
-  double mirror_at;   /* where, if halved */
-  int copies;         /* the u axis repeats this often in a pitch (lateral shift p/q: q) */
-  int shift_lines;    /* base lines along u per crossing of the lateral boundary; times m when divided */
+  bool uniform_v;   /* lateral uniform: one unknown along v */
+  bool halved;      /* v starts at a mirror plane with a free end */
+  double mirror_at; /* where, if halved */
+  int copies;       /* the u axis repeats this often in a pitch (lateral shift p/q: q) */
+  int shift_lines;  /* base lines along u per crossing of the lateral boundary; times m when divided
+                     */
 } pk_cell_grid;
 
 picket_status pk_cell_grid_lay(picket_context *context, const pk_cell *cell,

@@ -53,7 +53,7 @@ static picket_status read_span(picket_context *context, const pk_node *cell_node
                         "cell has no \"lateral_span_nm\", which lateral: %s needs",
                         laterals[cell->lateral]);
   }
-  cell->span_um = cell->lateral == PK_LATERAL_UNIFORM ? 0 : um;
+  cell->span_um = um;
   return status;
 }
 

@@ -12,6 +12,12 @@ static const pk_key keys[KEY_COUNT] = {
     [KEY_LABEL] = {"label", false},
 };
 
+/* k_x means something in a lateral lattice, and in a stack with a length to count it in. */
+static bool has_lateral_phase(const pk_cell *cell) {
+  return cell->lateral == PK_LATERAL_PERIODIC ||
+         (cell->lateral == PK_LATERAL_UNIFORM && cell->span_um > 0);
+}
+
 static picket_status read_point(const pk_reader *reader, const pk_node *node,
                                 pk_path_point *point) {
   const pk_limits limits = {-FARTHEST, FARTHEST, false, false, false, "in units of pi/pitch"};
@@ -22,11 +28,12 @@ static picket_status read_point(const pk_reader *reader, const pk_node *node,
     status = pk_read_numbers(reader->context, values[KEY_AT], &limits, 2, point->at);
   }
   if (status == PICKET_OK && point->at[1] != 0 && problem->has_cell &&
-      problem->cell.lateral != PK_LATERAL_PERIODIC) {
+      !has_lateral_phase(&problem->cell)) {
     const pk_node *k = values[KEY_AT]->last;
     status = pk_fail_at(reader->context, PICKET_ERROR_INPUT, k->place,
-                        "%s is %s, must be 0 unless cell.lateral is periodic", pk_node_path(k).text,
-                        k->text);
+                        "%s is %s, must be 0 unless cell.lateral is periodic, or uniform with a "
+                        "lateral_span_nm to count k_x in",
+                        pk_node_path(k).text, k->text);
   }
   if (status == PICKET_OK && values[KEY_LABEL]) {
     const char *label = NULL;

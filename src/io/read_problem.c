@@ -21,7 +21,7 @@ enum {
   KEY_CELL,
   KEY_PATH,
   KEY_SLAB,
-  KEY_LATER,
+  KEY_LATER, /* blocks of the format that no command reads yet: any content is let through */
   KEY_COUNT = KEY_LATER + 6
 };
 static const pk_key keys[KEY_COUNT] = {
@@ -49,16 +49,6 @@ static picket_status check_format(picket_context *context, const pk_node *root,
                       "the file has no \"format\", must begin with \"format: 1\"");
   }
   return pk_read_whole(context, node, FORMAT, FORMAT, &format);
-}
-
-static picket_status check_later(picket_context *context, const pk_node *const *values) {
-  for (int i = KEY_LATER; i < KEY_COUNT; i++) {
-    if (values[i]) {
-      return pk_fail_at(context, PICKET_ERROR_UNSUPPORTED, values[i]->key_place,
-                        "\"%s\" is not in this version (%s)", keys[i].name, picket_version());
-    }
-  }
-  return PICKET_OK;
 }
 
 static picket_status read_name(pk_reader *reader, const pk_node *node) {
@@ -110,9 +100,6 @@ picket_status pk_problem_read(picket_context *context, const pk_document *docume
   picket_status status = pk_read_block(context, root, keys, KEY_COUNT, values);
   if (status == PICKET_OK) {
     status = check_format(context, root, values[KEY_FORMAT]);
-  }
-  if (status == PICKET_OK) {
-    status = check_later(context, values);
   }
   if (status != PICKET_OK) {
     return status;

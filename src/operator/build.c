@@ -1,5 +1,5 @@
-/* Building an operator: its pattern, its edges and what mixture of media each site holds. The values
- * come with a load (values.c). */
+/* Building an operator: its pattern, its edges and what mixture of media each site holds. The
+ * values come with a load (values.c). */
 #include <assert.h>
 #include <math.h>
 #include <string.h>
@@ -7,9 +7,10 @@
 #include "base/memory.h"
 #include "operator/operator_private.h"
 
-/* The neighbour of unknown (iu, iv) one step along an axis, and how the step wraps. False at a wall. */
-static bool neighbour(const pk_operator *op, int shift, int iu, int iv, int du, int dv, int64_t *node,
-                      int *wu, int *wv) {
+/* The neighbour of unknown (iu, iv) one step along an axis, and how the step wraps. False at a
+ * wall. */
+static bool neighbour(const pk_operator *op, int shift, int iu, int iv, int du, int dv,
+                      int64_t *node, int *wu, int *wv) {
   *wu = *wv = 0;
   iv += dv;
   if (iv < 0 || iv >= op->nv) {
@@ -192,8 +193,8 @@ static picket_status add_edge(pk_operator *op, const pk_operator_plan *plan, int
   return PICKET_OK;
 }
 
-/* An edge from a wall line, where the unknown is zero, to the first unknown (or from the last one to
- * the wall): only the diagonal is touched. Kept as an edge whose far end is missing. */
+/* An edge from a wall line, where the unknown is zero, to the first unknown (or from the last one
+ * to the wall): only the diagonal is touched. Kept as an edge whose far end is missing. */
 static picket_status add_wall_edge(pk_operator *op, const pk_operator_plan *plan, int iu, int iv,
                                    pk_axis_name along, bool at_low) {
   const pk_axis *axis = along == PK_U ? &op->u : &op->v;
@@ -409,10 +410,10 @@ void pk_operator_free(pk_operator *op) {
   pk_axis_clear(context, &op->u);
   pk_axis_clear(context, &op->v);
   pk_mixtures_close(&op->mixtures);
-  void *arrays[] = {op->pattern.start, op->pattern.row, op->wu,   op->wv,
-                    op->diagonal,      op->edge,        op->cross, op->node_mixture,
-                    op->cell,          op->permittivity, op->stiff, op->lateral,
-                    op->mass,          op};
+  void *arrays[] = {
+      op->pattern.start, op->pattern.row, op->wu,           op->wv,   op->diagonal,
+      op->edge,          op->cross,       op->node_mixture, op->cell, op->permittivity,
+      op->stiff,         op->lateral,     op->mass,         op};
   for (size_t i = 0; i < sizeof arrays / sizeof arrays[0]; i++) {
     pk_free(context, arrays[i]);
   }

@@ -1,5 +1,6 @@
 /* Bilinear forms of an operator between a left and a right vector: what perturbation theory
- * (Hellmann and Feynman) needs. The left vector belongs to the transposed problem, at 1/ξ and 1/χ. */
+ * (Hellmann and Feynman) needs. The left vector belongs to the transposed problem, at 1/ξ and 1/χ.
+ */
 #include <string.h>
 
 #include "operator/operator_private.h"

@@ -104,8 +104,8 @@ double complex pk_mixture_weight_slope(const pk_mixture *mixture, pk_axis_name a
   return -mixture->fraction[i] * (share / (e * e) + (1 - share) / (mean * mean));
 }
 
-double complex pk_mixture_mixed_slope(const pk_mixture *mixture,
-                                      const double complex *permittivity, int i) {
+double complex pk_mixture_mixed_slope(const pk_mixture *mixture, const double complex *permittivity,
+                                      int i) {
   if (mixture->count == 1) {
     return 0;
   }

@@ -18,7 +18,7 @@ typedef struct pk_mixture {
 
 typedef struct pk_mixtures {
   picket_context *context;
-  int pure;       /* mixtures 0 to pure - 1 are the pure media */
+  int pure; /* mixtures 0 to pure - 1 are the pure media */
   int count, capacity;
   pk_mixture *list;
 } pk_mixtures;
@@ -34,16 +34,17 @@ double complex pk_mixture_mean(const pk_mixture *mixture, const double complex *
 double complex pk_mixture_mean_inverse(const pk_mixture *mixture,
                                        const double complex *permittivity);
 
-/* The weight of a u difference (along = PK_U), of a v difference (PK_V), or of the mixed term: entries of
- * the tensor that multiplies gradients, uu: η_vv, vv: η_uu, uv: -η_uv. */
+/* The weight of a u difference (along = PK_U), of a v difference (PK_V), or of the mixed term:
+ * entries of the tensor that multiplies gradients, uu: η_vv, vv: η_uu, uv: -η_uv. */
 double complex pk_mixture_weight(const pk_mixture *mixture, pk_axis_name along,
                                  const double complex *permittivity);
 double complex pk_mixture_mixed(const pk_mixture *mixture, const double complex *permittivity);
 
-/* Derivatives of the three with respect to the permittivity of the medium number i of the mixture. */
+/* Derivatives of the three with respect to the permittivity of the medium number i of the mixture.
+ */
 double complex pk_mixture_weight_slope(const pk_mixture *mixture, pk_axis_name along,
                                        const double complex *permittivity, int i);
-double complex pk_mixture_mixed_slope(const pk_mixture *mixture,
-                                      const double complex *permittivity, int i);
+double complex pk_mixture_mixed_slope(const pk_mixture *mixture, const double complex *permittivity,
+                                      int i);
 
 #endif

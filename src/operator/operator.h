@@ -4,12 +4,12 @@
  *
  * from  ey:  -∂z² E - ∂x² E = k0² ε E
  *       hy:  -∂z(η_xx ∂z H) - ∂x(η_zz ∂x H) + ∂z(η_xz ∂x H) + ∂x(η_xz ∂z H) = k0² H,  η = ε⁻¹
- * (the sign of the mixed term follows from curl η curl; here the tensor is written for the gradient,
- * w = adj(η), so that A = Dᴴ W D with W positive.) Unknowns sit at grid nodes, v (x) fastest:
- * unknown iu·nv + iv. A is Dᴴ W D with differences D on the edges between neighbouring nodes and
- * weights W on the same edges; B is diagonal. So T is Hermitian for lossless cells and real k, and complex
- * symmetric under ξ → 1/ξ, χ → 1/χ in general. The Bloch phase stands on the few edges that
- * wrap around, as ξ^wu χ^wv.
+ * (the sign of the mixed term follows from curl η curl; here the tensor is written for the
+ * gradient, w = adj(η), so that A = Dᴴ W D with W positive.) Unknowns sit at grid nodes, v (x)
+ * fastest: unknown iu·nv + iv. A is Dᴴ W D with differences D on the edges between neighbouring
+ * nodes and weights W on the same edges; B is diagonal. So T is Hermitian for lossless cells and
+ * real k, and complex symmetric under ξ → 1/ξ, χ → 1/χ in general. The Bloch phase stands on the
+ * few edges that wrap around, as ξ^wu χ^wv.
  *
  * Material averages: ey takes the exact area average of ε over the dual cell of a node; hy takes
  *   η = ⟨1/ε⟩ N + ⟨ε⟩⁻¹ (1 - N),  N = mean of n nᵀ over the interface in the box,
@@ -34,9 +34,9 @@ typedef struct pk_operator_plan {
   pk_polarization polarization;
   const pk_geometry *geometry;
   const pk_axis *u, *v;
-  bool uniform_v;    /* one unknown along v, which varies as exp(i k_x x) only */
-  int shift_lines;   /* lines along u by which crossing the v boundary advances; 0 without a shift */
-  int media;         /* media numbers run from 0 to media - 1 */
+  bool uniform_v;  /* one unknown along v, which varies as exp(i k_x x) only */
+  int shift_lines; /* lines along u by which crossing the v boundary advances; 0 without a shift */
+  int media;       /* media numbers run from 0 to media - 1 */
 } pk_operator_plan;
 
 /* Bloch phases. kx is used by a uniform v axis only, in 1/µm. */

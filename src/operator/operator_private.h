@@ -10,12 +10,12 @@
 /* A difference u_q ξ^wu χ^wv - u_p between neighbouring nodes, with the weight
  * scale × (ey: 1; hy: the average of the mixture). */
 typedef struct pk_edge {
-  int64_t p, q;           /* q is the neighbour upwards along the axis; q = p: a uniform axis */
-  signed char wu, wv;     /* how q wraps */
-  unsigned char along;    /* pk_axis_name */
+  int64_t p, q;        /* q is the neighbour upwards along the axis; q = p: a uniform axis */
+  signed char wu, wv;  /* how q wraps */
+  unsigned char along; /* pk_axis_name */
   int mixture;
-  double complex scale;   /* dual length across / length along, stretched */
-  int64_t slot[4];        /* of (p,p), (q,q), (p,q), (q,p) in the pattern */
+  double complex scale; /* dual length across / length along, stretched */
+  int64_t slot[4];      /* of (p,p), (q,q), (p,q), (q,p) in the pattern */
 } pk_edge;
 
 /* The mixed term at a node p: scale × weight × (D_u* D_v + D_v* D_u), each D the mean of the two
@@ -34,22 +34,22 @@ struct pk_operator {
   picket_context *context;
   pk_polarization polarization;
   int media, nu, nv;
-  bool real_axes;         /* no stretched lengths */
-  bool is_real;           /* after a load */
-  pk_axis u, v;           /* own copies */
+  bool real_axes; /* no stretched lengths */
+  bool is_real;   /* after a load */
+  pk_axis u, v;   /* own copies */
   pk_pattern pattern;
-  signed char *wu, *wv;   /* [nnz] wraps of the entries */
-  int64_t *diagonal;      /* [n] slots of the diagonal */
+  signed char *wu, *wv; /* [nnz] wraps of the entries */
+  int64_t *diagonal;    /* [n] slots of the diagonal */
   int64_t edge_count, cross_count;
   pk_edge *edge;
   pk_cross *cross;
   pk_mixtures mixtures;
-  int *node_mixture;      /* [n], ey */
-  double complex *cell;   /* [n] dual area, stretched */
+  int *node_mixture;            /* [n], ey */
+  double complex *cell;         /* [n] dual area, stretched */
   double complex *permittivity; /* [media] as loaded */
-  double complex *stiff;  /* [nnz] */
-  double complex *lateral; /* [n] or null: weight of kx² on the diagonal (uniform v axis) */
-  double complex *mass;   /* [n] */
+  double complex *stiff;        /* [nnz] */
+  double complex *lateral;      /* [n] or null: weight of kx² on the diagonal (uniform v axis) */
+  double complex *mass;         /* [n] */
 };
 
 /* The slot of (row, column), which must exist. */

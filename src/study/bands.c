@@ -1,7 +1,7 @@
 /* Bands ω(k) along a path, and the gaps between them.
  *
- * Band j at a wavenumber is the frequency at which the j-th lowest eigenvalue of the cell, its media
- * taken at that frequency, equals (ω/c)²; sorted values are continuous along the path. */
+ * Band j at a wavenumber is the frequency at which the j-th lowest eigenvalue of the cell, its
+ * media taken at that frequency, equals (ω/c)²; sorted values are continuous along the path. */
 #include <math.h>
 #include <string.h>
 
@@ -16,7 +16,8 @@ enum { USUAL_BANDS = 6, NEWTON_STEPS = 12 };
 
 static const double PI = 3.141592653589793238;
 
-/* Modes below the start frequency by this factor stand at zero: the constant field at the zone centre. */
+/* Modes below the start frequency by this factor stand at zero: the constant field at the zone
+ * centre. */
 static const double ZERO = 1e-5;
 
 static const char NOTE_ABOVE[] =
@@ -35,10 +36,11 @@ typedef struct band_study {
   pk_survey survey;
   int bands, points;
   path_point *point;
-  bool *outside;   /* [points][bands] a material was not known there */
+  bool *outside; /* [points][bands] a material was not known there */
 } band_study;
 
-/* --- The path ------------------------------------------------------------------------------------ */
+/* --- The path ------------------------------------------------------------------------------------
+ */
 
 static const pk_path_point USUAL_PATH[2] = {{{0, 0}, NULL}, {{1, 0}, NULL}};
 
@@ -64,23 +66,8 @@ static picket_status lay_path(band_study *s, int per_leg) {
   return PICKET_OK;
 }
 
-/* k_x must mean something: a lateral period, or a stack with a span to count in. */
-static picket_status check_path(const band_study *s) {
-  const pk_cell *cell = &s->problem->cell;
-  bool lateral = cell->lateral == PK_LATERAL_PERIODIC ||
-                 (cell->lateral == PK_LATERAL_UNIFORM && cell->span_um > 0);
-  for (int i = 0; i < s->points; i++) {
-    if (s->point[i].kx != 0 && !lateral) {
-      return pk_fail(s->problem->context, PICKET_ERROR_INPUT,
-                     "path: k_x is %g, must be 0 for a cell without a lateral period (a uniform "
-                     "cell takes lateral_span_nm as the unit)",
-                     s->point[i].kx);
-    }
-  }
-  return PICKET_OK;
-}
-
-/* --- Bands at one wavenumber on one grid --------------------------------------------------------- */
+/* --- Bands at one wavenumber on one grid ---------------------------------------------------------
+ */
 
 /* |k| folded into the first zone, 1/µm: what the light line is compared with. */
 static double folded_wavenumber(const pk_cell *cell, double kz) {
@@ -100,9 +87,10 @@ static bool is_guided(const band_study *s, const path_point *point, double k0) {
   return true;
 }
 
-/* The j-th lowest mode with its media at its own frequency, from a guess. NaN if it does not settle. */
-static picket_status settle_band(band_study *s, pk_level *level, pk_phase phase, int j,
-                                 double *k0, bool *outside) {
+/* The j-th lowest mode with its media at its own frequency, from a guess. NaN if it does not
+ * settle. */
+static picket_status settle_band(band_study *s, pk_level *level, pk_phase phase, int j, double *k0,
+                                 bool *outside) {
   picket_context *context = s->problem->context;
   pk_mode *modes = PK_NEW(context, j + 1, pk_mode);
   picket_status status = modes ? PICKET_OK : PICKET_ERROR_MEMORY;
@@ -136,10 +124,11 @@ static picket_status bands_at(band_study *s, pk_level *level, int at, double *fr
   pk_mode *modes = PK_NEW(context, s->bands, pk_mode);
   int found = 0;
   double start = s->survey.k0_start;
-  picket_status status = modes ? pk_media_set(&level->media, start, level->op) : PICKET_ERROR_MEMORY;
+  picket_status status =
+      modes ? pk_media_set(&level->media, start, level->op) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
-    status = pk_solver_modes(level->solver, phase, -0.2 * start * start, s->bands, NULL, modes,
-                             &found);
+    status =
+        pk_solver_modes(level->solver, phase, -0.2 * start * start, s->bands, NULL, modes, &found);
   }
   bool dispersive = level->media.dispersive || level->media.clamped;
   for (int j = 0; j < s->bands && status == PICKET_OK; j++) {
@@ -185,8 +174,7 @@ static picket_status scout(band_study *s) {
   double *values = PK_NEW(s->problem->context, s->points * s->bands, double);
   pk_cell_grid base;
   pk_lay_plan plan = {PK_REACH_ROOMY, false, true};
-  picket_status status =
-      values ? pk_survey_lay(&s->survey, &plan, &base) : PICKET_ERROR_MEMORY;
+  picket_status status = values ? pk_survey_lay(&s->survey, &plan, &base) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
     status = sample(s, &base, 1, values);
     pk_cell_grid_clear(s->problem->context, &base);
@@ -208,10 +196,11 @@ static picket_status scout(band_study *s) {
   return status;
 }
 
-/* --- Gaps ---------------------------------------------------------------------------------------- */
+/* --- Gaps ----------------------------------------------------------------------------------------
+ */
 
-/* The highest (sign 1) or lowest (sign -1) value of a band over the path. Between the points of the path
- * a parabola through three samples says how much is missed; that much is added to the bar. */
+/* The highest (sign 1) or lowest (sign -1) value of a band over the path. Between the points of the
+ * path a parabola through three samples says how much is missed; that much is added to the bar. */
 static picket_quantity extreme(const band_study *s, const picket_quantity *q, int band, int sign) {
   int best = 0;
   for (int i = 0; i < s->points; i++) {
@@ -253,7 +242,8 @@ static picket_status find_gaps(const band_study *s, const picket_quantity *q,
   return PICKET_OK;
 }
 
-/* --- The study ----------------------------------------------------------------------------------- */
+/* --- The study -----------------------------------------------------------------------------------
+ */
 
 static picket_status fill_points(const band_study *s, const picket_quantity *q,
                                  picket_bands_answer *answer) {
@@ -291,9 +281,12 @@ static picket_status solve(band_study *s, const picket_options *options,
   picket_quantity *q = PK_NEW(context, s->points * s->bands, picket_quantity);
   picket_status status = s->outside && q ? scout(s) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
-    pk_converge_request request = {
-        .survey = &s->survey, .count = s->points * s->bands, .sample = sample, .user = s,
-        .options = options, .phase = s->polarization == PK_EY ? "bands, ey" : "bands, hy"};
+    pk_converge_request request = {.survey = &s->survey,
+                                   .count = s->points * s->bands,
+                                   .sample = sample,
+                                   .user = s,
+                                   .options = options,
+                                   .phase = s->polarization == PK_EY ? "bands, ey" : "bands, hy"};
     status = pk_converge(&request, q, result);
   }
   answer->polarization = (picket_polarization)s->polarization;
@@ -317,9 +310,6 @@ static picket_status one_polarization(const pk_problem *problem, pk_polarization
   picket_status status = pk_survey_take(problem, polarization, &s.survey);
   if (status == PICKET_OK) {
     status = lay_path(&s, (int)options->points);
-  }
-  if (status == PICKET_OK) {
-    status = check_path(&s);
   }
   if (status == PICKET_OK) {
     status = solve(&s, options, answer, result);
