@@ -4,6 +4,7 @@
 #include <math.h>
 
 #include "base/memory.h"
+#include "bloch/extremum.h"
 #include "bloch/family.h"
 #include "bloch/wavenumber.h"
 
@@ -92,9 +93,30 @@ static void pick_pair(finder *f, int order, int found, const pk_mode *modes, int
   }
 }
 
+/* Moves an edge off the boundary if its band has the extreme inside the zone. A band that is lost
+ * on the way leaves the edge at the boundary, where it is stationary too. */
+static picket_status move_inside(finder *f, int order, pk_edge_found *edge, bool maximum,
+                                 pk_resonance *resonance) {
+  const pk_stop_band_request *request = f->request;
+  bool wanted = request->look_inside ||
+                (request->inside && request->inside[2 * (order - 1) + (maximum ? 0 : 1)]);
+  if (!wanted) {
+    return PICKET_OK;
+  }
+  pk_extremum_request find = {request->pitch_um, request->lateral_shift, order, maximum};
+  picket_status status = pk_extremum_find(f->solver, f->media, &find, resonance, &edge->offset);
+  if (status == PICKET_ERROR_NUMERIC) {
+    pk_log(f->context, PICKET_LOG_DETAIL, "order %d: %s", order,
+           picket_context_message(f->context));
+    pk_message_clear(f->context);
+    status = PICKET_OK;
+  }
+  return status;
+}
+
 /* The edge at the zone boundary that grows out of a standing wave, media at its own frequency. */
-static picket_status settle_edge(finder *f, int order, const pk_mode *mode, pk_edge_found *edge,
-                                 double complex **field) {
+static picket_status settle_edge(finder *f, int order, const pk_mode *mode, bool maximum,
+                                 pk_edge_found *edge, double complex **field) {
   double k0 = sqrt(creal(mode->lambda));
   edge->k0 = k0;
   if (!is_confined(f, order, k0)) {
@@ -109,6 +131,11 @@ static picket_status settle_edge(finder *f, int order, const pk_mode *mode, pk_e
     return PICKET_OK;
   }
   if (status != PICKET_OK) {
+    return status;
+  }
+  status = move_inside(f, order, edge, maximum, &resonance);
+  if (status != PICKET_OK) {
+    pk_resonance_clear(f->context, &resonance);
     return status;
   }
   edge->k0 = resonance.k0;
@@ -241,7 +268,7 @@ static picket_status one_order(finder *f, int order, double k0_start, pk_stop_ba
       band->edge[e].state = f->request->open ? PK_EDGE_RADIATES : PK_EDGE_LOST;
       continue;
     }
-    status = settle_edge(f, order, &modes[pair[e]], &band->edge[e], &fields[e]);
+    status = settle_edge(f, order, &modes[pair[e]], e == 0, &band->edge[e], &fields[e]);
   }
   if (status == PICKET_OK && order == 1 && band->edge[0].state == PK_EDGE_RADIATES) {
     status = pk_fail(f->context, PICKET_ERROR_NO_MODE,

@@ -39,6 +39,9 @@ typedef struct pk_stop_band_request {
   double k0_start;      /* where the media are taken for a first look */
   bool open;            /* sides are open: a light line exists */
   int side_medium[2];   /* media at -x and +x of an open cell */
+  bool look_inside;     /* search every edge's band for an extreme inside the zone; otherwise only
+                           where `inside` says that there is one */
+  const bool *inside;   /* [last_order][2] as found by an earlier look, or null */
 } pk_stop_band_request;
 
 /* bands[last_order].

@@ -7,10 +7,11 @@
 #include "base/memory.h"
 #include "study/level.h"
 
-/* Members of the family on each attempt. Three grids settle two exponents; a fourth tells scatter from
- * law where interfaces cut the cells, and a third exponent on one-dimensional stacks. */
+/* Members of the family on each attempt. Three grids settle two exponents; a fourth tells scatter
+ * from law where interfaces cut the cells, and a third exponent on one-dimensional stacks. */
 enum { ATTEMPTS = 4, MOST_GRIDS = 4 };
-static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {{2, 3, 4}, {3, 4, 6}, {4, 6, 8}, {6, 8, 12}};
+static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {
+    {2, 3, 4}, {3, 4, 6}, {4, 6, 8}, {6, 8, 12}};
 static const int MEMBERS_FOUR[ATTEMPTS][MOST_GRIDS] = {
     {2, 3, 4, 6}, {4, 5, 6, 8}, {6, 8, 10, 12}, {8, 12, 16, 20}};
 
@@ -24,10 +25,10 @@ typedef struct family {
   const pk_converge_request *request;
   picket_context *context;
   pk_cell_grid base;
-  int count;            /* grids */
+  int count; /* grids */
   const int *m;
-  double *values;       /* [MOST_GRIDS][quantities] */
-  double *span_error;   /* [quantities] of cutting off open sides */
+  double *values;     /* [MOST_GRIDS][quantities] */
+  double *span_error; /* [quantities] of cutting off open sides */
 } family;
 
 static picket_status sample_grids(family *f, int attempt) {
@@ -47,8 +48,8 @@ static picket_status sample_grids(family *f, int attempt) {
   return status;
 }
 
-/* Walls where the slope vanishes move a value the other way than walls where the field does, by the same
- * amount to first order: half the difference is the error of either. */
+/* Walls where the slope vanishes move a value the other way than walls where the field does, by the
+ * same amount to first order: half the difference is the error of either. */
 static picket_status sample_span_error(family *f) {
   const pk_survey *survey = f->request->survey;
   int quantities = f->request->count;

@@ -1,5 +1,6 @@
-/* Accuracy on demand: quantities are sampled on a family of grids, extrapolated and given bars; finer families
- * follow until every bar is below the accuracy asked or the limit of unknowns is met. */
+/* Accuracy on demand: quantities are sampled on a family of grids, extrapolated and given bars;
+ * finer families follow until every bar is below the accuracy asked or the limit of unknowns is
+ * met. */
 #ifndef PK_STUDY_CONVERGE_H
 #define PK_STUDY_CONVERGE_H
 
@@ -13,16 +14,16 @@ typedef picket_status (*pk_sample)(void *user, const pk_cell_grid *base, int m, 
 
 typedef struct pk_converge_request {
   const pk_survey *survey;
-  int count;                     /* quantities */
+  int count; /* quantities */
   pk_sample sample;
   void *user;
   const picket_options *options;
-  const char *phase;             /* what is being done, for progress; static text */
-  bool mirror;                   /* the laterally even family is enough */
+  const char *phase; /* what is being done, for progress; static text */
+  bool mirror;       /* the laterally even family is enough */
 } pk_converge_request;
 
-/* quantities[count]; the result is marked partial if a bar stays above the accuracy asked. For open sides
- * the error of cutting them off is measured (walls of both kinds) and added to each bar. */
+/* quantities[count]; the result is marked partial if a bar stays above the accuracy asked. For open
+ * sides the error of cutting them off is measured (walls of both kinds) and added to each bar. */
 picket_status pk_converge(const pk_converge_request *request, picket_quantity *quantities,
                           picket_result *result);
 

@@ -1,5 +1,5 @@
-/* The stop bands of a cell: grids are chosen from the problem, each is solved, values are extrapolated
- * and given bars, and the operating band is held against them. */
+/* The stop bands of a cell: grids are chosen from the problem, each is solved, values are
+ * extrapolated and given bars, and the operating band is held against them. */
 #include <math.h>
 #include <string.h>
 
@@ -7,9 +7,9 @@
 #include "bloch/stop_band.h"
 #include "study/converge.h"
 #include "study/estimate.h"
-#include "study/survey.h"
 #include "study/level.h"
 #include "study/study.h"
+#include "study/survey.h"
 
 static const double PI = 3.141592653589793238;
 static const double DECIBEL_PER_NEPER = 8.685889638065036553; /* 20/ln 10 */
@@ -30,6 +30,7 @@ typedef struct edge_study {
   pk_stop_band_request request;
   pk_survey survey;
   pk_stop_band *last; /* [orders] of the last grid */
+  bool *inside;       /* [orders][2] edges whose band has its extreme inside the zone */
 } edge_study;
 
 static picket_status solve_level(edge_study *s, const pk_cell_grid *base, int m) {
@@ -51,9 +52,8 @@ static picket_status sample(void *user, const pk_cell_grid *base, int m, double 
     double *v = values + i * PER_ORDER;
     v[LONG_UM] = band->edge[0].state == PK_EDGE_FOUND ? 2 * PI / band->edge[0].k0 : NAN;
     v[SHORT_UM] = band->edge[1].state == PK_EDGE_FOUND ? 2 * PI / band->edge[1].k0 : NAN;
-    v[ATTENUATION_DB] = band->has_attenuation
-                            ? DECIBEL_PER_NEPER * band->attenuation * s->request.pitch_um
-                            : NAN;
+    v[ATTENUATION_DB] =
+        band->has_attenuation ? DECIBEL_PER_NEPER * band->attenuation * s->request.pitch_um : NAN;
   }
   return status;
 }
@@ -85,8 +85,13 @@ static picket_status scout(edge_study *s) {
   if (status != PICKET_OK) {
     return status;
   }
+  s->request.look_inside = true;
   status = solve_level(s, &base, 2);
+  s->request.look_inside = false;
   pk_cell_grid_clear(s->problem->context, &base);
+  for (int i = 0; status == PICKET_OK && i < 2 * s->request.last_order; i++) {
+    s->inside[i] = s->last[i / 2].edge[i % 2].offset > 0;
+  }
   if (status == PICKET_OK) {
     take_decay(s);
     s->request.k0_start = s->last[0].edge[0].k0;
@@ -116,8 +121,8 @@ static void fill_band(const pk_stop_band *found, const picket_quantity *q, picke
   band->short_confined = found->edge[1].state != PK_EDGE_RADIATES;
 }
 
-/* Where the operating band stands. An edge that is missing because it radiates gives way to the light
- * line 2Λ n of the sides, below which the guide radiates. */
+/* Where the operating band stands. An edge that is missing because it radiates gives way to the
+ * light line 2Λ n of the sides, below which the guide radiates. */
 static picket_regime regime_of(const edge_study *s, const picket_stop_band *first, double from,
                                double to) {
   double light_line = pk_survey_light_line(&s->survey);
@@ -161,7 +166,8 @@ static picket_status fill_estimate(const edge_study *s, const picket_stop_band *
   if (!isnan(centre) && !isnan(estimate->centre_um)) {
     double bar = 0.5 * (first->short_um.uncertainty + first->long_um.uncertainty);
     const char *note = first->long_um.note ? first->long_um.note : first->short_um.note;
-    estimate->error_um = (picket_quantity){estimate->centre_um - centre, bar, isnan(bar) ? note : NULL};
+    estimate->error_um =
+        (picket_quantity){estimate->centre_um - centre, bar, isnan(bar) ? note : NULL};
   }
   return PICKET_OK;
 }
@@ -173,16 +179,21 @@ static picket_status edges_answer(edge_study *s, const picket_options *options,
   picket_quantity *q = PK_NEW(context, orders * PER_ORDER, picket_quantity);
   picket_stop_band *bands = PK_NEW(context, orders, picket_stop_band);
   s->last = PK_NEW(context, orders, pk_stop_band);
+  s->inside = PK_NEW(context, 2 * orders, bool);
+  s->request.inside = s->inside;
   answer->polarization = (picket_polarization)s->polarization;
   answer->band_count = orders;
   answer->bands = bands;
-  picket_status status = q && bands && s->last ? scout(s) : PICKET_ERROR_MEMORY;
+  picket_status status = q && bands && s->last && s->inside ? scout(s) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
-    pk_converge_request request = {.survey = &s->survey, .count = orders * PER_ORDER,
-                                   .sample = sample, .user = s, .options = options,
-                                   .phase = s->polarization == PK_EY ? "stop bands, ey"
-                                                                     : "stop bands, hy",
-                                   .mirror = true};
+    pk_converge_request request = {
+        .survey = &s->survey,
+        .count = orders * PER_ORDER,
+        .sample = sample,
+        .user = s,
+        .options = options,
+        .phase = s->polarization == PK_EY ? "stop bands, ey" : "stop bands, hy",
+        .mirror = true};
     status = pk_converge(&request, q, result);
   }
   for (int i = 0; status == PICKET_OK && i < orders; i++) {
@@ -194,6 +205,7 @@ static picket_status edges_answer(edge_study *s, const picket_options *options,
   }
   pk_free(context, q);
   pk_free(context, s->last);
+  pk_free(context, s->inside);
   return status;
 }
 
@@ -211,7 +223,9 @@ static picket_status one_polarization(const pk_problem *problem, pk_polarization
                                      options->count > 0 ? (int)options->count : 1,
                                      s.survey.k0_start,
                                      cell->lateral == PK_LATERAL_OPEN,
-                                     {s.survey.side_medium[0], s.survey.side_medium[1]}};
+                                     {s.survey.side_medium[0], s.survey.side_medium[1]},
+                                     false,
+                                     NULL};
   return edges_answer(&s, options, answer, result);
 }
 

@@ -4,8 +4,8 @@
 #include <math.h>
 
 /* Scattered values (curved interfaces): calibrated on the exact square lattice of rods, both
- * polarizations, all bands below the fifth: the largest error was below the largest misfit or half the
- * last step; twice that is kept. */
+ * polarizations, all bands below the fifth: the largest error was below the largest misfit or half
+ * the last step; twice that is kept. */
 static const double SCATTER_SAFETY = 2;
 
 /* Rounding of an eigenvalue: residuals of 1e-12 and sums over 1e5 terms. */
@@ -96,8 +96,7 @@ picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
       return (picket_quantity){NAN, NAN, 0};
     }
   }
-  picket_quantity q =
-      law->smooth ? smooth(law, count, m, values) : scattered(count, m, values);
+  picket_quantity q = law->smooth ? smooth(law, count, m, values) : scattered(count, m, values);
   if (law->no_bar) {
     q.uncertainty = NAN;
     q.note = law->no_bar;

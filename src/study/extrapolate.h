@@ -13,11 +13,11 @@ enum { PK_GRIDS = 6, PK_EXPONENTS = 5 };
 
 /* How values of a quantity depend on the grid. */
 typedef struct pk_error_law {
-  int count;                     /* exponents that are known, rising */
+  int count; /* exponents that are known, rising */
   double exponent[PK_EXPONENTS];
-  int smooth;                    /* 1: interfaces lie on grid lines and the law holds; 0: interfaces cut
-                                    the cells and the values scatter about it */
-  const char *no_bar;            /* why no bar can be vouched for, or null; static text */
+  int smooth;         /* 1: interfaces lie on grid lines and the law holds; 0: interfaces cut
+                         the cells and the values scatter about it */
+  const char *no_bar; /* why no bar can be vouched for, or null; static text */
 } pk_error_law;
 
 /* X from the last `used` of `count` grids with the first used - 1 exponents of the law. */

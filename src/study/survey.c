@@ -129,8 +129,7 @@ picket_status pk_survey_take(const pk_problem *problem, pk_polarization polariza
     return status;
   }
   for (int side = 0; side < 2; side++) {
-    survey.decay_um[side] =
-        pk_survey_decay(&survey, side, PI / cell->pitch_um, survey.k0_start);
+    survey.decay_um[side] = pk_survey_decay(&survey, side, PI / cell->pitch_um, survey.k0_start);
   }
   *out = survey;
   return PICKET_OK;

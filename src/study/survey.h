@@ -1,5 +1,5 @@
-/* A first look at a cell before anything is solved: where the first stop band may lie, what is at its
- * sides, how fine the base grid should be, and how values will depend on the grid. */
+/* A first look at a cell before anything is solved: where the first stop band may lie, what is at
+ * its sides, how fine the base grid should be, and how values will depend on the grid. */
 #ifndef PK_STUDY_SURVEY_H
 #define PK_STUDY_SURVEY_H
 
@@ -15,7 +15,7 @@
 typedef struct pk_survey {
   const pk_problem *problem;
   pk_polarization polarization;
-  double k0_start;        /* a frequency to start from: near the first stop band, 1/µm */
+  double k0_start; /* a frequency to start from: near the first stop band, 1/µm */
   bool open;
   int side_medium[2];     /* of open sides at -x and +x */
   double decay_um[2];     /* 1/e length of the field there, as known so far */
@@ -33,8 +33,8 @@ double pk_survey_decay(const pk_survey *survey, int side, double k, double k0);
 /* Index of an open side at k0 (materials moved into their known range). */
 double pk_survey_side_index(const pk_survey *survey, int side, double k0);
 
-/* The longest vacuum wavelength, µm, at which a state at the zone edge lies above the light line of an open
- * side; 0 for closed cells. */
+/* The longest vacuum wavelength, µm, at which a state at the zone edge lies above the light line of
+ * an open side; 0 for closed cells. */
 double pk_survey_light_line(const pk_survey *survey);
 
 typedef struct pk_lay_plan {
