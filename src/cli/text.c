@@ -61,8 +61,11 @@ void pk_notes_add(pk_notes *notes, picket_quantity quantity) {
 }
 
 void pk_notes_print(const pk_notes *notes) {
+  if (notes->count > 0) {
+    printf("Why a number is missing, or its bar (\"?\"):\n");
+  }
   for (int i = 0; i < notes->count; i++) {
-    printf("  where a number or its bar is missing: %s\n", notes->text[i]);
+    printf("- %s\n", notes->text[i]);
   }
 }
 

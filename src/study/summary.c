@@ -2,8 +2,9 @@
  * operating band, the duty of the cell, light lines at the zone edge, the estimated stop band, the
  * number of modes of the slab.
  *
- * Duty is the share of the pitch that is not cladding, along the axis x = 0 or, if that meets only
- * cladding, along the middle of the shapes. */
+ * Duty is the share of the pitch that is not cladding, along the first of these lines that is
+ * segmented: the axis x = 0, the middle of the shapes, the middles between neighbouring edges.
+ */
 #include <complex.h>
 #include <math.h>
 
@@ -95,14 +96,34 @@ static picket_status share_at(const pk_problem *problem, double x, double *share
   }
 }
 
+/* Takes the share at x unless a segmented line has been found already. */
+static picket_status try_line(const pk_problem *problem, double x, double *duty) {
+  double share = 0;
+  bool found = *duty > 0 && *duty < 1;
+  picket_status status = found ? PICKET_OK : share_at(problem, x, &share);
+  if (status == PICKET_OK && !found && share > 0 && (share < 1 || *duty == 0)) {
+    *duty = share;
+  }
+  return status;
+}
+
 static picket_status find_duty(const pk_problem *problem, double *duty) {
   double low = 0;
   double high = 0;
-  picket_status status = share_at(problem, 0, duty);
-  if (status == PICKET_OK && *duty == 0 &&
-      pk_geometry_extent(problem->cell.geometry, PK_V, &low, &high)) {
-    status = share_at(problem, low + (high - low) / 2, duty);
+  double *lines = NULL;
+  int count = 0;
+  *duty = 0;
+  picket_status status = pk_geometry_lines(problem->cell.geometry, PK_V, &lines, &count);
+  if (status == PICKET_OK) {
+    status = try_line(problem, 0, duty);
   }
+  if (status == PICKET_OK && pk_geometry_extent(problem->cell.geometry, PK_V, &low, &high)) {
+    status = try_line(problem, low + (high - low) / 2, duty);
+  }
+  for (int i = 0; i + 1 < count && status == PICKET_OK; i++) {
+    status = try_line(problem, lines[i] + (lines[i + 1] - lines[i]) / 2, duty);
+  }
+  pk_free(problem->context, lines);
   return status;
 }
 
