@@ -142,10 +142,10 @@ static picket_regime regime_of(const edge_study *s, const picket_stop_band *firs
 static void fill_operating(const edge_study *s, const picket_stop_band *first,
                            picket_operating_band *operating) {
   const pk_light *light = &s->problem->light;
-  operating->given = light->given;
-  operating->clearance_um = missing("no operating band: the problem has no light");
+  operating->given = light->count > 0; /* light may name a polarization only */
+  operating->clearance_um = missing("no operating band: the problem gives no wavelengths");
   operating->from_um = operating->to_um = NAN;
-  if (!light->given) {
+  if (light->count == 0) {
     return;
   }
   operating->from_um = light->wavelength_um[0];
