@@ -1,6 +1,8 @@
 /* Numbers of an operator: weights of the edges for given permittivities, and the values of
  * T = A(ξ, χ) - k0² B on the pattern. */
 #include <assert.h>
+#include <float.h>
+#include <math.h>
 #include <string.h>
 
 #include "operator/operator_private.h"
@@ -38,8 +40,9 @@ static void load_crosses(pk_operator *op) {
     for (int s = 0; s < 2; s++) {
       for (int a = 0; a < cross->count[s]; a++) {
         for (int b = 0; b < cross->count[1 - s]; b++) {
-          op->stiff[cross->slot[s][a][b]] +=
-              weight * cross->coefficient[s][a] * cross->coefficient[1 - s][b];
+          /* The product first: it is the same number for (row, column) and (column, row). */
+          double complex product = cross->coefficient[s][a] * cross->coefficient[1 - s][b];
+          op->stiff[cross->slot[s][a][b]] += weight * product;
         }
       }
     }
@@ -87,9 +90,15 @@ const double complex *pk_operator_mass(const pk_operator *op) {
   return op->mass;
 }
 
+/* 1/ξ; on the unit circle the conjugate, so that a matrix at real k is Hermitian to the last bit. */
+static double complex inverse(double complex xi) {
+  double square = creal(xi) * creal(xi) + cimag(xi) * cimag(xi);
+  return fabs(square - 1) <= 4 * DBL_EPSILON ? conj(xi) : 1 / xi;
+}
+
 /* ξ^wu χ^wv for wu, wv in -1, 0, 1: [wu + 1][wv + 1]. */
 static void phase_table(double complex xi, double complex chi, double complex table[3][3]) {
-  double complex u[3] = {1 / xi, 1, xi}, v[3] = {1 / chi, 1, chi};
+  double complex u[3] = {inverse(xi), 1, xi}, v[3] = {inverse(chi), 1, chi};
   for (int a = 0; a < 3; a++) {
     for (int b = 0; b < 3; b++) {
       table[a][b] = u[a] * v[b];
