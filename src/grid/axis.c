@@ -28,20 +28,26 @@ static void layout_clear(picket_context *context, layout *l) {
   pk_free(context, l->step);
 }
 
+static void add_mark(const pk_axis_wish *wish, double s, layout *l) {
+  double sliver = SLIVER * wish->step;
+  if (s - l->mark[l->count - 1] > sliver && wish->to - s > sliver) {
+    l->mark[l->count++] = s;
+  }
+}
+
+/* Ends, starts of absorbing layers, and the lines between. */
 static picket_status layout_marks(picket_context *context, const pk_axis_wish *wish, layout *l) {
-  l->mark = PK_NEW(context, wish->line_count + 2, double);
-  l->step = PK_NEW(context, wish->line_count + 2, double);
+  l->mark = PK_NEW(context, wish->line_count + 4, double);
+  l->step = PK_NEW(context, wish->line_count + 4, double);
   if (!l->mark || !l->step) {
     return PICKET_ERROR_MEMORY;
   }
-  double sliver = SLIVER * wish->step;
   l->mark[l->count++] = wish->from;
+  add_mark(wish, wish->from + wish->layer[0].thickness, l);
   for (int i = 0; i < wish->line_count; i++) {
-    double s = wish->lines[i];
-    if (s - l->mark[l->count - 1] > sliver && wish->to - s > sliver) {
-      l->mark[l->count++] = s;
-    }
+    add_mark(wish, wish->lines[i], l);
   }
+  add_mark(wish, wish->to - wish->layer[1].thickness, l);
   l->mark[l->count++] = wish->to;
   return PICKET_OK;
 }
@@ -127,9 +133,24 @@ static picket_status axis_allocate(picket_context *context, int intervals, pk_ax
   return axis->line && axis->length ? PICKET_OK : PICKET_ERROR_MEMORY;
 }
 
+/* 1 + i strength t² at the middle of an interval: the midpoint rule keeps second order. */
+static double complex stretch_at(const pk_axis *axis, double s) {
+  double depth[2] = {axis->line[0] + axis->layer[0].thickness - s,
+                     s - (axis->line[axis->intervals] - axis->layer[1].thickness)};
+  double complex stretch = 1;
+  for (int e = 0; e < 2; e++) {
+    if (axis->layer[e].thickness > 0 && depth[e] > 0) {
+      double t = depth[e] / axis->layer[e].thickness;
+      stretch += I * axis->layer[e].strength * t * t;
+    }
+  }
+  return stretch;
+}
+
 static void axis_lengths(pk_axis *axis) {
   for (int i = 0; i < axis->intervals; i++) {
-    axis->length[i] = axis->line[i + 1] - axis->line[i];
+    double a = axis->line[i], b = axis->line[i + 1];
+    axis->length[i] = (b - a) * stretch_at(axis, 0.5 * (a + b));
   }
 }
 
@@ -156,7 +177,7 @@ static picket_status fill_axis(picket_context *context, const pk_axis_wish *wish
 
 picket_status pk_axis_lay(picket_context *context, const pk_axis_wish *wish, pk_axis *out) {
   assert(wish->to > wish->from && wish->step > 0 && wish->outer_step > 0);
-  pk_axis axis = {.low = wish->low, .high = wish->high};
+  pk_axis axis = {.low = wish->low, .high = wish->high, .layer = {wish->layer[0], wish->layer[1]}};
   layout l = {0};
   picket_status status = layout_marks(context, wish, &l);
   if (status == PICKET_OK) {
@@ -221,7 +242,7 @@ picket_status pk_axis_lay_repeated(picket_context *context, const pk_axis_wish *
 }
 
 picket_status pk_axis_divide(picket_context *context, const pk_axis *base, int m, pk_axis *out) {
-  pk_axis axis = {.low = base->low, .high = base->high};
+  pk_axis axis = {.low = base->low, .high = base->high, .layer = {base->layer[0], base->layer[1]}};
   picket_status status = axis_allocate(context, base->intervals * m, &axis);
   if (status != PICKET_OK) {
     pk_axis_clear(context, &axis);

@@ -18,8 +18,19 @@ typedef enum pk_end {
   PK_END_FREE      /* the normal derivative vanishes on the end line */
 } pk_end;
 
+/* An absorbing layer at an end of an axis: the coordinate is continued into the complex plane,
+ *   dx̃ = (1 + i strength t²) dx,  t = depth in the layer / thickness,
+ * so that outgoing waves decay without reflection (J.-P. Bérenger, J. Comput. Phys. 114, 185
+ * (1994); W. C. Chew and W. H. Weedon, Microw. Opt. Technol. Lett. 7, 599 (1994)). Thickness 0:
+ * none. */
+typedef struct pk_layer {
+  double thickness; /* µm */
+  double strength;
+} pk_layer;
+
 typedef struct pk_axis {
   pk_end low, high;
+  pk_layer layer[2]; /* at the low and the high end */
   int intervals;
   double *line; /* [intervals + 1] rising */
   double complex
@@ -36,6 +47,7 @@ typedef struct pk_axis_wish {
   double inner_from, inner_to;
   double outer_step;   /* largest spacing elsewhere */
   double growth;       /* spacing may grow by this much per length, e.g. 0.2 */
+  pk_layer layer[2];   /* inside [from, to], at its ends */
   int least_intervals; /* between neighbouring lines, at least 1 */
 } pk_axis_wish;
 

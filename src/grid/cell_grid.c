@@ -49,19 +49,55 @@ static picket_status lay_along(picket_context *context, const pk_cell *cell, dou
   return status;
 }
 
+/* The range of x in which the paint varies along z: outside it, films and sides need no fine steps.
+ * False if nothing varies. Between two neighbouring lines a rectangular geometry is the same for
+ * every x. */
+static bool varying_range(const pk_cell *cell, int count, const double *lines, double *low,
+                          double *high) {
+  bool any = false;
+  for (int i = 0; i + 1 < count; i++) {
+    double boundaries[3];
+    int media[2], intervals = 0;
+    picket_status status = pk_geometry_profile(cell->geometry, 0.5 * (lines[i] + lines[i + 1]), 2,
+                                               boundaries, media, &intervals);
+    if (status != PICKET_OK || intervals > 1) { /* more intervals than fit also means: it varies */
+      *low = any ? *low : lines[i];
+      *high = lines[i + 1];
+      any = true;
+    }
+  }
+  return any;
+}
+
+/* An open side: the structure, room for the field to fall, a layer to absorb what is left. */
+static void open_ends(const pk_cell *cell, const pk_cell_grid_wish *wish, int count,
+                      const double *lines, pk_axis_wish *axis) {
+  double low = 0, high = 0;
+  pk_geometry_extent(cell->geometry, PK_V, &low, &high);
+  axis->inner_from = low;
+  axis->inner_to = high;
+  if (pk_geometry_is_rectangular(cell->geometry)) {
+    varying_range(cell, count, lines, &axis->inner_from, &axis->inner_to);
+  }
+  for (int side = 0; side < 2; side++) {
+    axis->layer[side] = wish->layer[side];
+  }
+  axis->from = low - wish->reach[0] * wish->decay_um[0] - wish->layer[0].thickness;
+  axis->to = high + wish->reach[1] * wish->decay_um[1] + wish->layer[1].thickness;
+  double outer = fmin(wish->decay_um[0], wish->decay_um[1]) / STEPS_PER_DECAY;
+  if (wish->outer_step_um > 0) {
+    outer = fmin(outer, wish->outer_step_um);
+  }
+  axis->outer_step = fmax(axis->step, outer);
+}
+
 /* Where the lateral axis starts and ends, and what its ends are. */
-static void lateral_ends(const pk_cell *cell, const pk_cell_grid_wish *wish, pk_axis_wish *axis) {
+static void lateral_ends(const pk_cell *cell, const pk_cell_grid_wish *wish, int count,
+                         const double *lines, pk_axis_wish *axis) {
   pk_end wall = wish->zero_walls ? PK_END_ZERO : PK_END_FREE;
   axis->low = axis->high = wall;
   if (cell->lateral == PK_LATERAL_OPEN) {
-    double low = 0, high = 0;
-    pk_geometry_extent(cell->geometry, PK_V, &low, &high);
-    axis->inner_from = low;
-    axis->inner_to = high;
-    axis->from = low - wish->reach[0] * wish->decay_um[0];
-    axis->to = high + wish->reach[1] * wish->decay_um[1];
-    axis->outer_step =
-        fmax(axis->step, fmin(wish->decay_um[0], wish->decay_um[1]) / STEPS_PER_DECAY);
+    open_ends(cell, wish, count, lines, axis);
     return;
   }
   axis->from = axis->inner_from = -0.5 * cell->span_um;
@@ -85,6 +121,7 @@ static void halve(const pk_cell *cell, pk_axis_wish *axis, pk_cell_grid *grid) {
   grid->mirror_at = centre;
   axis->from = centre;
   axis->low = PK_END_FREE;
+  axis->layer[0] = (pk_layer){0};
   if (cell->lateral == PK_LATERAL_PERIODIC) {
     axis->high = PK_END_FREE;
   }
@@ -110,7 +147,7 @@ static picket_status lay_across(picket_context *context, const pk_cell *cell,
   }
   pk_axis_wish axis = {
       .step = step, .outer_step = step, .growth = GROWTH, .least_intervals = LEAST_INTERVALS};
-  lateral_ends(cell, wish, &axis);
+  lateral_ends(cell, wish, count, lines, &axis);
   if (wish->mirror) {
     halve(cell, &axis, grid);
   }

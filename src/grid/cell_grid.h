@@ -13,6 +13,9 @@ typedef struct pk_cell_grid_wish {
                              sides, what stands in for infinity */
   double decay_um[2];     /* open sides: 1/e length of the field at -x and +x */
   double reach[2];        /* open sides: distance of the wall from the structure in decay lengths */
+  pk_layer layer[2];    /* open sides: absorbing layer beyond that distance; thickness 0: a wall */
+  double outer_step_um; /* open sides: largest base spacing there besides a share of the decay
+                           lengths; 0: no other limit */
 } pk_cell_grid_wish;
 
 typedef struct pk_cell_grid {
