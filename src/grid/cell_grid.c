@@ -37,9 +37,18 @@ static picket_status lay_along(picket_context *context, const pk_cell *cell, dou
     return status;
   }
   double half = 0.5 * cell->pitch_um;
-  pk_axis_wish wish = {
-      PK_END_PERIODIC, PK_END_PERIODIC, -half, half, count, lines, step, -half, half, step,
-      GROWTH,          LEAST_INTERVALS};
+  pk_axis_wish wish = {.low = PK_END_PERIODIC,
+                       .high = PK_END_PERIODIC,
+                       .from = -half,
+                       .to = half,
+                       .line_count = count,
+                       .lines = lines,
+                       .step = step,
+                       .inner_from = -half,
+                       .inner_to = half,
+                       .outer_step = step,
+                       .growth = GROWTH,
+                       .least_intervals = LEAST_INTERVALS};
   grid->copies = cell->lateral == PK_LATERAL_PERIODIC ? shift_denominator(cell->shift) : 1;
   status = pk_axis_lay_repeated(context, &wish, grid->copies, &grid->u);
   if (status == PICKET_OK) {
