@@ -36,7 +36,8 @@ PICKET_EXPORT bool picket_result_complete(const picket_result *result);
 PICKET_EXPORT const char *picket_result_shortfall(const picket_result *result);
 
 /* The result as a JSON document (see the problem-file contract), or as comma-separated values with
- * one header line. Borrowed until the result is freed; null if memory is out. */
+ * one header line, units in the names of the columns. Lengths are nm in both. Borrowed until the
+ * result is freed; null if memory is out or another call is using the context. */
 PICKET_EXPORT const char *picket_result_json(picket_result *result);
 PICKET_EXPORT const char *picket_result_csv(picket_result *result);
 

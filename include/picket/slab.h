@@ -32,7 +32,8 @@ typedef struct picket_slab_answer {
 } picket_slab_answer;
 
 /* All guided modes of the problem's `slab` at each wavelength of its `light`, for the polarization
- * of the slab block (both without one). PICKET_ERROR_INPUT if there is no slab or no light,
+ * of the slab block (both without one); the first `options->count` of them unless that is 0. The
+ * other options do not matter here. PICKET_ERROR_INPUT if there is no slab or no light,
  * PICKET_ERROR_RANGE outside a material's range. A stack that guides nothing gives points without
  * modes. */
 PICKET_EXPORT picket_status picket_slab_find(picket_problem *problem, const picket_options *options,

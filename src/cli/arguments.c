@@ -175,7 +175,7 @@ static int check_whole(const pk_arguments *a) {
     return PK_EXIT_DONE;
   }
   if (!a->command) {
-    return pk_complain(PK_EXIT_WRONG, "no pk_command given; picket --help lists them");
+    return pk_complain(PK_EXIT_WRONG, "no command given; picket --help lists them");
   }
   if (!a->file) {
     return pk_complain(PK_EXIT_WRONG, "picket %s needs a problem file, or - for standard input",

@@ -5,7 +5,8 @@
 
 static void print_gaps(const picket_bands_answer *answer, const char *word, pk_notes *notes) {
   if (answer->gap_count == 0) {
-    printf("%s: no gap between the %d bands\n", word, answer->band_count);
+    printf("%s: no gap among %d band%s\n", word, answer->band_count,
+           answer->band_count == 1 ? "" : "s");
   }
   for (int i = 0; i < answer->gap_count; i++) {
     const picket_gap *gap = &answer->gaps[i];

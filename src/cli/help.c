@@ -7,7 +7,8 @@ static void print_options(void) {
   printf("Options:\n");
   const picket_option_description *d;
   for (int i = 0; (d = picket_option_at(i)) != NULL; i++) {
-    printf("  --%-10s %s: %g to %g, usually %g\n", d->name, d->help, d->least, d->most, d->usual);
+    printf("  --%-8s N     %s: %g to %g, usually %g\n", d->name, d->help, d->least, d->most,
+           d->usual);
   }
   printf(
       "  --set KEY=VALUE  override one value of the file, e.g. cell.pitch_nm=310; may be repeated\n"

@@ -45,17 +45,24 @@ static int write_csv(pk_csv_file *file, picket_context *context, picket_result *
   return pk_csv_finish(file, text);
 }
 
+/* The answer for people or for programs; a partial one is marked in either. */
 static int print_answer(const pk_arguments *a, picket_context *context, picket_result *result) {
+  bool whole = picket_result_complete(result);
   if (!a->json) {
-    a->command->print(a, result);
-  } else {
-    const char *text = picket_result_json(result);
-    if (!text) {
-      return pk_complain(PK_EXIT_MACHINE, "%s", picket_context_message(context));
+    if (!whole) {
+      printf("PARTIAL RESULT: %s\n\n", picket_result_shortfall(result));
     }
-    printf("%s\n", text);
+    a->command->print(a, result);
+    return whole ? PK_EXIT_DONE : PK_EXIT_SHORT;
   }
-  return PK_EXIT_DONE;
+  const char *text = picket_result_json(result);
+  if (!text) {
+    return pk_complain(PK_EXIT_MACHINE, "%s", picket_context_message(context));
+  }
+  printf("%s\n", text);
+  return whole ? PK_EXIT_DONE
+               : pk_complain(PK_EXIT_SHORT, "the result is partial: %s",
+                             picket_result_shortfall(result));
 }
 
 /* Takes over the CSV file, which may be null. The answer is printed even if the file fails: it may
@@ -63,12 +70,7 @@ static int print_answer(const pk_arguments *a, picket_context *context, picket_r
 static int deliver(const pk_arguments *a, picket_context *context, picket_result *result,
                    pk_csv_file *csv) {
   int file_status = csv ? write_csv(csv, context, result) : PK_EXIT_DONE;
-  int status = print_answer(a, context, result);
-  if (status == PK_EXIT_DONE && !picket_result_complete(result)) {
-    status =
-        pk_complain(PK_EXIT_SHORT, "the result is partial: %s", picket_result_shortfall(result));
-  }
-  status = finish_output(status);
+  int status = finish_output(print_answer(a, context, result));
   return file_status != PK_EXIT_DONE ? file_status : status;
 }
 

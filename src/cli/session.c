@@ -126,6 +126,10 @@ static int read_stdin(char **out, size_t *length) {
     capacity = larger;
     used += fread(text + used, 1, capacity - used, stdin);
   }
+  if (interrupted) {
+    free(text);
+    return pk_complain(PK_EXIT_INTERRUPTED, "interrupted while reading standard input");
+  }
   if (ferror(stdin)) {
     int error = errno;
     free(text);
