@@ -6,6 +6,7 @@
 #include <picket/bands.h>
 #include <picket/context.h>
 #include <picket/edges.h>
+#include <picket/index.h>
 #include <picket/options.h>
 #include <picket/problem.h>
 #include <picket/quantity.h>

@@ -29,4 +29,10 @@ pk_power_window pk_power_window_of(const pk_operator *op);
 pk_power pk_power_balance(const pk_operator *op, pk_phase phase, double k0, pk_power_window window,
                           const double complex *u);
 
+/* lᵀ (S ∂T/∂S) r, S the strength of the absorbing layers (all of them together): how much a wave
+ * depends on the layers. Zero without layers. */
+double complex pk_operator_layer_form(picket_context *context, const pk_operator *op,
+                                      pk_phase phase, double k0, const double complex *l,
+                                      const double complex *r, picket_status *status);
+
 #endif

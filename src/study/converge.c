@@ -110,7 +110,8 @@ static double worst_of(const family *f, const picket_quantity *quantities) {
   double worst = 0;
   for (int i = 0; i < f->request->count; i++) {
     if (isfinite(quantities[i].uncertainty) && isfinite(quantities[i].value)) {
-      double allowed = f->request->options->accuracy * fabs(quantities[i].value);
+      double slack = f->request->slack ? f->request->slack(f->request, i) : 1;
+      double allowed = f->request->options->accuracy * slack * fabs(quantities[i].value);
       worst = fmax(worst, quantities[i].uncertainty / allowed);
     }
   }

@@ -33,6 +33,19 @@ picket_status pk_estimate(const pk_problem *problem, pk_polarization polarizatio
   return status;
 }
 
+picket_status pk_estimated_index(const pk_problem *problem, pk_polarization polarization,
+                                 double wavelength_um, double *index) {
+  pk_core core = {0};
+  bool applies = false;
+  *index = NAN;
+  picket_status status = pk_core_create(problem, polarization, &core, &applies);
+  if (status == PICKET_OK && applies) {
+    status = pk_core_index(&core, wavelength_um, index);
+  }
+  pk_core_free(&core);
+  return status;
+}
+
 typedef struct side {
   const pk_problem *problem;
   int material;

@@ -27,6 +27,11 @@ pk_rytov pk_rytov_average(int count, const double *boundaries, const double *per
 picket_status pk_estimate(const pk_problem *problem, pk_polarization polarization,
                           picket_edge_estimate *out);
 
+/* Index of the homogenised guide at a wavelength; NaN where the estimate does not apply, is unknown
+ * or guides nothing. PICKET_ERROR_MEMORY. */
+picket_status pk_estimated_index(const pk_problem *problem, pk_polarization polarization,
+                                 double wavelength_um, double *index);
+
 /* The vacuum wavelength at which a plane wave in a material meets the zone edge, λ = 2 Λ n(λ): the
  * light line of a side of that material. NaN if it is outside the range of the material. */
 picket_status pk_light_line(const pk_problem *problem, int material, double *wavelength_um);

@@ -1,10 +1,11 @@
-/* What a study found, as the studies fill it and io writes it. One struct for every kind of result: the
- * public face (picket/result.h) is the same for all. */
+/* What a study found, as the studies fill it and io writes it. One struct for every kind of result:
+ * the public face (picket/result.h) is the same for all. */
 #ifndef PK_STUDY_RESULT_H
 #define PK_STUDY_RESULT_H
 
 #include <picket/bands.h>
 #include <picket/edges.h>
+#include <picket/index.h>
 #include <picket/slab.h>
 
 #include "base/context.h"
@@ -13,31 +14,33 @@ typedef enum pk_result_kind {
   PK_RESULT_EDGES,
   PK_RESULT_BANDS,
   PK_RESULT_SLAB,
+  PK_RESULT_INDEX,
   PK_RESULT_SUMMARY
 } pk_result_kind;
 
 /* One line of a summary: a dotted name, and a number with a unit or a text. */
 typedef struct pk_summary_item {
-  char *name;   /* e.g. "cell.duty" */
-  char *text;   /* or null when it is a number */
+  char *name; /* e.g. "cell.duty" */
+  char *text; /* or null when it is a number */
   double value;
-  char *unit;   /* "" for a pure number */
+  char *unit; /* "" for a pure number */
 } pk_summary_item;
 
 struct picket_result {
   picket_context *context; /* held */
   pk_result_kind kind;
-  char *name;              /* of the problem */
-  double accuracy;         /* asked for */
+  char *name;      /* of the problem */
+  double accuracy; /* asked for */
   bool complete;
-  char *shortfall;         /* or null */
-  int count;               /* answers; for a summary: items */
+  char *shortfall;            /* or null */
+  int count;                  /* answers; for a summary: items */
   picket_edges_answer *edges; /* arrays inside the answers are owned by the result */
   picket_bands_answer *bands;
   picket_slab_answer *slab;
+  picket_index_answer *index;
   pk_summary_item *summary;
-  char *json, *csv;        /* made when first asked for */
-  char **lines;            /* of a summary, for people; [count], or null */
+  char *json, *csv; /* made when first asked for */
+  char **lines;     /* of a summary, for people; [count], or null */
 };
 
 /* An empty result of a kind, complete, with the name copied. */

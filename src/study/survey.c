@@ -12,6 +12,21 @@ enum {
   STEPS_PER_PITCH_STACK = 24 /* one-dimensional: costs nothing */
 };
 
+enum { RADIATED_ORDERS = 30 };
+
+/* Absorbing layers: thickness times the slowest outgoing wavenumber (0.6 wavelengths: measured to
+ * change guided indices by less than 1e-7 with quadratic profiles of strength 4 to 8), base steps
+ * in a layer and per radian of the free wave. Waves at grazing angles below a tenth of the
+ * wavenumber are absorbed less well. */
+static const double LAYER_RADIANS = 4;
+static const double LAYER_STEPS = 8;
+static const double STEP_RADIANS = 0.5;
+static const double GRAZING = 0.1;
+
+/* A first look only has to tell modes from waves of the layers. */
+static const double LOOK_STRENGTH = 4;
+static const double LOOK_DECAYS = 1.5;
+
 static const double LONGEST_DECAY = 100; /* in pitches */
 
 static const char NOTE_CORNERS[] =
@@ -111,6 +126,56 @@ double pk_survey_light_line(const pk_survey *survey) {
   return line;
 }
 
+/* The smallest lateral wavenumber of the harmonics that radiate into a side, 1/µm; 0 if none does.
+ */
+static double slowest_outgoing(const pk_survey *survey, int side, double k, double k0) {
+  double free = k0 * pk_survey_side_index(survey, side, k0);
+  double step = 2 * PI / survey->problem->cell.pitch_um, slowest = 0;
+  for (int m = -RADIATED_ORDERS; m <= RADIATED_ORDERS; m++) {
+    double along = k + m * step;
+    if (fabs(along) < free) {
+      double across = sqrt(free * free - along * along);
+      slowest = slowest == 0 ? across : fmin(slowest, across);
+    }
+  }
+  return slowest;
+}
+
+void pk_survey_absorb(pk_survey *survey, double k0) {
+  survey->outer_step_um = 0;
+  for (int side = 0; survey->open && side < 2; side++) {
+    double free = k0 * pk_survey_side_index(survey, side, k0);
+    survey->layer[side] = (pk_layer){2 * LAYER_RADIANS / free, LOOK_STRENGTH};
+    survey->decay_um[side] = LOOK_DECAYS / free;
+    double step = STEP_RADIANS / free;
+    survey->outer_step_um = survey->outer_step_um == 0 ? step : fmin(survey->outer_step_um, step);
+  }
+}
+
+void pk_survey_open_sides(pk_survey *survey, double k, double k0, double accuracy) {
+  survey->outer_step_um = 0;
+  for (int side = 0; survey->open && side < 2; side++) {
+    survey->layer[side] = (pk_layer){0};
+    survey->decay_um[side] = pk_survey_decay(survey, side, k, k0);
+    double across = slowest_outgoing(survey, side, k, k0);
+    if (across == 0) {
+      continue;
+    }
+    double free = k0 * pk_survey_side_index(survey, side, k0);
+    across = fmax(across, GRAZING * free);
+    double thickness = LAYER_RADIANS / across;
+    /* Once through the layer and back: exp(-2 across strength thickness / 3). */
+    double strength = 1.5 * log(100 / accuracy) / LAYER_RADIANS;
+    survey->layer[side] = (pk_layer){thickness, strength};
+    survey->decay_um[side] = fmin(survey->decay_um[side], 1 / free);
+    double step = fmin(thickness / LAYER_STEPS, STEP_RADIANS / free);
+    survey->outer_step_um = survey->outer_step_um == 0 ? step : fmin(survey->outer_step_um, step);
+    pk_log(survey->problem->context, PICKET_LOG_DETAIL,
+           "side %s: absorbing layer of %.3g um, strength %.3g, for outgoing waves of %.3g /um",
+           side ? "+x" : "-x", thickness, strength, across);
+  }
+}
+
 picket_status pk_survey_take(const pk_problem *problem, pk_polarization polarization,
                              pk_survey *out) {
   pk_survey survey = {.problem = problem, .polarization = polarization};
@@ -147,6 +212,8 @@ picket_status pk_survey_lay(const pk_survey *survey, const pk_lay_plan *plan, pk
                             .mirror = plan->mirror,
                             .zero_walls = zero,
                             .decay_um = {survey->decay_um[0], survey->decay_um[1]},
-                            .reach = {plan->reach, plan->reach}};
+                            .reach = {plan->reach, plan->reach},
+                            .layer = {survey->layer[0], survey->layer[1]},
+                            .outer_step_um = survey->outer_step_um};
   return pk_cell_grid_lay(survey->problem->context, cell, &wish, out);
 }

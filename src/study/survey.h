@@ -19,6 +19,8 @@ typedef struct pk_survey {
   bool open;
   int side_medium[2];     /* of open sides at -x and +x */
   double decay_um[2];     /* 1/e length of the field there, as known so far */
+  pk_layer layer[2];      /* absorbing layers of open sides; thickness 0: none */
+  double outer_step_um;   /* largest base spacing in open sides; 0: as the decay wants */
   double steps_per_pitch; /* of the base grid */
   pk_error_law law;
 } pk_survey;
@@ -36,6 +38,15 @@ double pk_survey_side_index(const pk_survey *survey, int side, double k0);
 /* The longest vacuum wavelength, µm, at which a state at the zone edge lies above the light line of
  * an open side; 0 for closed cells. */
 double pk_survey_light_line(const pk_survey *survey);
+
+/* Prepares open sides for waves of wavenumber k (complex, along the main harmonic) at k0: a decay
+ * length where every spatial harmonic is evanescent, an absorbing layer where one radiates. The
+ * layer's reflection of the slowest outgoing harmonic is below a hundredth of `accuracy`. Logs what
+ * it chose. */
+void pk_survey_open_sides(pk_survey *survey, double k, double k0, double accuracy);
+
+/* For a first look, when nothing is known of the waves: a layer on each open side. */
+void pk_survey_absorb(pk_survey *survey, double k0);
 
 typedef struct pk_lay_plan {
   double reach;    /* of open sides, in decay lengths */

@@ -1,0 +1,521 @@
+/* The Bloch modes of a cell at a wavelength, on families of grids: index, group index, dispersion,
+ * loss and where it goes, regime.
+ *
+ * A first look on a coarse grid finds all modes. Each is then followed from grid to grid: the wave
+ * nearest to the one of the last grid, recognised by its main harmonic and its nodes. Values are
+ * extrapolated and get bars like everything else (converge.h). */
+#include "study/index.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "base/memory.h"
+#include "bloch/search.h"
+#include "study/converge.h"
+#include "study/core.h"
+#include "study/level.h"
+#include "study/radiation.h"
+#include "study/study.h"
+
+static const double PI = 3.141592653589793238;
+static const double DECIBEL_PER_NEPER = 8.685889638065036553; /* 20/ln 10, of a field */
+static const double UM_PER_CM = 1e4;
+static const double SPEED_OF_LIGHT = 299.792458; /* µm/ps */
+
+/* Half-width of the frequency difference for dispersion: truncation and rounding (1e-11/δ) are both
+ * small, and truncation is measured. */
+static const double DISPERSION_STEP = 2e-3;
+
+/* Relative uncertainty that a loss is refined for. */
+static const double LOSS_ACCURACY = 1e-2;
+
+/* Sampled values of a mode. */
+enum {
+  V_K,          /* Re k, unfolded, 1/µm */
+  V_GROUP,      /* group index */
+  V_DISPERSION, /* ps/(nm km) */
+  V_DECAY,      /* Im k, 1/µm */
+  V_ABSORBED,   /* its part by absorption */
+  V_RADIATED,   /* its part by radiation */
+  V_UPWARD,     /* share of the radiated power into +x */
+  VALUES
+};
+
+static const char NOTE_STOP_BAND[] = "inside a stop band the wave does not propagate";
+static const char NOTE_LOST[] = "the mode could not be followed from grid to grid";
+static const char NOTE_NO_RADIATION[] = "the mode does not radiate";
+
+typedef struct followed {
+  int order;
+  pk_character character; /* on the last grid */
+  double complex xi;
+  double complex *field; /* on the last grid, with its lines */
+  int nu, nv;
+  double *u, *v;
+  double dispersion_error; /* of the frequency difference, ps/(nm km) */
+} followed;
+
+typedef struct index_study {
+  const pk_problem *problem;
+  pk_polarization polarization;
+  pk_survey survey;
+  double k0;
+  int count;
+  followed *mode;
+  bool lossless;
+  pk_radiation_table radiation; /* of the last grid */
+} index_study;
+
+/* --- Following a mode from grid to grid
+ * ----------------------------------------------------------- */
+
+static void forget_field(picket_context *context, followed *f) {
+  pk_free(context, f->field);
+  pk_free(context, f->u);
+  pk_free(context, f->v);
+  f->field = NULL;
+  f->u = f->v = NULL;
+}
+
+static picket_status remember_field(picket_context *context, const pk_operator *op,
+                                    const pk_wave *wave, followed *f) {
+  forget_field(context, f);
+  f->nu = pk_operator_lines(op, PK_U);
+  f->nv = pk_operator_lines(op, PK_V);
+  f->xi = wave->xi;
+  f->u = PK_NEW(context, f->nu, double);
+  f->v = PK_NEW(context, f->nv, double);
+  f->field = pk_copy(context, wave->right, (size_t)f->nu * (size_t)f->nv, sizeof *f->field);
+  if (!f->u || !f->v || !f->field) {
+    return PICKET_ERROR_MEMORY;
+  }
+  double length;
+  for (int i = 0; i < f->nu; i++) {
+    pk_operator_line(op, PK_U, i, &f->u[i], &length);
+  }
+  for (int i = 0; i < f->nv; i++) {
+    pk_operator_line(op, PK_V, i, &f->v[i], &length);
+  }
+  return PICKET_OK;
+}
+
+/* The place of a coordinate among lines: the line below, and the part of the way to the next;
+ * clamped. */
+static int place_of(int count, const double *lines, double s, double *part) {
+  int i = 0;
+  while (i + 2 < count && lines[i + 1] <= s) {
+    i++;
+  }
+  *part = count > 1 ? fmin(1, fmax(0, (s - lines[i]) / (lines[i + 1] - lines[i]))) : 0;
+  return i;
+}
+
+/* The remembered field on the lines of another grid, by linear interpolation: a start for a solve.
+ */
+static double complex *prolonged(picket_context *context, const pk_operator *op,
+                                 const followed *f) {
+  int nu = pk_operator_lines(op, PK_U), nv = pk_operator_lines(op, PK_V);
+  double complex *field = PK_NEW(context, (int64_t)nu * nv, double complex);
+  for (int iu = 0; field && iu < nu; iu++) {
+    double z, length, pu;
+    pk_operator_line(op, PK_U, iu, &z, &length);
+    int a = place_of(f->nu, f->u, z, &pu);
+    for (int iv = 0; iv < nv; iv++) {
+      double x, pv;
+      pk_operator_line(op, PK_V, iv, &x, &length);
+      int b = place_of(f->nv, f->v, x, &pv);
+      int next = f->nv > 1 ? 1 : 0;
+      const double complex *low = f->field + (int64_t)a * f->nv + b, *high = low + f->nv;
+      field[(int64_t)iu * nv + iv] = (1 - pu) * ((1 - pv) * low[0] + pv * low[next]) +
+                                     pu * ((1 - pv) * high[0] + pv * high[next]);
+    }
+  }
+  return field;
+}
+
+static pk_character_request character_request(const index_study *s) {
+  pk_character_request request = {.pitch_um = s->problem->cell.pitch_um, .k0 = s->k0};
+  request.phase = (pk_phase){1, 1, 0};
+  const pk_cell *cell = &s->problem->cell;
+  request.structure[0] = cell->lateral == PK_LATERAL_UNIFORM ? -1 : -0.5 * cell->span_um;
+  request.structure[1] = -request.structure[0];
+  if (cell->lateral == PK_LATERAL_OPEN) {
+    pk_geometry_extent(cell->geometry, PK_V, &request.structure[0], &request.structure[1]);
+  }
+  return request;
+}
+
+/* --- Values of a mode on a grid
+ * -------------------------------------------------------------------- */
+
+/* Group index and Re k of the same mode at another frequency. */
+static picket_status neighbour_at(index_study *s, pk_level *level, const pk_wave *wave,
+                                  double complex slope, double k0, double *group,
+                                  double complex *k) {
+  double pitch = s->problem->cell.pitch_um;
+  picket_status status = pk_media_set(&level->media, k0, level->op);
+  pk_wave other = {0};
+  double complex guess = wave->xi * cexp(I * slope * (k0 - s->k0) * pitch), dk = NAN;
+  if (status == PICKET_OK) {
+    status = pk_wave_near(level->solver, (pk_phase){1, 1, 0}, k0, guess, wave->right, &other);
+  }
+  if (status == PICKET_OK) {
+    status = pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, k0, pitch,
+                           s->problem->cell.shift, &other, &dk);
+    *group = creal(dk);
+    *k = -I * clog(other.xi / wave->xi) / pitch; /* relative to the middle */
+  }
+  pk_wave_clear(s->problem->context, &other);
+  return status;
+}
+
+/* D = (1/c) dn_g/dλ from the group index on both sides. The second difference of k gives the same
+ * with half the truncation error, so twice their distance bounds that of the first. */
+static picket_status dispersion(index_study *s, pk_level *level, const pk_wave *wave,
+                                double complex slope, double *value, double *error) {
+  double step = DISPERSION_STEP * s->k0, group[2];
+  double complex k[2];
+  for (int side = 0; side < 2; side++) {
+    picket_status status =
+        neighbour_at(s, level, wave, slope, s->k0 + (side ? step : -step), &group[side], &k[side]);
+    if (status != PICKET_OK) {
+      return status;
+    }
+  }
+  /* dn_g/dλ = -(k0²/2π) dn_g/dk0; 1 ps/µm² = 1e15/1e3... = 1e6 ps/(nm km). */
+  double factor = -s->k0 * s->k0 / (2 * PI) / SPEED_OF_LIGHT * 1e6;
+  *value = factor * (group[1] - group[0]) / (2 * step);
+  double second = factor * creal(k[0] + k[1]) / (step * step);
+  *error = 2 * fabs(*value - second);
+  picket_status status = pk_media_set(&level->media, s->k0, level->op);
+  return status;
+}
+
+static void loss_values(const pk_character *c, double *v) {
+  double radiated = c->power.radiated[0] + c->power.radiated[1], absorbed = c->power.absorbed;
+  double lost = radiated + absorbed;
+  v[V_DECAY] = cimag(c->k);
+  bool known = fabs(lost) > 0 && !c->at_boundary;
+  v[V_ABSORBED] = known ? v[V_DECAY] * absorbed / lost : 0;
+  v[V_RADIATED] = known ? v[V_DECAY] * radiated / lost : 0;
+  v[V_UPWARD] = known && radiated > 0 ? c->power.radiated[1] / radiated : NAN;
+}
+
+static picket_status measure(index_study *s, pk_level *level, followed *f, const pk_wave *wave,
+                             double *v) {
+  double complex slope = NAN;
+  v[V_K] = creal(f->character.k);
+  loss_values(&f->character, v);
+  v[V_GROUP] = v[V_DISPERSION] = NAN;
+  if (f->character.at_boundary) {
+    return PICKET_OK;
+  }
+  picket_status status =
+      pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, s->k0, s->problem->cell.pitch_um,
+                    s->problem->cell.shift, wave, &slope);
+  v[V_GROUP] = creal(slope);
+  if (status == PICKET_OK) {
+    status = dispersion(s, level, wave, slope, &v[V_DISPERSION], &f->dispersion_error);
+  }
+  if (status == PICKET_ERROR_NUMERIC || status == PICKET_ERROR_NO_MODE) {
+    pk_message_clear(
+        s->problem->context); /* too near an edge, or a slab cut off beside: no bar, no value */
+    v[V_DISPERSION] = NAN;
+    status = pk_media_set(&level->media, s->k0, level->op);
+  }
+  return status;
+}
+
+static bool same_mode(const pk_character *a, const pk_character *b) {
+  return a->nodes == b->nodes && a->harmonic == b->harmonic && a->at_boundary == b->at_boundary;
+}
+
+static picket_status follow(index_study *s, pk_level *level, followed *f, double *v) {
+  picket_context *context = s->problem->context;
+  for (int i = 0; i < VALUES; i++) {
+    v[i] = NAN;
+  }
+  double complex *start = prolonged(context, level->op, f);
+  if (!start) {
+    return PICKET_ERROR_MEMORY;
+  }
+  pk_wave wave = {0};
+  pk_character character;
+  pk_character_request request = character_request(s);
+  picket_status status =
+      pk_wave_near(level->solver, (pk_phase){1, 1, 0}, s->k0, f->xi, start, &wave);
+  pk_free(context, start);
+  if (status == PICKET_OK) {
+    status = pk_character_of(context, level->op, &request, &wave, &character);
+  }
+  if (status == PICKET_OK && same_mode(&f->character, &character)) {
+    f->character = character;
+    status = remember_field(context, level->op, &wave, f);
+    if (status == PICKET_OK) {
+      status = measure(s, level, f, &wave, v);
+    }
+    if (status == PICKET_OK) {
+      status = pk_radiation_take(context, level->op, &request, &s->survey, &wave, f->character.k,
+                                 f->order, &s->radiation);
+    }
+  } else if (status == PICKET_ERROR_NUMERIC) {
+    pk_log(context, PICKET_LOG_DETAIL, "mode %d: %s", f->order, picket_context_message(context));
+    pk_message_clear(context);
+    status = PICKET_OK;
+  }
+  pk_wave_clear(context, &wave);
+  return status;
+}
+
+/* The permittivities at the wavelength, or the message of the material that is not known there. */
+static picket_status set_media(index_study *s, pk_level *level) {
+  double wavelength = 2 * PI / s->k0;
+  s->lossless = true;
+  for (int m = 0; m < level->media.count; m++) {
+    if (level->media.used[m]) {
+      pk_medium medium;
+      picket_status status =
+          pk_materials_at(s->problem->materials, m, wavelength, s->problem->temperature_c, &medium);
+      if (status != PICKET_OK) {
+        return status;
+      }
+      s->lossless = s->lossless && cimag(medium.permittivity) == 0;
+    }
+  }
+  return pk_media_set(&level->media, s->k0, level->op);
+}
+
+static picket_status sample(void *user, const pk_cell_grid *base, int m, double *values) {
+  index_study *s = user;
+  pk_level level;
+  picket_status status = pk_level_open(s->problem, s->polarization, base, m, &level);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  status = set_media(s, &level);
+  for (int i = 0; status == PICKET_OK && i < s->count; i++) {
+    status = follow(s, &level, &s->mode[i], values + i * VALUES);
+  }
+  pk_level_close(&level);
+  return status;
+}
+
+/* --- The first look
+ * -------------------------------------------------------------------------------- */
+
+static picket_status keep_found(index_study *s, const pk_level *level, int count,
+                                const pk_found_wave *found) {
+  picket_status status = PICKET_OK;
+  for (int i = 0; status == PICKET_OK && i < count; i++) {
+    followed *f = &s->mode[i];
+    f->order = found[i].order;
+    f->character = found[i].character;
+    status = remember_field(s->problem->context, level->op, &found[i].wave, f);
+    s->count = i + 1;
+  }
+  return status;
+}
+
+static picket_status look_on(index_study *s, const pk_cell_grid *base, int wanted) {
+  pk_level level;
+  picket_context *context = s->problem->context;
+  picket_status status = pk_level_open(s->problem, s->polarization, base, 2, &level);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  pk_found_wave *found = PK_NEW(context, wanted, pk_found_wave);
+  int count = 0;
+  status = found ? set_media(s, &level) : PICKET_ERROR_MEMORY;
+  if (status == PICKET_OK) {
+    pk_character_request request = character_request(s);
+    status = pk_wave_search(level.solver, &request, wanted, found, &count);
+  }
+  if (status == PICKET_OK) {
+    status = keep_found(s, &level, count, found);
+  }
+  pk_found_waves_clear(context, found ? count : 0, found);
+  pk_free(context, found);
+  pk_level_close(&level);
+  return status;
+}
+
+/* Sides are prepared for the mode that reaches farthest; a side needs a layer if any mode radiates
+ * there. */
+static void prepare_sides(index_study *s, double accuracy) {
+  pk_survey worst = s->survey;
+  for (int i = 0; i < s->count; i++) {
+    pk_survey one = s->survey;
+    pk_survey_open_sides(&one, creal(s->mode[i].character.k), s->k0, accuracy);
+    for (int side = 0; side < 2; side++) {
+      if (i == 0 || one.decay_um[side] > worst.decay_um[side]) {
+        worst.decay_um[side] = one.decay_um[side];
+      }
+      if (i == 0 || one.layer[side].thickness > worst.layer[side].thickness) {
+        worst.layer[side] = one.layer[side];
+      }
+    }
+    if (i == 0 || (one.outer_step_um > 0 && one.outer_step_um < worst.outer_step_um) ||
+        worst.outer_step_um == 0) {
+      worst.outer_step_um = one.outer_step_um;
+    }
+  }
+  s->survey = worst;
+}
+
+static picket_status first_look(index_study *s, int wanted) {
+  pk_cell_grid base;
+  pk_lay_plan plan = {.reach = 1, .mirror = false, .zero_walls = true};
+  pk_survey_absorb(&s->survey, s->k0);
+  picket_status status = pk_survey_lay(&s->survey, &plan, &base);
+  if (status == PICKET_OK) {
+    status = look_on(s, &base, wanted);
+    pk_cell_grid_clear(s->problem->context, &base);
+  }
+  return status;
+}
+
+/* --- From values to an answer
+ * ---------------------------------------------------------------------- */
+
+static picket_quantity scaled(picket_quantity q, double factor) {
+  q.value *= factor;
+  q.uncertainty *= fabs(factor);
+  return q;
+}
+
+static picket_quantity absent(const char *note) {
+  return (picket_quantity){NAN, NAN, note};
+}
+
+static picket_regime regime_of(const index_study *s, const followed *f) {
+  if (f->character.at_boundary) {
+    return PICKET_REGIME_STOP_BAND;
+  }
+  if (pk_radiation_has_grating_order(&s->radiation, f->order)) {
+    return PICKET_REGIME_RADIATING;
+  }
+  bool below = fabs(creal(f->character.k)) * s->problem->cell.pitch_um < PI;
+  return below ? PICKET_REGIME_SUBWAVELENGTH : PICKET_REGIME_UNKNOWN;
+}
+
+/* Loss of a lossless guide without an open channel is zero; what the solver says about it is the
+ * bar. */
+static void settle_loss(const index_study *s, const followed *f, picket_quantity *q) {
+  bool open_channel = pk_radiation_count(&s->radiation, f->order) > 0;
+  if (s->lossless && !open_channel && !f->character.at_boundary) {
+    double rounding = fabs(q[V_DECAY].value) + 1e-12 * s->k0;
+    q[V_DECAY] = q[V_ABSORBED] = q[V_RADIATED] = (picket_quantity){0, rounding, NULL};
+  } else if (s->lossless) {
+    q[V_ABSORBED] = (picket_quantity){0, 0, NULL};
+  }
+  if (!open_channel) {
+    q[V_RADIATED] = (picket_quantity){0, q[V_RADIATED].uncertainty, NULL};
+    q[V_UPWARD] = absent(NOTE_NO_RADIATION);
+  }
+}
+
+static picket_status fill_mode(index_study *s, followed *f, picket_quantity *q,
+                               picket_bloch_mode *mode) {
+  double decibel = DECIBEL_PER_NEPER * UM_PER_CM;
+  for (int i = 0; i < VALUES; i++) {
+    if (isnan(q[i].value) && !q[i].note) {
+      q[i].note = NOTE_LOST;
+    }
+  }
+  settle_loss(s, f, q);
+  mode->order = f->order;
+  mode->bloch_index = scaled(q[V_K], 1 / s->k0);
+  mode->group_index = f->character.at_boundary ? absent(NOTE_STOP_BAND) : q[V_GROUP];
+  mode->dispersion_ps_per_nm_km =
+      f->character.at_boundary ? absent(NOTE_STOP_BAND) : q[V_DISPERSION];
+  mode->dispersion_ps_per_nm_km.uncertainty += f->dispersion_error;
+  mode->loss_db_per_cm = scaled(q[V_DECAY], decibel);
+  mode->loss_db_per_pitch = scaled(q[V_DECAY], DECIBEL_PER_NEPER * s->problem->cell.pitch_um);
+  mode->absorption_db_per_cm = scaled(q[V_ABSORBED], decibel);
+  mode->radiation_db_per_cm = scaled(q[V_RADIATED], decibel);
+  mode->radiation_per_mm = scaled(q[V_RADIATED], 2e3);
+  mode->upward_share = q[V_UPWARD];
+  mode->regime = regime_of(s, f);
+  return pk_radiation_fill(s->problem->context, &s->radiation, f->order, mode);
+}
+
+static void index_clear(index_study *s) {
+  for (int i = 0; s->mode && i < s->count; i++) {
+    forget_field(s->problem->context, &s->mode[i]);
+  }
+  pk_free(s->problem->context, s->mode);
+  pk_radiation_clear(s->problem->context, &s->radiation);
+}
+
+/* Index and group index meet the accuracy asked; a loss is a small difference of large numbers and
+ * meets it to a hundredth at best; what is derived from it, and dispersion, take what they get. */
+static double slack_of(const pk_converge_request *request, int i) {
+  switch (i % VALUES) {
+    case V_K:
+    case V_GROUP: return 1;
+    case V_DECAY: return fmax(1, LOSS_ACCURACY / request->options->accuracy);
+    default: return INFINITY;
+  }
+}
+
+static picket_status converge_modes(index_study *s, const picket_options *options,
+                                    picket_index_point *point, picket_result *result) {
+  picket_context *context = s->problem->context;
+  picket_quantity *q = PK_NEW(context, s->count * VALUES, picket_quantity);
+  picket_bloch_mode *modes = PK_NEW(context, s->count, picket_bloch_mode);
+  picket_status status = q && modes ? PICKET_OK : PICKET_ERROR_MEMORY;
+  point->modes = modes;
+  if (status == PICKET_OK) {
+    pk_converge_request request = {
+        .survey = &s->survey,
+        .count = s->count * VALUES,
+        .sample = sample,
+        .user = s,
+        .options = options,
+        .phase = s->polarization == PK_EY ? "Bloch index, ey" : "Bloch index, hy",
+        .slack = slack_of};
+    status = pk_converge(&request, q, result);
+  }
+  for (int i = 0; status == PICKET_OK && i < s->count; i++) {
+    status = fill_mode(s, &s->mode[i], q + i * VALUES, &modes[i]);
+    point->mode_count = i + 1;
+  }
+  pk_free(context, q);
+  return status;
+}
+
+static const char NOTE_NO_MODE[] = "the cell has no Bloch mode at this wavelength";
+
+picket_status pk_index_point(const pk_problem *problem, pk_polarization polarization,
+                             double wavelength_um, const picket_options *options,
+                             picket_index_point *point, picket_result *result) {
+  index_study s = {.problem = problem, .polarization = polarization, .k0 = 2 * PI / wavelength_um};
+  int wanted = options->count > 0 ? (int)options->count : 1;
+  point->wavelength_um = wavelength_um;
+  picket_status status = pk_estimated_index(problem, polarization, wavelength_um, &point->estimate);
+  if (status == PICKET_OK) {
+    status = pk_survey_take(problem, polarization, &s.survey);
+  }
+  if (status == PICKET_OK) {
+    s.mode = PK_NEW(problem->context, wanted, followed);
+    status = s.mode ? first_look(&s, wanted) : PICKET_ERROR_MEMORY;
+  }
+  if (status == PICKET_OK && s.count == 0) {
+    point->note = NOTE_NO_MODE;
+  } else if (status == PICKET_OK) {
+    prepare_sides(&s, options->accuracy);
+    status = converge_modes(&s, options, point, result);
+  }
+  index_clear(&s);
+  return status;
+}
+
+void pk_index_point_clear(picket_context *context, picket_index_point *point) {
+  picket_bloch_mode *modes = (picket_bloch_mode *)point->modes;
+  for (int i = 0; modes && i < point->mode_count; i++) {
+    pk_free(context, (void *)modes[i].radiated);
+  }
+  pk_free(context, modes);
+  point->modes = NULL;
+  point->mode_count = 0;
+}
