@@ -45,9 +45,30 @@ static double side_index(const finder *f) {
   return index;
 }
 
+/* The wavenumber π/Λ as this grid sees it: with h as the length of an interval along the guide
+ *   κ² = Σ 4 sin²(πh/2Λ)/h / Λ,
+ * the Rayleigh quotient of exp(iπz/Λ). Light in a side follows the grid's own dispersion, so a
+ * state must be compared with this: the exact π/Λ would take radiation on coarse grids for a guided
+ * mode. */
+static double zone_edge_on_grid(const finder *f) {
+  double pitch = f->request->pitch_um, first = 0, at = 0, next, width, sum = 0;
+  int nu = pk_operator_lines(f->op, PK_U);
+  pk_operator_line(f->op, PK_U, 0, &first, &width);
+  at = first;
+  for (int i = 0; i < nu; i++, at = next) {
+    next = first + pitch;
+    if (i + 1 < nu) {
+      pk_operator_line(f->op, PK_U, i + 1, &next, &width);
+    }
+    double s = sin(0.5 * PI * (next - at) / pitch);
+    sum += 4 * s * s / (next - at);
+  }
+  return sqrt(sum / pitch);
+}
+
 /* Confined: the folded wavenumber of the edge exceeds that of free light in every open side. */
 static bool is_confined(const finder *f, int order, double k0) {
-  double folded = order % 2 ? PI / f->request->pitch_um : 0;
+  double folded = order % 2 ? zone_edge_on_grid(f) : 0;
   return !f->request->open || k0 * side_index(f) < folded;
 }
 
