@@ -16,8 +16,10 @@ static const double PI = 3.141592653589793238;
 
 /* Lateral values below this part of the largest one do not make a node. */
 static const double NODE_LEVEL = 0.12;
-/* Re kΛ/π is taken for a whole number within this. */
+/* Re kΛ/π is taken for a whole number within this, or within this part of Im kΛ/π: absorbing layers
+ * push a decaying wave off the boundary a little. */
 static const double BOUNDARY = 1e-6;
+static const double BOUNDARY_PART = 1e-3;
 
 static void harmonic_shape(const pk_operator *op, double complex k, const double complex *u,
                            double complex *shape) {
@@ -128,8 +130,9 @@ picket_status pk_character_of(picket_context *context, const pk_operator *op,
   find_main_harmonic(op, request, folded, wave, shape, &c);
   pk_free(context, shape);
   double half_turns = creal(c.k) * request->pitch_um / PI;
-  c.at_boundary = fabs(half_turns - round(half_turns)) < BOUNDARY && round(half_turns) != 0 &&
-                  fabs(cimag(c.k)) > PK_LOSSLESS * request->k0;
+  double decay = fabs(cimag(c.k)) * request->pitch_um / PI;
+  c.at_boundary = fabs(half_turns - round(half_turns)) < fmax(BOUNDARY, BOUNDARY_PART * decay) &&
+                  round(half_turns) != 0 && fabs(cimag(c.k)) > PK_LOSSLESS * request->k0;
   c.inside = share_inside(op, request, wave->right);
   c.power = pk_power_balance(op, phase, request->k0, pk_power_window_of(op), wave->right);
   picket_status status;

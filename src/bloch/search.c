@@ -17,6 +17,10 @@ static const double LEAST_INSIDE = 0.2;
  * layer waves above 1e-2. */
 static const double MOST_LAYER_SHARE = 2e-3;
 
+/* Im k/k0 above which the sign of the decay tells forward from backward; below, the layers of a
+ * first look may blur it, and the power flow tells. */
+static const double SURE_DECAY = 1e-3;
+
 /* A wave whose phase hardly advances is below cut-off, not a mode. */
 static const double LEAST_INDEX = 0.05;
 
@@ -39,7 +43,7 @@ static bool column_is_inside(const pk_operator *op, const pk_character_request *
 
 static bool is_mode(const pk_character_request *request, const pk_character *c) {
   double decay = cimag(c->k) / request->k0;
-  bool forward = fabs(decay) > PK_LOSSLESS ? decay > 0 : c->power.forward > 0;
+  bool forward = fabs(decay) > SURE_DECAY ? decay > 0 : c->power.forward > 0;
   bool advances = fabs(creal(c->k)) > LEAST_INDEX * request->k0;
   return forward && advances && c->inside > LEAST_INSIDE && c->layer_share < MOST_LAYER_SHARE;
 }

@@ -2,18 +2,23 @@
 #include "study/converge.h"
 
 #include <math.h>
+#include <stddef.h>
 #include <stdio.h>
 
 #include "base/memory.h"
+#include "study/corner_law.h"
 #include "study/level.h"
 
-/* Members of the family on each attempt. Three grids settle two exponents; a fourth tells scatter
- * from law where interfaces cut the cells, and a third exponent on one-dimensional stacks. */
-enum { ATTEMPTS = 4, MOST_GRIDS = 4 };
+/* Members of the family on each attempt; zeros are left out. Three grids settle two exponents; a
+ * fourth tells scatter from law where interfaces cut the cells, and a third exponent on
+ * one-dimensional stacks and at corners. */
+enum { ATTEMPTS = 4, MOST_GRIDS = 4, MOST_MEMBERS = ATTEMPTS * MOST_GRIDS };
 static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {
     {2, 3, 4}, {3, 4, 6}, {4, 6, 8}, {6, 8, 12}};
 static const int MEMBERS_FOUR[ATTEMPTS][MOST_GRIDS] = {
     {2, 3, 4, 6}, {4, 5, 6, 8}, {6, 8, 10, 12}, {8, 12, 16, 20}};
+static const int MEMBERS_CORNERS[ATTEMPTS][MOST_GRIDS] = {
+    {2, 3, 4}, {2, 3, 4, 6}, {3, 4, 6, 8}, {4, 6, 8, 12}};
 
 /* Open sides end where the field has fallen to a tenth of the accuracy in power, and one more decay
  * length. */
@@ -25,20 +30,42 @@ typedef struct family {
   const pk_converge_request *request;
   picket_context *context;
   pk_cell_grid base;
-  int count; /* grids */
-  const int *m;
-  double *values;     /* [MOST_GRIDS][quantities] */
+  pk_error_law law;
+  int count;    /* grids of this attempt */
+  const int *m; /* [count] */
+  int members;  /* sampled so far, and which */
+  int member[MOST_MEMBERS];
+  double *values;     /* [members][quantities] */
   double *span_error; /* [quantities] of cutting off open sides */
 } family;
 
+/* The values of a member, or null. */
+static double *values_of(const family *f, int m) {
+  for (int i = 0; i < f->members; i++) {
+    if (f->member[i] == m) {
+      return f->values + (ptrdiff_t)i * f->request->count;
+    }
+  }
+  return NULL;
+}
+
+static picket_status sample_member(family *f, int m) {
+  double *values = f->values + (ptrdiff_t)f->members * f->request->count;
+  picket_status status = f->request->sample(f->request->user, &f->base, m, values);
+  if (status == PICKET_OK) {
+    f->member[f->members++] = m;
+  }
+  return status;
+}
+
+/* Members known from an attempt before are not solved again. */
 static picket_status sample_grids(family *f, int attempt) {
-  int quantities = f->request->count;
   picket_status status = PICKET_OK;
   for (int g = 0; status == PICKET_OK && g < f->count; g++) {
     double done = (attempt + (double)g / f->count) / ATTEMPTS;
     status = pk_progress(f->context, f->request->phase, done);
     if (status == PICKET_OK) {
-      status = f->request->sample(f->request->user, &f->base, f->m[g], f->values + g * quantities);
+      status = values_of(f, f->m[g]) ? PICKET_OK : sample_member(f, f->m[g]);
     }
     if (status == PICKET_OK) {
       pk_log(f->context, PICKET_LOG_INFO, "%s: grid %d of %d, %.0f unknowns", f->request->phase,
@@ -68,7 +95,7 @@ static picket_status sample_span_error(family *f) {
   status = f->request->sample(f->request->user, &base, f->m[0], f->span_error);
   pk_cell_grid_clear(f->context, &base);
   for (int i = 0; i < quantities; i++) {
-    f->span_error[i] = 0.5 * fabs(f->span_error[i] - f->values[i]);
+    f->span_error[i] = 0.5 * fabs(f->span_error[i] - values_of(f, f->m[0])[i]);
   }
   return status;
 }
@@ -82,7 +109,7 @@ static void log_table(const family *f, const picket_quantity *quantities) {
     int used = 0;
     for (int g = 0; g < f->count && used < (int)sizeof line; g++) {
       used += snprintf(line + used, sizeof line - (size_t)used, "  1/%d: %.10g", f->m[g],
-                       f->values[g * f->request->count + i]);
+                       values_of(f, f->m[g])[i]);
     }
     pk_log(f->context, PICKET_LOG_DETAIL, "%s, quantity %d:%s -> %.10g ± %.1e (sides %.1e)",
            f->request->phase, i, line, quantities[i].value, quantities[i].uncertainty,
@@ -95,9 +122,9 @@ static void judge(const family *f, picket_quantity *quantities) {
   for (int i = 0; i < quantities_count; i++) {
     double column[MOST_GRIDS];
     for (int g = 0; g < f->count; g++) {
-      column[g] = f->values[g * quantities_count + i];
+      column[g] = values_of(f, f->m[g])[i];
     }
-    quantities[i] = pk_extrapolate(&f->request->survey->law, f->count, f->m, column);
+    quantities[i] = pk_extrapolate(&f->law, f->count, f->m, column);
     if (isfinite(f->span_error[i])) {
       quantities[i].uncertainty += f->span_error[i];
     }
@@ -105,14 +132,32 @@ static void judge(const family *f, picket_quantity *quantities) {
   log_table(f, quantities);
 }
 
-/* The largest bar as a multiple of what was asked; 0 when nothing has a bar. */
+/* True if a quantity was found on some grids and not on others: an edge that crosses a wavelength
+ * as the grid changes. Finer grids will agree. */
+static bool is_split(const family *f, int i) {
+  int found = 0;
+  for (int g = 0; g < f->count; g++) {
+    found += isfinite(f->values[g * f->request->count + i]) ? 1 : 0;
+  }
+  return found > 0 && found < f->count;
+}
+
+static double allowed_of(const family *f, const picket_quantity *quantities, int i) {
+  if (f->request->allowed) {
+    return f->request->allowed(f->request, quantities, i);
+  }
+  return f->request->options->accuracy * fabs(quantities[i].value);
+}
+
+/* The largest bar as a multiple of what is allowed; 0 when nothing has a bar. */
 static double worst_of(const family *f, const picket_quantity *quantities) {
   double worst = 0;
   for (int i = 0; i < f->request->count; i++) {
+    double allowed = allowed_of(f, quantities, i);
     if (isfinite(quantities[i].uncertainty) && isfinite(quantities[i].value)) {
-      double slack = f->request->slack ? f->request->slack(f->request, i) : 1;
-      double allowed = f->request->options->accuracy * slack * fabs(quantities[i].value);
       worst = fmax(worst, quantities[i].uncertainty / allowed);
+    } else if (!isinf(allowed) && is_split(f, i)) {
+      worst = INFINITY;
     }
   }
   return worst;
@@ -131,18 +176,23 @@ static picket_status mark_partial(const family *f, double worst, picket_result *
   return result->shortfall ? PICKET_OK : PICKET_ERROR_MEMORY;
 }
 
+static const int *members_of(const pk_error_law *law, int attempt) {
+  if (law->corners) {
+    return MEMBERS_CORNERS[attempt];
+  }
+  return law->smooth && law->count <= 2 ? MEMBERS_SMOOTH[attempt] : MEMBERS_FOUR[attempt];
+}
+
 static picket_status run_family(family *f, picket_quantity *quantities, picket_result *result) {
-  const pk_error_law *law = &f->request->survey->law;
-  bool four = !law->smooth || law->count > 2;
-  f->count = four ? 4 : 3;
   double worst = 0;
   for (int attempt = 0; attempt < ATTEMPTS; attempt++) {
-    const int *m = four ? MEMBERS_FOUR[attempt] : MEMBERS_SMOOTH[attempt];
-    if (attempt > 0 &&
-        pk_level_unknowns(&f->base, m[f->count - 1]) > f->request->options->unknowns) {
+    const int *m = members_of(&f->law, attempt);
+    int count = m[MOST_GRIDS - 1] > 0 ? MOST_GRIDS : MOST_GRIDS - 1;
+    if (attempt > 0 && pk_level_unknowns(&f->base, m[count - 1]) > f->request->options->unknowns) {
       break;
     }
     f->m = m;
+    f->count = count;
     picket_status status = sample_grids(f, attempt);
     if (status == PICKET_OK && attempt == 0) {
       status = sample_span_error(f);
@@ -162,7 +212,7 @@ static picket_status run_family(family *f, picket_quantity *quantities, picket_r
 picket_status pk_converge(const pk_converge_request *request, picket_quantity *quantities,
                           picket_result *result) {
   family f = {.request = request, .context = request->survey->problem->context};
-  f.values = PK_NEW(f.context, MOST_GRIDS * request->count, double);
+  f.values = PK_NEW(f.context, MOST_MEMBERS * request->count, double);
   f.span_error = PK_NEW(f.context, request->count, double);
   picket_status status = f.values && f.span_error ? PICKET_OK : PICKET_ERROR_MEMORY;
   pk_lay_plan plan = {reach_for(request->options->accuracy), request->mirror, true};
@@ -170,7 +220,10 @@ picket_status pk_converge(const pk_converge_request *request, picket_quantity *q
     status = pk_survey_lay(request->survey, &plan, &f.base);
   }
   if (status == PICKET_OK) {
-    status = run_family(&f, quantities, result);
+    status = pk_corner_law(request->survey, &f.base, &f.law);
+    if (status == PICKET_OK) {
+      status = run_family(&f, quantities, result);
+    }
     pk_cell_grid_clear(f.context, &f.base);
   }
   pk_free(f.context, f.values);

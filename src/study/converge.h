@@ -20,9 +20,10 @@ typedef struct pk_converge_request {
   const picket_options *options;
   const char *phase; /* what is being done, for progress; static text */
   bool mirror;       /* the laterally even family is enough */
-  /* By how much quantity i may miss the accuracy asked (INFINITY: it takes what it gets); null: all
-   * must meet it. */
-  double (*slack)(const struct pk_converge_request *request, int i);
+  /* The uncertainty that quantity i may keep, in its own unit (INFINITY: it takes what it gets);
+   * null: the accuracy asked, relative to its value. */
+  double (*allowed)(const struct pk_converge_request *request, const picket_quantity *quantities,
+                    int i);
 } pk_converge_request;
 
 /* quantities[count]; the result is marked partial if a bar stays above the accuracy asked. For open

@@ -11,8 +11,10 @@
 
 #include "base/memory.h"
 #include "bloch/search.h"
+#include "study/branch.h"
 #include "study/converge.h"
-#include "study/core.h"
+#include "study/estimate.h"
+#include "study/follow.h"
 #include "study/level.h"
 #include "study/radiation.h"
 #include "study/study.h"
@@ -31,12 +33,11 @@ static const double LOSS_ACCURACY = 1e-2;
 
 /* Sampled values of a mode. */
 enum {
-  V_K,          /* Re k, unfolded, 1/µm */
-  V_GROUP,      /* group index */
+  V_SQUARE,     /* Re s, see branch.h */
+  V_SQUARE_IM,  /* Im s */
+  V_PRODUCT,    /* g, see branch.h */
   V_DISPERSION, /* ps/(nm km) */
-  V_DECAY,      /* Im k, 1/µm */
-  V_ABSORBED,   /* its part by absorption */
-  V_RADIATED,   /* its part by radiation */
+  V_ABSORBED,   /* part of the loss by absorption, 0 to 1 */
   V_UPWARD,     /* share of the radiated power into +x */
   VALUES
 };
@@ -45,93 +46,17 @@ static const char NOTE_STOP_BAND[] = "inside a stop band the wave does not propa
 static const char NOTE_LOST[] = "the mode could not be followed from grid to grid";
 static const char NOTE_NO_RADIATION[] = "the mode does not radiate";
 
-typedef struct followed {
-  int order;
-  pk_character character; /* on the last grid */
-  double complex xi;
-  double complex *field; /* on the last grid, with its lines */
-  int nu, nv;
-  double *u, *v;
-  double dispersion_error; /* of the frequency difference, ps/(nm km) */
-} followed;
-
 typedef struct index_study {
   const pk_problem *problem;
   pk_polarization polarization;
   pk_survey survey;
   double k0;
   int count;
-  followed *mode;
+  pk_followed *mode;
+  pk_branch *branch; /* [count] */
   bool lossless;
   pk_radiation_table radiation; /* of the last grid */
 } index_study;
-
-/* --- Following a mode from grid to grid
- * ----------------------------------------------------------- */
-
-static void forget_field(picket_context *context, followed *f) {
-  pk_free(context, f->field);
-  pk_free(context, f->u);
-  pk_free(context, f->v);
-  f->field = NULL;
-  f->u = f->v = NULL;
-}
-
-static picket_status remember_field(picket_context *context, const pk_operator *op,
-                                    const pk_wave *wave, followed *f) {
-  forget_field(context, f);
-  f->nu = pk_operator_lines(op, PK_U);
-  f->nv = pk_operator_lines(op, PK_V);
-  f->xi = wave->xi;
-  f->u = PK_NEW(context, f->nu, double);
-  f->v = PK_NEW(context, f->nv, double);
-  f->field = pk_copy(context, wave->right, (size_t)f->nu * (size_t)f->nv, sizeof *f->field);
-  if (!f->u || !f->v || !f->field) {
-    return PICKET_ERROR_MEMORY;
-  }
-  double length;
-  for (int i = 0; i < f->nu; i++) {
-    pk_operator_line(op, PK_U, i, &f->u[i], &length);
-  }
-  for (int i = 0; i < f->nv; i++) {
-    pk_operator_line(op, PK_V, i, &f->v[i], &length);
-  }
-  return PICKET_OK;
-}
-
-/* The place of a coordinate among lines: the line below, and the part of the way to the next;
- * clamped. */
-static int place_of(int count, const double *lines, double s, double *part) {
-  int i = 0;
-  while (i + 2 < count && lines[i + 1] <= s) {
-    i++;
-  }
-  *part = count > 1 ? fmin(1, fmax(0, (s - lines[i]) / (lines[i + 1] - lines[i]))) : 0;
-  return i;
-}
-
-/* The remembered field on the lines of another grid, by linear interpolation: a start for a solve.
- */
-static double complex *prolonged(picket_context *context, const pk_operator *op,
-                                 const followed *f) {
-  int nu = pk_operator_lines(op, PK_U), nv = pk_operator_lines(op, PK_V);
-  double complex *field = PK_NEW(context, (int64_t)nu * nv, double complex);
-  for (int iu = 0; field && iu < nu; iu++) {
-    double z, length, pu;
-    pk_operator_line(op, PK_U, iu, &z, &length);
-    int a = place_of(f->nu, f->u, z, &pu);
-    for (int iv = 0; iv < nv; iv++) {
-      double x, pv;
-      pk_operator_line(op, PK_V, iv, &x, &length);
-      int b = place_of(f->nv, f->v, x, &pv);
-      int next = f->nv > 1 ? 1 : 0;
-      const double complex *low = f->field + (int64_t)a * f->nv + b, *high = low + f->nv;
-      field[(int64_t)iu * nv + iv] = (1 - pu) * ((1 - pv) * low[0] + pv * low[next]) +
-                                     pu * ((1 - pv) * high[0] + pv * high[next]);
-    }
-  }
-  return field;
-}
 
 static pk_character_request character_request(const index_study *s) {
   pk_character_request request = {.pitch_um = s->problem->cell.pitch_um, .k0 = s->k0};
@@ -194,48 +119,48 @@ static picket_status dispersion(index_study *s, pk_level *level, const pk_wave *
 static void loss_values(const pk_character *c, double *v) {
   double radiated = c->power.radiated[0] + c->power.radiated[1], absorbed = c->power.absorbed;
   double lost = radiated + absorbed;
-  v[V_DECAY] = cimag(c->k);
   bool known = fabs(lost) > 0 && !c->at_boundary;
-  v[V_ABSORBED] = known ? v[V_DECAY] * absorbed / lost : 0;
-  v[V_RADIATED] = known ? v[V_DECAY] * radiated / lost : 0;
+  v[V_ABSORBED] = known ? absorbed / lost : 0;
   v[V_UPWARD] = known && radiated > 0 ? c->power.radiated[1] / radiated : NAN;
 }
 
-static picket_status measure(index_study *s, pk_level *level, followed *f, const pk_wave *wave,
+static picket_status measure(index_study *s, pk_level *level, int i, const pk_wave *wave,
                              double *v) {
-  double complex slope = NAN;
-  v[V_K] = creal(f->character.k);
+  pk_followed *f = &s->mode[i];
+  double complex slope = NAN, k = f->character.k;
+  double complex square = pk_branch_square(&s->branch[i], k);
+  v[V_SQUARE] = creal(square);
+  v[V_SQUARE_IM] = f->character.at_boundary ? 0 : cimag(square);
   loss_values(&f->character, v);
-  v[V_GROUP] = v[V_DISPERSION] = NAN;
-  if (f->character.at_boundary) {
-    return PICKET_OK;
-  }
   picket_status status =
       pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, s->k0, s->problem->cell.pitch_um,
                     s->problem->cell.shift, wave, &slope);
-  v[V_GROUP] = creal(slope);
-  if (status == PICKET_OK) {
+  v[V_PRODUCT] = pk_branch_product(&s->branch[i], k, slope);
+  if (status == PICKET_OK && !f->character.at_boundary) {
     status = dispersion(s, level, wave, slope, &v[V_DISPERSION], &f->dispersion_error);
   }
   if (status == PICKET_ERROR_NUMERIC || status == PICKET_ERROR_NO_MODE) {
-    pk_message_clear(
-        s->problem->context); /* too near an edge, or a slab cut off beside: no bar, no value */
+    /* Too near an edge, or a slab is cut off beside: no value. */
+    pk_message_clear(s->problem->context);
     v[V_DISPERSION] = NAN;
     status = pk_media_set(&level->media, s->k0, level->op);
   }
   return status;
 }
 
+/* Inside a stop band both main harmonics weigh the same, and a grid may put the edge on the other
+ * side of the wavelength: then the nodes must do. */
 static bool same_mode(const pk_character *a, const pk_character *b) {
-  return a->nodes == b->nodes && a->harmonic == b->harmonic && a->at_boundary == b->at_boundary;
+  return a->nodes == b->nodes && (a->harmonic == b->harmonic || a->at_boundary || b->at_boundary);
 }
 
-static picket_status follow(index_study *s, pk_level *level, followed *f, double *v) {
+static picket_status follow(index_study *s, pk_level *level, int i, double *v) {
   picket_context *context = s->problem->context;
-  for (int i = 0; i < VALUES; i++) {
-    v[i] = NAN;
+  pk_followed *f = &s->mode[i];
+  for (int q = 0; q < VALUES; q++) {
+    v[q] = NAN;
   }
-  double complex *start = prolonged(context, level->op, f);
+  double complex *start = pk_follow_prolonged(context, level->op, f);
   if (!start) {
     return PICKET_ERROR_MEMORY;
   }
@@ -250,9 +175,9 @@ static picket_status follow(index_study *s, pk_level *level, followed *f, double
   }
   if (status == PICKET_OK && same_mode(&f->character, &character)) {
     f->character = character;
-    status = remember_field(context, level->op, &wave, f);
+    status = pk_follow_remember(context, level->op, &wave, f);
     if (status == PICKET_OK) {
-      status = measure(s, level, f, &wave, v);
+      status = measure(s, level, i, &wave, v);
     }
     if (status == PICKET_OK) {
       status = pk_radiation_take(context, level->op, &request, &s->survey, &wave, f->character.k,
@@ -294,7 +219,7 @@ static picket_status sample(void *user, const pk_cell_grid *base, int m, double 
   }
   status = set_media(s, &level);
   for (int i = 0; status == PICKET_OK && i < s->count; i++) {
-    status = follow(s, &level, &s->mode[i], values + i * VALUES);
+    status = follow(s, &level, i, values + i * VALUES);
   }
   pk_level_close(&level);
   return status;
@@ -307,10 +232,11 @@ static picket_status keep_found(index_study *s, const pk_level *level, int count
                                 const pk_found_wave *found) {
   picket_status status = PICKET_OK;
   for (int i = 0; status == PICKET_OK && i < count; i++) {
-    followed *f = &s->mode[i];
+    pk_followed *f = &s->mode[i];
     f->order = found[i].order;
     f->character = found[i].character;
-    status = remember_field(s->problem->context, level->op, &found[i].wave, f);
+    s->branch[i] = pk_branch_of(f->character.k, s->problem->cell.pitch_um);
+    status = pk_follow_remember(s->problem->context, level->op, &found[i].wave, f);
     s->count = i + 1;
   }
   return status;
@@ -387,8 +313,8 @@ static picket_quantity absent(const char *note) {
   return (picket_quantity){NAN, NAN, note};
 }
 
-static picket_regime regime_of(const index_study *s, const followed *f) {
-  if (f->character.at_boundary) {
+static picket_regime regime_of(const index_study *s, const pk_followed *f, bool stopped) {
+  if (stopped) {
     return PICKET_REGIME_STOP_BAND;
   }
   if (pk_radiation_has_grating_order(&s->radiation, f->order)) {
@@ -398,62 +324,98 @@ static picket_regime regime_of(const index_study *s, const followed *f) {
   return below ? PICKET_REGIME_SUBWAVELENGTH : PICKET_REGIME_UNKNOWN;
 }
 
-/* Loss of a lossless guide without an open channel is zero; what the solver says about it is the
- * bar. */
-static void settle_loss(const index_study *s, const followed *f, picket_quantity *q) {
-  bool open_channel = pk_radiation_count(&s->radiation, f->order) > 0;
-  if (s->lossless && !open_channel && !f->character.at_boundary) {
-    double rounding = fabs(q[V_DECAY].value) + 1e-12 * s->k0;
-    q[V_DECAY] = q[V_ABSORBED] = q[V_RADIATED] = (picket_quantity){0, rounding, NULL};
-  } else if (s->lossless) {
-    q[V_ABSORBED] = (picket_quantity){0, 0, NULL};
+/* Nothing absorbs, nothing radiates, nothing reflects. */
+static bool is_lossless(const index_study *s, const pk_followed *f) {
+  return s->lossless && !f->character.at_boundary &&
+         pk_radiation_count(&s->radiation, f->order) == 0;
+}
+
+/* Inside a stop band s is negative and, but for losses, real: told by the extrapolated s, as the
+ * edge moves with the grid. */
+static bool is_stopped(const picket_quantity *square, const picket_quantity *square_im) {
+  return square->value < 0 && fabs(square_im->value) < 0.1 * fabs(square->value);
+}
+
+/* How the loss of a mode divides, with bars. Loss of a lossless guide without an open channel is
+ * zero; what the solver says about it is the bar. */
+static void divide_loss(const index_study *s, const pk_followed *f, bool stopped,
+                        picket_quantity part, picket_quantity *decay, picket_quantity *absorbed,
+                        picket_quantity *radiated) {
+  picket_quantity zero = {0, 0, NULL};
+  if (is_lossless(s, f) && !stopped) {
+    zero.uncertainty = fabs(decay->value) + 1e-12 * s->k0;
+    *decay = *absorbed = *radiated = zero;
+    return;
   }
-  if (!open_channel) {
-    q[V_RADIATED] = (picket_quantity){0, q[V_RADIATED].uncertainty, NULL};
-    q[V_UPWARD] = absent(NOTE_NO_RADIATION);
+  bool open_channel = pk_radiation_count(&s->radiation, f->order) > 0;
+  if (s->lossless) {
+    part = zero;
+  } else if (!open_channel) {
+    part = (picket_quantity){1, 0, NULL};
+  }
+  double spread = fabs(decay->value) * part.uncertainty;
+  *absorbed = *radiated = *decay;
+  absorbed->value *= part.value;
+  absorbed->uncertainty = decay->uncertainty * fabs(part.value) + spread;
+  radiated->value *= 1 - part.value;
+  radiated->uncertainty = decay->uncertainty * fabs(1 - part.value) + spread;
+  if (stopped) {
+    *absorbed = *radiated = zero; /* a mirror: nothing is lost */
   }
 }
 
-static picket_status fill_mode(index_study *s, followed *f, picket_quantity *q,
-                               picket_bloch_mode *mode) {
+static picket_status fill_mode(index_study *s, int i, picket_quantity *q, picket_bloch_mode *mode) {
+  const pk_followed *f = &s->mode[i];
   double decibel = DECIBEL_PER_NEPER * UM_PER_CM;
-  for (int i = 0; i < VALUES; i++) {
-    if (isnan(q[i].value) && !q[i].note) {
-      q[i].note = NOTE_LOST;
+  for (int v = 0; v < VALUES; v++) {
+    if (isnan(q[v].value) && !q[v].note) {
+      q[v].note = NOTE_LOST;
     }
   }
-  settle_loss(s, f, q);
+  picket_quantity k, decay, absorbed, radiated;
+  pk_branch_wavenumber(&s->branch[i], q[V_SQUARE], q[V_SQUARE_IM], &k, &decay);
+  bool stopped = is_stopped(&q[V_SQUARE], &q[V_SQUARE_IM]);
+  divide_loss(s, f, stopped, q[V_ABSORBED], &decay, &absorbed, &radiated);
   mode->order = f->order;
-  mode->bloch_index = scaled(q[V_K], 1 / s->k0);
-  mode->group_index = f->character.at_boundary ? absent(NOTE_STOP_BAND) : q[V_GROUP];
+  mode->bloch_index = scaled(k, 1 / s->k0);
+  mode->group_index = f->character.at_boundary ? absent(NOTE_STOP_BAND)
+                                               : pk_branch_group_index(q[V_PRODUCT], q[V_SQUARE]);
   mode->dispersion_ps_per_nm_km =
       f->character.at_boundary ? absent(NOTE_STOP_BAND) : q[V_DISPERSION];
   mode->dispersion_ps_per_nm_km.uncertainty += f->dispersion_error;
-  mode->loss_db_per_cm = scaled(q[V_DECAY], decibel);
-  mode->loss_db_per_pitch = scaled(q[V_DECAY], DECIBEL_PER_NEPER * s->problem->cell.pitch_um);
-  mode->absorption_db_per_cm = scaled(q[V_ABSORBED], decibel);
-  mode->radiation_db_per_cm = scaled(q[V_RADIATED], decibel);
-  mode->radiation_per_mm = scaled(q[V_RADIATED], 2e3);
-  mode->upward_share = q[V_UPWARD];
-  mode->regime = regime_of(s, f);
+  mode->loss_db_per_cm = scaled(decay, decibel);
+  mode->loss_db_per_pitch = scaled(decay, DECIBEL_PER_NEPER * s->problem->cell.pitch_um);
+  mode->absorption_db_per_cm = scaled(absorbed, decibel);
+  mode->radiation_db_per_cm = scaled(radiated, decibel);
+  mode->radiation_per_mm = scaled(radiated, 2e3);
+  bool radiates = pk_radiation_count(&s->radiation, f->order) > 0;
+  mode->upward_share = radiates ? q[V_UPWARD] : absent(NOTE_NO_RADIATION);
+  mode->regime = regime_of(s, f, stopped);
   return pk_radiation_fill(s->problem->context, &s->radiation, f->order, mode);
 }
 
 static void index_clear(index_study *s) {
   for (int i = 0; s->mode && i < s->count; i++) {
-    forget_field(s->problem->context, &s->mode[i]);
+    pk_follow_forget(s->problem->context, &s->mode[i]);
   }
   pk_free(s->problem->context, s->mode);
+  pk_free(s->problem->context, s->branch);
   pk_radiation_clear(s->problem->context, &s->radiation);
 }
 
 /* Index and group index meet the accuracy asked; a loss is a small difference of large numbers and
  * meets it to a hundredth at best; what is derived from it, and dispersion, take what they get. */
-static double slack_of(const pk_converge_request *request, int i) {
+static double allowed_of(const pk_converge_request *request, const picket_quantity *q, int i) {
+  const index_study *s = request->user;
+  double accuracy = request->options->accuracy;
+  int mode = i / VALUES;
   switch (i % VALUES) {
-    case V_K:
-    case V_GROUP: return 1;
-    case V_DECAY: return fmax(1, LOSS_ACCURACY / request->options->accuracy);
+    case V_SQUARE: return pk_branch_allowed(&s->branch[mode], q[i].value, accuracy);
+    case V_PRODUCT: return accuracy * fabs(q[i].value);
+    case V_SQUARE_IM:
+      return is_lossless(s, &s->mode[mode]) || s->mode[mode].character.at_boundary
+                 ? INFINITY
+                 : fmax(LOSS_ACCURACY, accuracy) * fabs(q[i].value);
     default: return INFINITY;
   }
 }
@@ -473,11 +435,11 @@ static picket_status converge_modes(index_study *s, const picket_options *option
         .user = s,
         .options = options,
         .phase = s->polarization == PK_EY ? "Bloch index, ey" : "Bloch index, hy",
-        .slack = slack_of};
+        .allowed = allowed_of};
     status = pk_converge(&request, q, result);
   }
   for (int i = 0; status == PICKET_OK && i < s->count; i++) {
-    status = fill_mode(s, &s->mode[i], q + i * VALUES, &modes[i]);
+    status = fill_mode(s, i, q + i * VALUES, &modes[i]);
     point->mode_count = i + 1;
   }
   pk_free(context, q);
@@ -497,8 +459,9 @@ picket_status pk_index_point(const pk_problem *problem, pk_polarization polariza
     status = pk_survey_take(problem, polarization, &s.survey);
   }
   if (status == PICKET_OK) {
-    s.mode = PK_NEW(problem->context, wanted, followed);
-    status = s.mode ? first_look(&s, wanted) : PICKET_ERROR_MEMORY;
+    s.mode = PK_NEW(problem->context, wanted, pk_followed);
+    s.branch = PK_NEW(problem->context, wanted, pk_branch);
+    status = s.mode && s.branch ? first_look(&s, wanted) : PICKET_ERROR_MEMORY;
   }
   if (status == PICKET_OK && s.count == 0) {
     point->note = NOTE_NO_MODE;

@@ -23,28 +23,24 @@ static const double LAYER_STEPS = 8;
 static const double STEP_RADIANS = 0.5;
 static const double GRAZING = 0.1;
 
+/* Beside an outgoing wave, evanescent harmonics need not be waited for longer than this many
+ * radians of the free wave: the layer takes what is left. */
+static const double MOST_DECAYS = 3;
+
 /* A first look only has to tell modes from waves of the layers. */
 static const double LOOK_STRENGTH = 4;
 static const double LOOK_DECAYS = 1.5;
 
 static const double LONGEST_DECAY = 100; /* in pitches */
 
-static const char NOTE_CORNERS[] =
-    "no error bar: the magnetic field is singular at the corners of this cell, so the error does "
-    "not fall as the square of the grid spacing";
-
-/* The error law of a cell: see NOTE_CORNERS and extrapolate.h. */
-static pk_error_law law_of(const pk_problem *problem, pk_polarization polarization) {
+/* The error law of a cell, corners left to corner_law.c: see extrapolate.h. */
+static pk_error_law law_of(const pk_problem *problem) {
   const pk_geometry *geometry = problem->cell.geometry;
   pk_error_law law = {.count = 2, .exponent = {2, 4, 6}, .smooth = 1};
   if (problem->cell.lateral == PK_LATERAL_UNIFORM) {
     law.count = 3;
   } else if (!pk_geometry_is_rectangular(geometry)) {
     law.smooth = 0;
-  }
-  if (polarization == PK_HY && problem->cell.lateral != PK_LATERAL_UNIFORM &&
-      pk_geometry_has_corners(geometry)) {
-    law.no_bar = NOTE_CORNERS;
   }
   return law;
 }
@@ -59,6 +55,10 @@ static double permittivity_near(const pk_problem *problem, int material, double 
     return 1;
   }
   return creal(medium.permittivity);
+}
+
+double pk_survey_permittivity(const pk_survey *survey, int material, double k0) {
+  return permittivity_near(survey->problem, material, k0);
 }
 
 /* Mean index of the structure: of the whole cell if it is closed, of the extent of the shapes if it
@@ -141,6 +141,17 @@ static double slowest_outgoing(const pk_survey *survey, int side, double k, doub
   return slowest;
 }
 
+/* The smallest |k_m| among the harmonics that do not radiate into a side: it reaches farthest. */
+static double slowest_evanescent(const pk_survey *survey, int side, double k, double k0) {
+  double free = k0 * pk_survey_side_index(survey, side, k0);
+  double step = 2 * PI / survey->problem->cell.pitch_um, slowest = INFINITY;
+  for (int m = -RADIATED_ORDERS; m <= RADIATED_ORDERS; m++) {
+    double along = fabs(k + m * step);
+    slowest = along >= free ? fmin(slowest, along) : slowest;
+  }
+  return slowest;
+}
+
 void pk_survey_absorb(pk_survey *survey, double k0) {
   survey->outer_step_um = 0;
   for (int side = 0; survey->open && side < 2; side++) {
@@ -156,7 +167,8 @@ void pk_survey_open_sides(pk_survey *survey, double k, double k0, double accurac
   survey->outer_step_um = 0;
   for (int side = 0; survey->open && side < 2; side++) {
     survey->layer[side] = (pk_layer){0};
-    survey->decay_um[side] = pk_survey_decay(survey, side, k, k0);
+    double along = slowest_evanescent(survey, side, k, k0);
+    survey->decay_um[side] = pk_survey_decay(survey, side, along, k0);
     double across = slowest_outgoing(survey, side, k, k0);
     if (across == 0) {
       continue;
@@ -167,7 +179,7 @@ void pk_survey_open_sides(pk_survey *survey, double k, double k0, double accurac
     /* Once through the layer and back: exp(-2 across strength thickness / 3). */
     double strength = 1.5 * log(100 / accuracy) / LAYER_RADIANS;
     survey->layer[side] = (pk_layer){thickness, strength};
-    survey->decay_um[side] = fmin(survey->decay_um[side], 1 / free);
+    survey->decay_um[side] = fmin(survey->decay_um[side], MOST_DECAYS / free);
     double step = fmin(thickness / LAYER_STEPS, STEP_RADIANS / free);
     survey->outer_step_um = survey->outer_step_um == 0 ? step : fmin(survey->outer_step_um, step);
     pk_log(survey->problem->context, PICKET_LOG_DETAIL,
@@ -180,7 +192,7 @@ picket_status pk_survey_take(const pk_problem *problem, pk_polarization polariza
                              pk_survey *out) {
   pk_survey survey = {.problem = problem, .polarization = polarization};
   const pk_cell *cell = &problem->cell;
-  survey.law = law_of(problem, polarization);
+  survey.law = law_of(problem);
   survey.steps_per_pitch =
       cell->lateral == PK_LATERAL_UNIFORM ? STEPS_PER_PITCH_STACK : STEPS_PER_PITCH;
   survey.open = cell->lateral == PK_LATERAL_OPEN;

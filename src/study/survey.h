@@ -22,7 +22,7 @@ typedef struct pk_survey {
   pk_layer layer[2];      /* absorbing layers of open sides; thickness 0: none */
   double outer_step_um;   /* largest base spacing in open sides; 0: as the decay wants */
   double steps_per_pitch; /* of the base grid */
-  pk_error_law law;
+  pk_error_law law;       /* corners left out: see corner_law.h */
 } pk_survey;
 
 picket_status pk_survey_take(const pk_problem *problem, pk_polarization polarization,
@@ -31,6 +31,9 @@ picket_status pk_survey_take(const pk_problem *problem, pk_polarization polariza
 /* 1/e length into an open side of a field with wavenumber k at frequency k0; never longer than a
  * hundred pitches (a mode at the light line reaches as far as it likes). */
 double pk_survey_decay(const pk_survey *survey, int side, double k, double k0);
+
+/* Real part of the permittivity of a material at k0, moved into its known range. */
+double pk_survey_permittivity(const pk_survey *survey, int material, double k0);
 
 /* Index of an open side at k0 (materials moved into their known range). */
 double pk_survey_side_index(const pk_survey *survey, int side, double k0);
