@@ -74,9 +74,24 @@ static void scale_and_phase_do_not_matter(void **state) {
   cell_close(&c);
 }
 
+/* A lateral shape with a phase of its own, as in an absorbing guide. */
+static void complex_shapes_are_like_themselves(void **state) {
+  (void)state;
+  test_cell c = empty();
+  double complex field[NU * NV], shape[NV], work[NV];
+  standing(&c, 1, 0.3, false, field);
+  for (int i = 0; i < NU * NV; i++) {
+    field[i] *= cexp(0.7 * I * (i % NV));
+  }
+  pk_family_shape(c.op, PITCH, 1, field, shape);
+  assert_near(pk_family_likeness(c.op, PITCH, 1, shape, field, work), 1, 1e-13);
+  cell_close(&c);
+}
+
 int main(void) {
   const struct CMUnitTest tests[] = {
       cmocka_unit_test(likeness_tells_families_apart),
+      cmocka_unit_test(complex_shapes_are_like_themselves),
       cmocka_unit_test(scale_and_phase_do_not_matter),
   };
   return cmocka_run_group_tests(tests, NULL, NULL);

@@ -1,5 +1,6 @@
 /* What the operator is, whatever the numbers: pattern, area sums, media used, memory. */
 #include "dense/dense.h"
+#include "operator/operator_private.h"
 #include "unit/operator/samples.h"
 #include "unit/short_memory.h"
 
@@ -109,6 +110,45 @@ static void energies_are_not_negative(void **state) {
   }
 }
 
+/* Where node number k of a cross difference stands, unfolded, along an axis. */
+static double unfolded(const test_cell *c, const pk_cross *cross, int axis, int k,
+                       pk_axis_name along) {
+  int64_t node = cross->node[axis][k];
+  int nv = pk_operator_lines(c->op, PK_V);
+  double at, length;
+  pk_operator_line(c->op, along, (int)(along == PK_U ? node / nv : node % nv), &at, &length);
+  double wraps_v = cross->wv[axis][k];
+  return along == PK_U ? at + (cross->wu[axis][k] + wraps_v * c->cell.shift) * c->cell.pitch_um
+                       : at + wraps_v * c->cell.span_um;
+}
+
+/* The two differences of a mixed term: exact for fields that rise evenly, zero across them. */
+static void mixed_terms_differentiate_linear_fields(void **state) {
+  (void)state;
+  static const int OBLIQUE[] = {1, 2, 5, 7};
+  for (int i = 0; i < 4; i++) {
+    test_cell c = sample(OBLIQUE[i], PK_HY);
+    assert_true(c.op->cross_count > 10);
+    for (int64_t k = 0; k < c.op->cross_count; k++) {
+      const pk_cross *cross = &c.op->cross[k];
+      for (int axis = 0; axis < 2; axis++) {
+        double constant = 0, rise[2] = {0, 0};
+        for (int a = 0; a < cross->count[axis]; a++) {
+          double coefficient = creal(cross->coefficient[axis][a]);
+          constant += coefficient;
+          rise[0] += coefficient * unfolded(&c, cross, axis, a, PK_U);
+          rise[1] += coefficient * unfolded(&c, cross, axis, a, PK_V);
+        }
+        assert_int_equal(cross->count[axis], 3); /* no wall with a zero in these samples */
+        assert_near(constant, 0, 1e-12);
+        assert_near(rise[axis], 1, 1e-12);
+        assert_near(rise[1 - axis], 0, 1e-12);
+      }
+    }
+    cell_close(&c);
+  }
+}
+
 static void media_that_are_covered_are_not_used(void **state) {
   (void)state;
   for (int polarization = 0; polarization < 2; polarization++) {
@@ -182,6 +222,7 @@ int main(void) {
       cmocka_unit_test(masses_add_up_to_the_integral),
       cmocka_unit_test(constant_fields_cost_nothing),
       cmocka_unit_test(energies_are_not_negative),
+      cmocka_unit_test(mixed_terms_differentiate_linear_fields),
       cmocka_unit_test(media_that_are_covered_are_not_used),
       cmocka_unit_test(lines_of_the_operator_are_those_of_the_grid),
       cmocka_unit_test(every_allocation_may_fail),
