@@ -15,8 +15,9 @@
 #include "eigen/eigen.h"
 
 enum {
-  KRYLOV = 10,     /* basis for one mode near a good guess */
-  REFINEMENTS = 30 /* each gains the factor |ξ - σ| over the distance to the next wave */
+  KRYLOV = 10,      /* basis for one mode near a good guess */
+  REFINEMENTS = 30, /* each gains the factor |ξ - σ| over the distance to the next wave */
+  ROUNDS = 3        /* of right and left vector: the second settles all but a few waves */
 };
 
 /* Small enough that the second-order functional is at rounding level; see PK_RESIDUAL_LIMIT. */
@@ -28,6 +29,8 @@ static const double SHIFT_OFFSET = 1e-4;
 /* Below this a residual that no longer halves has met rounding. */
 static const double STALLED = 1e-9;
 static const uint64_t START_SEED = 20221;
+/* Both residuals below this: another round of them gains nothing that matters. */
+static const double ROUND_ENOUGH = 1e-10;
 
 /* A shift this close to ξ (relative) needs no second factorisation for the left vector. */
 static const double CLOSE = 2e-3;
@@ -236,22 +239,30 @@ static picket_status find_left(search *s, pk_solver *solver, double complex *val
 }
 
 /* Right vector, then left vector (conj(right) is one for lossless waves that do not decay), then ξ
- * from both. */
+ * from both. For a decaying wave the first ξ comes from a wrong left vector and may be good to the
+ * residual only, which then bounds the left one: a second round has the true left vector and gains
+ * the square. */
 static picket_status refine(search *s, pk_solver *solver, double complex *values, pk_wave *wave) {
   for (int64_t p = 0; p < s->n; p++) {
     wave->left[p] = conj(wave->right[p]);
   }
-  picket_status status = refine_right(s, values, wave);
-  for (int64_t p = 0; p < s->n; p++) {
-    wave->left[p] = conj(wave->right[p]);
-  }
-  double left = INFINITY;
-  if (status == PICKET_OK) {
-    status = find_left(s, solver, values, wave, &left);
-  }
-  if (status == PICKET_OK) {
-    wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
-    wave->residual = fmax(left, residual_of(s, wave->xi, false, wave->right, values));
+  picket_status status = PICKET_OK;
+  for (int round = 0; status == PICKET_OK && round < ROUNDS; round++) {
+    double left = INFINITY;
+    status = refine_right(s, values, wave);
+    for (int64_t p = 0; round == 0 && p < s->n; p++) {
+      wave->left[p] = conj(wave->right[p]);
+    }
+    if (status == PICKET_OK) {
+      status = find_left(s, solver, values, wave, &left);
+    }
+    if (status == PICKET_OK) {
+      wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
+      wave->residual = fmax(left, residual_of(s, wave->xi, false, wave->right, values));
+      if (wave->residual < ROUND_ENOUGH) {
+        break;
+      }
+    }
   }
   if (status == PICKET_OK && !(wave->residual <= PK_RESIDUAL_LIMIT)) {
     status = pk_fail(s->context, PICKET_ERROR_NUMERIC,
