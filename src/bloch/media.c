@@ -67,8 +67,7 @@ picket_status pk_media_set(pk_media *media, double k0, pk_operator *op) {
     media->slope[m] = media->clamped ? 0 : at.slope;
     media->dispersive = media->dispersive || at.slope != 0;
   }
-  pk_operator_load(op, media->permittivity);
-  return PICKET_OK;
+  return pk_operator_load(op, media->permittivity);
 }
 
 picket_status pk_media_frequency_form(const pk_media *media, const pk_operator *op, pk_phase phase,
@@ -81,11 +80,14 @@ picket_status pk_media_frequency_form(const pk_media *media, const pk_operator *
       return PICKET_ERROR_MEMORY;
     }
     double complex *mass = stiff + media->count;
-    pk_operator_media_forms(op, phase, l, r, stiff, mass);
-    for (int m = 0; m < media->count; m++) {
+    picket_status status = pk_operator_media_forms(op, phase, l, r, stiff, mass);
+    for (int m = 0; status == PICKET_OK && m < media->count; m++) {
       sum += (stiff[m] - k0 * k0 * mass[m]) * media->slope[m] / k0;
     }
     pk_free(media->context, stiff);
+    if (status != PICKET_OK) {
+      return status;
+    }
   }
   *out = sum;
   return PICKET_OK;

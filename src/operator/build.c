@@ -410,10 +410,11 @@ void pk_operator_free(pk_operator *op) {
   pk_axis_clear(context, &op->u);
   pk_axis_clear(context, &op->v);
   pk_mixtures_close(&op->mixtures);
-  void *arrays[] = {
-      op->pattern.start, op->pattern.row, op->wu,           op->wv,   op->diagonal,
-      op->edge,          op->cross,       op->node_mixture, op->cell, op->permittivity,
-      op->stiff,         op->lateral,     op->mass,         op};
+  pk_corner_cache_free(op->cures);
+  void *arrays[] = {op->pattern.start, op->pattern.row,  op->wu,    op->wv,
+                    op->diagonal,      op->edge,         op->cross, op->node_mixture,
+                    op->cell,          op->permittivity, op->stiff, op->lateral,
+                    op->mass,          op->corner,       op};
   for (size_t i = 0; i < sizeof arrays / sizeof arrays[0]; i++) {
     pk_free(context, arrays[i]);
   }

@@ -68,16 +68,24 @@ static double complex cross_product(const pk_cross *cross, pk_phase phase, const
   return lu * rv + lv * ru;
 }
 
-static void media_forms_hy(const pk_operator *op, pk_phase phase, const double complex *l,
-                           const double complex *r, double complex *stiff) {
+static picket_status media_forms_hy(const pk_operator *op, pk_phase phase, const double complex *l,
+                                    const double complex *r, double complex *stiff) {
   for (int64_t e = 0; e < op->edge_count; e++) {
     const pk_edge *edge = &op->edge[e];
     const pk_mixture *mixture = &op->mixtures.list[edge->mixture];
-    double complex product = edge->scale * edge_product(edge, phase, l, r);
+    pk_axis_name along = (pk_axis_name)edge->along;
+    double complex product =
+        edge->scale * edge_product(edge, phase, l, r) * pk_edge_boost(op, edge);
     for (int i = 0; i < mixture->count; i++) {
       stiff[mixture->medium[i]] +=
-          product *
-          pk_mixture_weight_slope(mixture, (pk_axis_name)edge->along, op->permittivity, i);
+          product * pk_mixture_weight_slope(mixture, along, op->permittivity, i);
+    }
+    if (edge->corner[0] > 0 || edge->corner[1] > 0) {
+      product *= pk_mixture_weight(mixture, along, op->permittivity);
+      picket_status status = pk_edge_corner_forms(op, edge, product, stiff);
+      if (status != PICKET_OK) {
+        return status;
+      }
     }
   }
   for (int64_t k = 0; k < op->cross_count; k++) {
@@ -88,15 +96,16 @@ static void media_forms_hy(const pk_operator *op, pk_phase phase, const double c
       stiff[mixture->medium[i]] += product * pk_mixture_mixed_slope(mixture, op->permittivity, i);
     }
   }
+  return PICKET_OK;
 }
 
-void pk_operator_media_forms(const pk_operator *op, pk_phase phase, const double complex *l,
-                             const double complex *r, double complex *stiff, double complex *mass) {
+picket_status pk_operator_media_forms(const pk_operator *op, pk_phase phase,
+                                      const double complex *l, const double complex *r,
+                                      double complex *stiff, double complex *mass) {
   memset(stiff, 0, (size_t)op->media * sizeof *stiff);
   memset(mass, 0, (size_t)op->media * sizeof *mass);
   if (op->polarization == PK_HY) {
-    media_forms_hy(op, phase, l, r, stiff);
-    return;
+    return media_forms_hy(op, phase, l, r, stiff);
   }
   for (int64_t p = 0; p < op->pattern.n; p++) {
     const pk_mixture *mixture = &op->mixtures.list[op->node_mixture[p]];
@@ -105,4 +114,5 @@ void pk_operator_media_forms(const pk_operator *op, pk_phase phase, const double
       mass[mixture->medium[i]] += mixture->fraction[i] * product;
     }
   }
+  return PICKET_OK;
 }

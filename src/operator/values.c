@@ -11,8 +11,9 @@ double complex pk_edge_weight(const pk_operator *op, const pk_edge *edge) {
   if (op->polarization == PK_EY) {
     return edge->scale;
   }
-  return edge->scale * pk_mixture_weight(&op->mixtures.list[edge->mixture],
-                                         (pk_axis_name)edge->along, op->permittivity);
+  double complex average = pk_mixture_weight(&op->mixtures.list[edge->mixture],
+                                             (pk_axis_name)edge->along, op->permittivity);
+  return edge->scale * average * pk_edge_boost(op, edge);
 }
 
 static void load_edges(pk_operator *op) {
@@ -58,7 +59,11 @@ static void load_mass(pk_operator *op) {
   }
 }
 
-void pk_operator_load(pk_operator *op, const double complex *permittivity) {
+picket_status pk_operator_load(pk_operator *op, const double complex *permittivity) {
+  picket_status status = pk_operator_load_corners(op, permittivity);
+  if (status != PICKET_OK) {
+    return status;
+  }
   op->is_real = op->real_axes;
   for (int m = 0; m < op->media; m++) {
     op->permittivity[m] = permittivity[m];
@@ -72,6 +77,7 @@ void pk_operator_load(pk_operator *op, const double complex *permittivity) {
   load_edges(op);
   load_crosses(op);
   load_mass(op);
+  return PICKET_OK;
 }
 
 int64_t pk_operator_size(const pk_operator *op) {
@@ -90,7 +96,8 @@ const double complex *pk_operator_mass(const pk_operator *op) {
   return op->mass;
 }
 
-/* 1/ξ; on the unit circle the conjugate, so that a matrix at real k is Hermitian to the last bit. */
+/* 1/ξ; on the unit circle the conjugate, so that a matrix at real k is Hermitian to the last bit.
+ */
 static double complex inverse(double complex xi) {
   double square = creal(xi) * creal(xi) + cimag(xi) * cimag(xi);
   return fabs(square - 1) <= 4 * DBL_EPSILON ? conj(xi) : 1 / xi;

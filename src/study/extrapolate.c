@@ -70,6 +70,28 @@ static picket_quantity smooth(const pk_error_law *law, int count, const int *m,
   return (picket_quantity){best, bar, 0};
 }
 
+/* Corners: the differences below can vanish by chance where terms of the law cancel on these grids,
+ * so the bar is never below a share of the step from the finest grid to the value; with four grids
+ * the share falls with the spacing, as the terms left out fall faster than h². Calibrated against
+ * finer grids on 348 values of cells with one and three random rectangles, of weak and strong
+ * contrast, and with rectangles that touch at a corner: none was outside its bar with the members
+ * 2, 3, 4 (worst 0.78 of it) and 2, 3, 4, 6 (worst 0.93), one with 3, 4, 6, 8; without the share
+ * 3 % and 6 % were. */
+static const double CORNER_SHARE_THREE = 0.02;
+static const double CORNER_SHARE_FOUR = 0.006; /* from the member 2 on */
+
+static picket_quantity at_corners(const pk_error_law *law, int count, const int *m,
+                                  const double *values) {
+  picket_quantity q = smooth(law, count, m, values);
+  double share = CORNER_SHARE_THREE;
+  if (count > 3) {
+    q.uncertainty = fmax(q.uncertainty, fabs(q.value - pk_extrapolated(law, 3, m, values, 3)));
+    share = CORNER_SHARE_FOUR * 2 / m[0];
+  }
+  q.uncertainty = fmax(q.uncertainty, share * fabs(q.value - values[count - 1]));
+  return q;
+}
+
 static picket_quantity scattered(int count, const int *m, const double *values) {
   double n = count, sx = 0, sy = 0, sxx = 0, sxy = 0;
   for (int i = 0; i < count; i++) {
@@ -96,7 +118,9 @@ picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
       return (picket_quantity){NAN, NAN, 0};
     }
   }
-  picket_quantity q = law->smooth ? smooth(law, count, m, values) : scattered(count, m, values);
+  picket_quantity q = law->corners  ? at_corners(law, count, m, values)
+                      : law->smooth ? smooth(law, count, m, values)
+                                    : scattered(count, m, values);
   if (law->no_bar) {
     q.uncertainty = NAN;
     q.note = law->no_bar;

@@ -19,6 +19,9 @@ static picket_status open_level(const pk_problem *problem, pk_polarization polar
                            pk_materials_count(problem->materials)};
   status = pk_operator_create(context, &plan, &level->op);
   if (status == PICKET_OK) {
+    status = pk_operator_correct_corners(level->op, problem->cell.geometry);
+  }
+  if (status == PICKET_OK) {
     status = pk_solver_create(context, level->op, &level->solver);
   }
   if (status == PICKET_OK) {
