@@ -125,12 +125,13 @@ static reach interval_of(const pk_axis *axis, int unknown) {
 }
 
 /* Twice as wide about the same middle, but not across a wall. */
-static reach widened(const pk_axis *axis, reach r) {
+static reach widened(const pk_geometry *geometry, pk_axis_name axis, reach r) {
+  const pk_frame *frame = pk_geometry_frame(geometry);
   double half = 0.5 * (r.high - r.low);
   reach wide = {r.low - half, r.high + half, r.length};
-  if (axis->low != PK_END_PERIODIC) {
-    wide.low = fmax(wide.low, axis->line[0]);
-    wide.high = fmin(wide.high, axis->line[axis->intervals]);
+  if (!frame->periodic[axis]) {
+    wide.low = fmax(wide.low, frame->from[axis]);
+    wide.high = fmin(wide.high, frame->to[axis]);
   }
   return wide;
 }
@@ -149,7 +150,8 @@ static picket_status site_mixture(pk_operator *op, const pk_operator_plan *plan,
   if (status == PICKET_OK && plan->polarization == PK_HY &&
       !pk_geometry_is_rectangular(plan->geometry)) {
     pk_box wide;
-    status = box_of(plan->geometry, widened(plan->u, u), widened(plan->v, v), &wide);
+    status = box_of(plan->geometry, widened(plan->geometry, PK_U, u),
+                    widened(plan->geometry, PK_V, v), &wide);
     if (status == PICKET_OK && wide.oblique) {
       box = wide;
     }

@@ -235,6 +235,13 @@ picket_status pk_study_edges(const pk_problem *problem, const picket_options *op
     return pk_fail(problem->context, PICKET_ERROR_INPUT,
                    "the problem has no cell: band edges need one");
   }
+  if (problem->cell.shift != 0) {
+    return pk_fail(
+        problem->context, PICKET_ERROR_UNSUPPORTED,
+        "cell.lateral_shift is %g, must be 0 for band edges: describe the straight cell of "
+        "several rows, or ask for bands",
+        problem->cell.shift);
+  }
   picket_result *result = NULL;
   picket_status status = pk_result_create(problem->context, PK_RESULT_EDGES, problem->name,
                                           options->accuracy, &result);

@@ -454,6 +454,13 @@ picket_status pk_index_point(const pk_problem *problem, pk_polarization polariza
   index_study s = {.problem = problem, .polarization = polarization, .k0 = 2 * PI / wavelength_um};
   int wanted = options->count > 0 ? (int)options->count : 1;
   point->wavelength_um = wavelength_um;
+  if (problem->cell.shift != 0) {
+    return pk_fail(
+        problem->context, PICKET_ERROR_UNSUPPORTED,
+        "cell.lateral_shift is %g, must be 0 for a Bloch index: describe the straight cell "
+        "of several rows",
+        problem->cell.shift);
+  }
   picket_status status = pk_estimated_index(problem, polarization, wavelength_um, &point->estimate);
   if (status == PICKET_OK) {
     status = pk_survey_take(problem, polarization, &s.survey);
