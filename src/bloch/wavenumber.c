@@ -7,6 +7,7 @@
  * lᵀ T(ξ) v = 0. */
 #include "bloch/wavenumber.h"
 
+#include <float.h>
 #include <math.h>
 #include <string.h>
 
@@ -15,13 +16,17 @@
 #include "eigen/eigen.h"
 
 enum {
-  KRYLOV = 10,      /* basis for one mode near a good guess */
+  ROUGH_KRYLOV = 4, /* basis of the rough run; see first_pair */
+  KRYLOV = 10,      /* basis for one mode whose guess may be rough */
   REFINEMENTS = 30, /* each gains the factor |ξ - σ| over the distance to the next wave */
   ROUNDS = 3        /* of right and left vector: the second settles all but a few waves */
 };
 
-/* Small enough that the second-order functional is at rounding level; see PK_RESIDUAL_LIMIT. */
+/* Small enough that the second-order functional is at rounding level; see PK_RESIDUAL_LIMIT. On
+ * fine grids rounding alone leaves more: a few DBL_EPSILON of |T v|'s terms, which is the other
+ * goal. */
 static const double RESIDUAL_GOAL = 1e-11;
+static const double ROUNDINGS = 8;
 /* A shift on a good guess would make the matrix singular; this far off, each refinement still gains
  * three digits. */
 static const double SHIFT_OFFSET = 1e-4;
@@ -29,8 +34,12 @@ static const double SHIFT_OFFSET = 1e-4;
 /* Below this a residual that no longer halves has met rounding. */
 static const double STALLED = 1e-9;
 static const uint64_t START_SEED = 20221;
-/* Both residuals below this: another round of them gains nothing that matters. */
-static const double ROUND_ENOUGH = 1e-10;
+/* Both residuals below this many goals: another round gains nothing that matters. */
+static const double ROUND_ENOUGH = 10;
+
+/* Relative tolerance of the rough run, and the distance from σ at which its wave is trusted. */
+static const double ROUGH = 1e-3;
+static const double NEXT_TO = 1e-2;
 
 /* A shift this close to ξ (relative) needs no second factorisation for the left vector. */
 static const double CLOSE = 2e-3;
@@ -47,6 +56,7 @@ typedef struct search {
   pk_factor *factor;
   pk_phase phase; /* xi = σ */
   double k0;
+  double goal; /* of the residuals */
   int64_t n;
   double complex *work, *other; /* [n] each */
 } search;
@@ -75,7 +85,22 @@ static void scale_to_unit(int64_t n, double complex *x) {
   }
 }
 
-/* A first pair from a short Arnoldi run. */
+/* One run of Arnoldi; not found is an outcome. */
+static picket_status run_arnoldi(search *s, const pk_eigen_request *request, double complex *vector,
+                                 double complex *xi, bool *found) {
+  double complex theta;
+  int count = 0;
+  picket_status status =
+      pk_eigen_complex(s->context, request, apply, s, &theta, vector, &count, NULL);
+  *found = status == PICKET_OK && count > 0;
+  if (*found) {
+    *xi = s->phase.xi + 1 / theta;
+  }
+  return status;
+}
+
+/* A first pair: from a rough run if that shows a wave next to σ, where refinement is as fast as
+ * Arnoldi, else from a run that separates neighbouring waves. */
 static picket_status first_pair(search *s, const double complex *start, double complex *xi,
                                 double complex *right) {
   double complex *vector = PK_NEW(s->context, 4 * s->n, double complex);
@@ -89,21 +114,25 @@ static picket_status first_pair(search *s, const double complex *start, double c
   }
   pk_eigen_request request = {.n = 2 * s->n,
                               .wanted = 1,
-                              .basis = KRYLOV,
-                              .tolerance = 1e-9,
+                              .basis = ROUGH_KRYLOV,
+                              .restarts = 1,
+                              .tolerance = ROUGH,
                               .seed = START_SEED,
                               .start = start ? guess : NULL};
-  double complex theta;
-  int found = 0;
-  picket_status status =
-      pk_eigen_complex(s->context, &request, apply, s, &theta, vector, &found, NULL);
-  if (status == PICKET_OK && found == 0) {
+  bool found;
+  picket_status status = run_arnoldi(s, &request, vector, xi, &found);
+  if (status == PICKET_OK && !(found && cabs(*xi / s->phase.xi - 1) < NEXT_TO)) {
+    request.basis = KRYLOV;
+    request.restarts = 0;
+    request.tolerance = 1e-9;
+    status = run_arnoldi(s, &request, vector, xi, &found);
+  }
+  if (status == PICKET_OK && !found) {
     status =
         pk_fail(s->context, PICKET_ERROR_NUMERIC, "no Bloch wave near exp(ikΛ) = %g%+gi converged",
                 creal(s->phase.xi), cimag(s->phase.xi));
   }
   if (status == PICKET_OK) {
-    *xi = s->phase.xi + 1 / theta;
     memcpy(right, vector, (size_t)s->n * sizeof *right);
     scale_to_unit(s->n, right);
   }
@@ -154,10 +183,25 @@ static double residual_of(search *s, double complex xi, bool transposed, const d
   }
   double weight = 0;
   for (int64_t p = 0; p < s->n; p++) {
-    double m = cabs(mass[p] * x[p]);
-    weight += m * m;
+    double complex m = mass[p] * x[p];
+    weight += creal(m) * creal(m) + cimag(m) * cimag(m); /* cabs would be slow */
   }
   return pk_dense_norm((long)s->n, s->other) / (s->k0 * s->k0 * sqrt(weight));
+}
+
+/* The residual that is worth striving for: see RESIDUAL_GOAL. */
+static double residual_goal(const search *s, double complex *values) {
+  const pk_pattern *pattern = pk_operator_pattern(s->op);
+  const double complex *mass = pk_operator_mass(s->op);
+  double largest = 0; /* entry of T over the one of k0² B */
+  pk_operator_values(s->op, s->phase, s->k0 * s->k0, values);
+  for (int64_t p = 0; p < s->n; p++) {
+    for (int64_t e = pattern->start[p]; e < pattern->start[p + 1]; e++) {
+      double entry = fabs(creal(values[e])) + fabs(cimag(values[e]));
+      largest = fmax(largest, entry / (fabs(creal(mass[p])) * s->k0 * s->k0));
+    }
+  }
+  return fmin(fmax(RESIDUAL_GOAL, ROUNDINGS * DBL_EPSILON * largest), 0.1 * PK_RESIDUAL_LIMIT);
 }
 
 /* x - T(σ)⁻¹ T(ξ) x for either vector, of unit norm; T(ξ)x stands in s->other. */
@@ -181,7 +225,7 @@ static picket_status refine_right(search *s, double complex *values, pk_wave *wa
     wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
     wave->residual = residual_of(s, wave->xi, false, wave->right, values);
     bool stalled = wave->residual < STALLED && wave->residual > 0.5 * before;
-    if (wave->residual < RESIDUAL_GOAL || stalled) {
+    if (wave->residual < s->goal || stalled) {
       break;
     }
     before = wave->residual;
@@ -199,8 +243,9 @@ static picket_status inverse_step(search *s, double complex *left) {
   double complex sigma = s->phase.xi;
   pk_operator_backward_times(s->op, 1 / s->phase.chi, left, s->work);
   pk_operator_forward_times(s->op, 1 / s->phase.chi, left, s->other);
+  double complex inverse = 1 / (sigma * sigma);
   for (int64_t p = 0; p < s->n; p++) {
-    s->work[p] -= s->other[p] / (sigma * sigma);
+    s->work[p] -= inverse * s->other[p];
   }
   picket_status status = pk_factor_solve_transposed_complex(s->factor, s->work, left);
   if (status == PICKET_OK) {
@@ -209,12 +254,18 @@ static picket_status inverse_step(search *s, double complex *left) {
   return status;
 }
 
+static void conjugate(int64_t n, const double complex *x, double complex *y) {
+  for (int64_t p = 0; p < n; p++) {
+    y[p] = conj(x[p]);
+  }
+}
+
 /* The left vector by residual inverse iteration: each step gains the factor |ξ - σ| over the
  * distance to the next wave, so a shift that turned out to be far off is made anew near ξ. */
 static picket_status find_left(search *s, pk_solver *solver, double complex *values, pk_wave *wave,
                                double *residual) {
   *residual = residual_of(s, wave->xi, true, wave->left, values);
-  if (*residual < RESIDUAL_GOAL) {
+  if (*residual < s->goal) {
     return PICKET_OK; /* a lossless wave that does not decay: conj(right) */
   }
   picket_status status = PICKET_OK;
@@ -229,7 +280,7 @@ static picket_status find_left(search *s, pk_solver *solver, double complex *val
   for (int step = 0; status == PICKET_OK && step < REFINEMENTS; step++) {
     *residual = residual_of(s, wave->xi, true, wave->left, values);
     bool stalled = *residual<STALLED && * residual> 0.5 * before;
-    if (*residual < RESIDUAL_GOAL || stalled) {
+    if (*residual < s->goal || stalled) {
       break;
     }
     before = *residual;
@@ -243,15 +294,13 @@ static picket_status find_left(search *s, pk_solver *solver, double complex *val
  * residual only, which then bounds the left one: a second round has the true left vector and gains
  * the square. */
 static picket_status refine(search *s, pk_solver *solver, double complex *values, pk_wave *wave) {
-  for (int64_t p = 0; p < s->n; p++) {
-    wave->left[p] = conj(wave->right[p]);
-  }
+  conjugate(s->n, wave->right, wave->left);
   picket_status status = PICKET_OK;
   for (int round = 0; status == PICKET_OK && round < ROUNDS; round++) {
     double left = INFINITY;
     status = refine_right(s, values, wave);
-    for (int64_t p = 0; round == 0 && p < s->n; p++) {
-      wave->left[p] = conj(wave->right[p]);
+    if (round == 0) {
+      conjugate(s->n, wave->right, wave->left);
     }
     if (status == PICKET_OK) {
       status = find_left(s, solver, values, wave, &left);
@@ -259,7 +308,7 @@ static picket_status refine(search *s, pk_solver *solver, double complex *values
     if (status == PICKET_OK) {
       wave->xi = rayleigh(s, wave->left, wave->right, wave->xi, values);
       wave->residual = fmax(left, residual_of(s, wave->xi, false, wave->right, values));
-      if (wave->residual < ROUND_ENOUGH) {
+      if (wave->residual < ROUND_ENOUGH * s->goal) {
         break;
       }
     }
@@ -295,6 +344,7 @@ picket_status pk_wave_near(pk_solver *solver, pk_phase phase, double k0, double 
     status = pk_solver_factor(solver, s.phase, k0 * k0, &s.factor);
   }
   if (status == PICKET_OK) {
+    s.goal = residual_goal(&s, values);
     status = first_pair(&s, start, &wave.xi, wave.right);
   }
   if (status == PICKET_OK) {

@@ -142,7 +142,7 @@ static picket_status krylov_prepare(krylov *k, const pk_eigen_request *request) 
     return PICKET_ERROR_MEMORY;
   }
   k->iparam[0] = 1; /* exact shifts */
-  k->iparam[2] = MOST_RESTARTS;
+  k->iparam[2] = request->restarts > 0 ? request->restarts : MOST_RESTARTS;
   k->iparam[3] = 1; /* block size; the only one there is */
   k->iparam[6] = 1; /* mode 1: Op itself, standard inner product */
   set_start(k, request);

@@ -20,6 +20,7 @@ typedef struct pk_eigen_request {
   int64_t n;         /* order of the operator */
   int wanted;        /* 1 <= wanted <= n */
   int basis;         /* Krylov vectors; 0: max(20, 2 wanted + 1); never above n */
+  int restarts;      /* before the run stops with what has converged; 0: 100 */
   double tolerance;  /* relative, of the Ritz values; 0: 1e-10 */
   uint64_t seed;     /* of the start vector: same seed, same digits */
   const void *start; /* null, or n values of the operator's scalar: a guess of the eigenvector */
