@@ -7,15 +7,12 @@
 #include "study/index.h"
 
 #include <math.h>
-#include <string.h>
 
 #include "base/memory.h"
-#include "bloch/search.h"
 #include "study/branch.h"
 #include "study/converge.h"
 #include "study/estimate.h"
-#include "study/follow.h"
-#include "study/level.h"
+#include "study/look.h"
 #include "study/radiation.h"
 #include "study/study.h"
 
@@ -47,28 +44,10 @@ static const char NOTE_LOST[] = "the mode could not be followed from grid to gri
 static const char NOTE_NO_RADIATION[] = "the mode does not radiate";
 
 typedef struct index_study {
-  const pk_problem *problem;
-  pk_polarization polarization;
-  pk_survey survey;
-  double k0;
-  int count;
-  pk_followed *mode;
-  pk_branch *branch; /* [count] */
-  bool lossless;
+  pk_look look;
+  pk_branch *branch;            /* [count of the look] */
   pk_radiation_table radiation; /* of the last grid */
 } index_study;
-
-static pk_character_request character_request(const index_study *s) {
-  pk_character_request request = {.pitch_um = s->problem->cell.pitch_um, .k0 = s->k0};
-  request.phase = (pk_phase){1, 1, 0};
-  const pk_cell *cell = &s->problem->cell;
-  request.structure[0] = cell->lateral == PK_LATERAL_UNIFORM ? -1 : -0.5 * cell->span_um;
-  request.structure[1] = -request.structure[0];
-  if (cell->lateral == PK_LATERAL_OPEN) {
-    pk_geometry_extent(cell->geometry, PK_V, &request.structure[0], &request.structure[1]);
-  }
-  return request;
-}
 
 /* --- Values of a mode on a grid
  * -------------------------------------------------------------------- */
@@ -77,20 +56,20 @@ static pk_character_request character_request(const index_study *s) {
 static picket_status neighbour_at(index_study *s, pk_level *level, const pk_wave *wave,
                                   double complex slope, double k0, double *group,
                                   double complex *k) {
-  double pitch = s->problem->cell.pitch_um;
+  double pitch = s->look.problem->cell.pitch_um;
   picket_status status = pk_media_set(&level->media, k0, level->op);
   pk_wave other = {0};
-  double complex guess = wave->xi * cexp(I * slope * (k0 - s->k0) * pitch), dk = NAN;
+  double complex guess = wave->xi * cexp(I * slope * (k0 - s->look.k0) * pitch), dk = NAN;
   if (status == PICKET_OK) {
     status = pk_wave_near(level->solver, (pk_phase){1, 1, 0}, k0, guess, wave->right, &other);
   }
   if (status == PICKET_OK) {
     status = pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, k0, pitch,
-                           s->problem->cell.shift, &other, &dk);
+                           s->look.problem->cell.shift, &other, &dk);
     *group = creal(dk);
     *k = -I * clog(other.xi / wave->xi) / pitch; /* relative to the middle */
   }
-  pk_wave_clear(s->problem->context, &other);
+  pk_wave_clear(s->look.problem->context, &other);
   return status;
 }
 
@@ -98,21 +77,21 @@ static picket_status neighbour_at(index_study *s, pk_level *level, const pk_wave
  * with half the truncation error, so twice their distance bounds that of the first. */
 static picket_status dispersion(index_study *s, pk_level *level, const pk_wave *wave,
                                 double complex slope, double *value, double *error) {
-  double step = DISPERSION_STEP * s->k0, group[2];
+  double step = DISPERSION_STEP * s->look.k0, group[2];
   double complex k[2];
   for (int side = 0; side < 2; side++) {
-    picket_status status =
-        neighbour_at(s, level, wave, slope, s->k0 + (side ? step : -step), &group[side], &k[side]);
+    picket_status status = neighbour_at(s, level, wave, slope, s->look.k0 + (side ? step : -step),
+                                        &group[side], &k[side]);
     if (status != PICKET_OK) {
       return status;
     }
   }
   /* dn_g/dλ = -(k0²/2π) dn_g/dk0; 1 ps/µm² = 1e15/1e3... = 1e6 ps/(nm km). */
-  double factor = -s->k0 * s->k0 / (2 * PI) / SPEED_OF_LIGHT * 1e6;
+  double factor = -s->look.k0 * s->look.k0 / (2 * PI) / SPEED_OF_LIGHT * 1e6;
   *value = factor * (group[1] - group[0]) / (2 * step);
   double second = factor * creal(k[0] + k[1]) / (step * step);
   *error = 2 * fabs(*value - second);
-  picket_status status = pk_media_set(&level->media, s->k0, level->op);
+  picket_status status = pk_media_set(&level->media, s->look.k0, level->op);
   return status;
 }
 
@@ -126,62 +105,48 @@ static void loss_values(const pk_character *c, double *v) {
 
 static picket_status measure(index_study *s, pk_level *level, int i, const pk_wave *wave,
                              double *v) {
-  pk_followed *f = &s->mode[i];
+  pk_followed *f = &s->look.mode[i];
   double complex slope = NAN, k = f->character.k;
   double complex square = pk_branch_square(&s->branch[i], k);
   v[V_SQUARE] = creal(square);
   v[V_SQUARE_IM] = f->character.at_boundary ? 0 : cimag(square);
   loss_values(&f->character, v);
   picket_status status =
-      pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, s->k0, s->problem->cell.pitch_um,
-                    s->problem->cell.shift, wave, &slope);
+      pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, s->look.k0,
+                    s->look.problem->cell.pitch_um, s->look.problem->cell.shift, wave, &slope);
   v[V_PRODUCT] = pk_branch_product(&s->branch[i], k, slope);
   if (status == PICKET_OK && !f->character.at_boundary) {
     status = dispersion(s, level, wave, slope, &v[V_DISPERSION], &f->dispersion_error);
   }
   if (status == PICKET_ERROR_NUMERIC || status == PICKET_ERROR_NO_MODE) {
     /* Too near an edge, or a slab is cut off beside: no value. */
-    pk_message_clear(s->problem->context);
+    pk_message_clear(s->look.problem->context);
     v[V_DISPERSION] = NAN;
-    status = pk_media_set(&level->media, s->k0, level->op);
+    status = pk_media_set(&level->media, s->look.k0, level->op);
   }
   return status;
 }
 
-/* Inside a stop band both main harmonics weigh the same, and a grid may put the edge on the other
- * side of the wavelength: then the nodes must do. */
-static bool same_mode(const pk_character *a, const pk_character *b) {
-  return a->nodes == b->nodes && (a->harmonic == b->harmonic || a->at_boundary || b->at_boundary);
-}
-
 static picket_status follow(index_study *s, pk_level *level, int i, double *v) {
-  picket_context *context = s->problem->context;
-  pk_followed *f = &s->mode[i];
+  picket_context *context = s->look.problem->context;
+  pk_followed *f = &s->look.mode[i];
   for (int q = 0; q < VALUES; q++) {
     v[q] = NAN;
   }
-  double complex *start = pk_follow_prolonged(context, level->op, f);
-  if (!start) {
-    return PICKET_ERROR_MEMORY;
-  }
   pk_wave wave = {0};
   pk_character character;
-  pk_character_request request = character_request(s);
-  picket_status status =
-      pk_wave_near(level->solver, (pk_phase){1, 1, 0}, s->k0, f->xi, start, &wave);
-  pk_free(context, start);
-  if (status == PICKET_OK) {
-    status = pk_character_of(context, level->op, &request, &wave, &character);
-  }
-  if (status == PICKET_OK && same_mode(&f->character, &character)) {
+  bool same = false;
+  picket_status status = pk_look_follow(&s->look, level, f, &wave, &character, &same);
+  if (status == PICKET_OK && same) {
     f->character = character;
     status = pk_follow_remember(context, level->op, &wave, f);
     if (status == PICKET_OK) {
       status = measure(s, level, i, &wave, v);
     }
     if (status == PICKET_OK) {
-      status = pk_radiation_take(context, level->op, &request, &s->survey, &wave, f->character.k,
-                                 f->order, &s->radiation);
+      pk_character_request request = pk_look_request(&s->look);
+      status = pk_radiation_take(context, level->op, &request, &s->look.survey, &wave,
+                                 f->character.k, f->order, &s->radiation);
     }
   } else if (status == PICKET_ERROR_NUMERIC) {
     pk_log(context, PICKET_LOG_DETAIL, "mode %d: %s", f->order, picket_context_message(context));
@@ -192,111 +157,17 @@ static picket_status follow(index_study *s, pk_level *level, int i, double *v) {
   return status;
 }
 
-/* The permittivities at the wavelength, or the message of the material that is not known there. */
-static picket_status set_media(index_study *s, pk_level *level) {
-  double wavelength = 2 * PI / s->k0;
-  s->lossless = true;
-  for (int m = 0; m < level->media.count; m++) {
-    if (level->media.used[m]) {
-      pk_medium medium;
-      picket_status status =
-          pk_materials_at(s->problem->materials, m, wavelength, s->problem->temperature_c, &medium);
-      if (status != PICKET_OK) {
-        return status;
-      }
-      s->lossless = s->lossless && cimag(medium.permittivity) == 0;
-    }
-  }
-  return pk_media_set(&level->media, s->k0, level->op);
-}
-
 static picket_status sample(void *user, const pk_cell_grid *base, int m, double *values) {
   index_study *s = user;
   pk_level level;
-  picket_status status = pk_level_open(s->problem, s->polarization, base, m, &level);
+  picket_status status = pk_look_open(&s->look, base, m, &level);
   if (status != PICKET_OK) {
     return status;
   }
-  status = set_media(s, &level);
-  for (int i = 0; status == PICKET_OK && i < s->count; i++) {
+  for (int i = 0; status == PICKET_OK && i < s->look.count; i++) {
     status = follow(s, &level, i, values + i * VALUES);
   }
   pk_level_close(&level);
-  return status;
-}
-
-/* --- The first look
- * -------------------------------------------------------------------------------- */
-
-static picket_status keep_found(index_study *s, const pk_level *level, int count,
-                                const pk_found_wave *found) {
-  picket_status status = PICKET_OK;
-  for (int i = 0; status == PICKET_OK && i < count; i++) {
-    pk_followed *f = &s->mode[i];
-    f->order = found[i].order;
-    f->character = found[i].character;
-    s->branch[i] = pk_branch_of(f->character.k, s->problem->cell.pitch_um);
-    status = pk_follow_remember(s->problem->context, level->op, &found[i].wave, f);
-    s->count = i + 1;
-  }
-  return status;
-}
-
-static picket_status look_on(index_study *s, const pk_cell_grid *base, int wanted) {
-  pk_level level;
-  picket_context *context = s->problem->context;
-  picket_status status = pk_level_open(s->problem, s->polarization, base, 2, &level);
-  if (status != PICKET_OK) {
-    return status;
-  }
-  pk_found_wave *found = PK_NEW(context, wanted, pk_found_wave);
-  int count = 0;
-  status = found ? set_media(s, &level) : PICKET_ERROR_MEMORY;
-  if (status == PICKET_OK) {
-    pk_character_request request = character_request(s);
-    status = pk_wave_search(level.solver, &request, wanted, found, &count);
-  }
-  if (status == PICKET_OK) {
-    status = keep_found(s, &level, count, found);
-  }
-  pk_found_waves_clear(context, found ? count : 0, found);
-  pk_free(context, found);
-  pk_level_close(&level);
-  return status;
-}
-
-/* Sides are prepared for the mode that reaches farthest; a side needs a layer if any mode radiates
- * there. */
-static void prepare_sides(index_study *s, double accuracy) {
-  pk_survey worst = s->survey;
-  for (int i = 0; i < s->count; i++) {
-    pk_survey one = s->survey;
-    pk_survey_open_sides(&one, creal(s->mode[i].character.k), s->k0, accuracy);
-    for (int side = 0; side < 2; side++) {
-      if (i == 0 || one.decay_um[side] > worst.decay_um[side]) {
-        worst.decay_um[side] = one.decay_um[side];
-      }
-      if (i == 0 || one.layer[side].thickness > worst.layer[side].thickness) {
-        worst.layer[side] = one.layer[side];
-      }
-    }
-    if (i == 0 || (one.outer_step_um > 0 && one.outer_step_um < worst.outer_step_um) ||
-        worst.outer_step_um == 0) {
-      worst.outer_step_um = one.outer_step_um;
-    }
-  }
-  s->survey = worst;
-}
-
-static picket_status first_look(index_study *s, int wanted) {
-  pk_cell_grid base;
-  pk_lay_plan plan = {.reach = 1, .mirror = false, .zero_walls = true};
-  pk_survey_absorb(&s->survey, s->k0);
-  picket_status status = pk_survey_lay(&s->survey, &plan, &base);
-  if (status == PICKET_OK) {
-    status = look_on(s, &base, wanted);
-    pk_cell_grid_clear(s->problem->context, &base);
-  }
   return status;
 }
 
@@ -320,13 +191,13 @@ static picket_regime regime_of(const index_study *s, const pk_followed *f, bool 
   if (pk_radiation_has_grating_order(&s->radiation, f->order)) {
     return PICKET_REGIME_RADIATING;
   }
-  bool below = fabs(creal(f->character.k)) * s->problem->cell.pitch_um < PI;
+  bool below = fabs(creal(f->character.k)) * s->look.problem->cell.pitch_um < PI;
   return below ? PICKET_REGIME_SUBWAVELENGTH : PICKET_REGIME_UNKNOWN;
 }
 
 /* Nothing absorbs, nothing radiates, nothing reflects. */
 static bool is_lossless(const index_study *s, const pk_followed *f) {
-  return s->lossless && !f->character.at_boundary &&
+  return s->look.lossless && !f->character.at_boundary &&
          pk_radiation_count(&s->radiation, f->order) == 0;
 }
 
@@ -343,12 +214,12 @@ static void divide_loss(const index_study *s, const pk_followed *f, bool stopped
                         picket_quantity *radiated) {
   picket_quantity zero = {0, 0, NULL};
   if (is_lossless(s, f) && !stopped) {
-    zero.uncertainty = fabs(decay->value) + 1e-12 * s->k0;
+    zero.uncertainty = fabs(decay->value) + 1e-12 * s->look.k0;
     *decay = *absorbed = *radiated = zero;
     return;
   }
   bool open_channel = pk_radiation_count(&s->radiation, f->order) > 0;
-  if (s->lossless) {
+  if (s->look.lossless) {
     part = zero;
   } else if (!open_channel) {
     part = (picket_quantity){1, 0, NULL};
@@ -365,7 +236,7 @@ static void divide_loss(const index_study *s, const pk_followed *f, bool stopped
 }
 
 static picket_status fill_mode(index_study *s, int i, picket_quantity *q, picket_bloch_mode *mode) {
-  const pk_followed *f = &s->mode[i];
+  const pk_followed *f = &s->look.mode[i];
   double decibel = DECIBEL_PER_NEPER * UM_PER_CM;
   for (int v = 0; v < VALUES; v++) {
     if (isnan(q[v].value) && !q[v].note) {
@@ -377,30 +248,27 @@ static picket_status fill_mode(index_study *s, int i, picket_quantity *q, picket
   bool stopped = is_stopped(&q[V_SQUARE], &q[V_SQUARE_IM]);
   divide_loss(s, f, stopped, q[V_ABSORBED], &decay, &absorbed, &radiated);
   mode->order = f->order;
-  mode->bloch_index = scaled(k, 1 / s->k0);
+  mode->bloch_index = scaled(k, 1 / s->look.k0);
   mode->group_index = f->character.at_boundary ? absent(NOTE_STOP_BAND)
                                                : pk_branch_group_index(q[V_PRODUCT], q[V_SQUARE]);
   mode->dispersion_ps_per_nm_km =
       f->character.at_boundary ? absent(NOTE_STOP_BAND) : q[V_DISPERSION];
   mode->dispersion_ps_per_nm_km.uncertainty += f->dispersion_error;
   mode->loss_db_per_cm = scaled(decay, decibel);
-  mode->loss_db_per_pitch = scaled(decay, DECIBEL_PER_NEPER * s->problem->cell.pitch_um);
+  mode->loss_db_per_pitch = scaled(decay, DECIBEL_PER_NEPER * s->look.problem->cell.pitch_um);
   mode->absorption_db_per_cm = scaled(absorbed, decibel);
   mode->radiation_db_per_cm = scaled(radiated, decibel);
   mode->radiation_per_mm = scaled(radiated, 2e3);
   bool radiates = pk_radiation_count(&s->radiation, f->order) > 0;
   mode->upward_share = radiates ? q[V_UPWARD] : absent(NOTE_NO_RADIATION);
   mode->regime = regime_of(s, f, stopped);
-  return pk_radiation_fill(s->problem->context, &s->radiation, f->order, mode);
+  return pk_radiation_fill(s->look.problem->context, &s->radiation, f->order, mode);
 }
 
-static void index_clear(index_study *s) {
-  for (int i = 0; s->mode && i < s->count; i++) {
-    pk_follow_forget(s->problem->context, &s->mode[i]);
-  }
-  pk_free(s->problem->context, s->mode);
-  pk_free(s->problem->context, s->branch);
-  pk_radiation_clear(s->problem->context, &s->radiation);
+static void index_clear(picket_context *context, index_study *s) {
+  pk_look_clear(&s->look);
+  pk_free(context, s->branch);
+  pk_radiation_clear(context, &s->radiation);
 }
 
 /* Index and group index meet the accuracy asked; a loss is a small difference of large numbers and
@@ -413,7 +281,7 @@ static double allowed_of(const pk_converge_request *request, const picket_quanti
     case V_SQUARE: return pk_branch_allowed(&s->branch[mode], q[i].value, accuracy);
     case V_PRODUCT: return accuracy * fabs(q[i].value);
     case V_SQUARE_IM:
-      return is_lossless(s, &s->mode[mode]) || s->mode[mode].character.at_boundary
+      return is_lossless(s, &s->look.mode[mode]) || s->look.mode[mode].character.at_boundary
                  ? INFINITY
                  : fmax(LOSS_ACCURACY, accuracy) * fabs(q[i].value);
     default: return INFINITY;
@@ -422,23 +290,23 @@ static double allowed_of(const pk_converge_request *request, const picket_quanti
 
 static picket_status converge_modes(index_study *s, const picket_options *options,
                                     picket_index_point *point, picket_result *result) {
-  picket_context *context = s->problem->context;
-  picket_quantity *q = PK_NEW(context, s->count * VALUES, picket_quantity);
-  picket_bloch_mode *modes = PK_NEW(context, s->count, picket_bloch_mode);
+  picket_context *context = s->look.problem->context;
+  picket_quantity *q = PK_NEW(context, s->look.count * VALUES, picket_quantity);
+  picket_bloch_mode *modes = PK_NEW(context, s->look.count, picket_bloch_mode);
   picket_status status = q && modes ? PICKET_OK : PICKET_ERROR_MEMORY;
   point->modes = modes;
   if (status == PICKET_OK) {
     pk_converge_request request = {
-        .survey = &s->survey,
-        .count = s->count * VALUES,
+        .survey = &s->look.survey,
+        .count = s->look.count * VALUES,
         .sample = sample,
         .user = s,
         .options = options,
-        .phase = s->polarization == PK_EY ? "Bloch index, ey" : "Bloch index, hy",
+        .phase = s->look.polarization == PK_EY ? "Bloch index, ey" : "Bloch index, hy",
         .allowed = allowed_of};
     status = pk_converge(&request, q, result);
   }
-  for (int i = 0; status == PICKET_OK && i < s->count; i++) {
+  for (int i = 0; status == PICKET_OK && i < s->look.count; i++) {
     status = fill_mode(s, i, q + i * VALUES, &modes[i]);
     point->mode_count = i + 1;
   }
@@ -451,32 +319,26 @@ static const char NOTE_NO_MODE[] = "the cell has no Bloch mode at this wavelengt
 picket_status pk_index_point(const pk_problem *problem, pk_polarization polarization,
                              double wavelength_um, const picket_options *options,
                              picket_index_point *point, picket_result *result) {
-  index_study s = {.problem = problem, .polarization = polarization, .k0 = 2 * PI / wavelength_um};
+  index_study s = {0};
   int wanted = options->count > 0 ? (int)options->count : 1;
   point->wavelength_um = wavelength_um;
-  if (problem->cell.shift != 0) {
-    return pk_fail(
-        problem->context, PICKET_ERROR_UNSUPPORTED,
-        "cell.lateral_shift is %g, must be 0 for a Bloch index: describe the straight cell "
-        "of several rows",
-        problem->cell.shift);
-  }
   picket_status status = pk_estimated_index(problem, polarization, wavelength_um, &point->estimate);
   if (status == PICKET_OK) {
-    status = pk_survey_take(problem, polarization, &s.survey);
+    status = pk_look_take(problem, polarization, wavelength_um, wanted, options->accuracy, &s.look);
   }
   if (status == PICKET_OK) {
-    s.mode = PK_NEW(problem->context, wanted, pk_followed);
     s.branch = PK_NEW(problem->context, wanted, pk_branch);
-    status = s.mode && s.branch ? first_look(&s, wanted) : PICKET_ERROR_MEMORY;
+    status = s.branch ? PICKET_OK : PICKET_ERROR_MEMORY;
   }
-  if (status == PICKET_OK && s.count == 0) {
+  if (status == PICKET_OK && s.look.count == 0) {
     point->note = NOTE_NO_MODE;
   } else if (status == PICKET_OK) {
-    prepare_sides(&s, options->accuracy);
+    for (int i = 0; i < s.look.count; i++) {
+      s.branch[i] = pk_branch_of(s.look.mode[i].character.k, problem->cell.pitch_um);
+    }
     status = converge_modes(&s, options, point, result);
   }
-  index_clear(&s);
+  index_clear(problem->context, &s);
   return status;
 }
 

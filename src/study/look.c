@@ -1,0 +1,192 @@
+/* See look.h. */
+#include "study/look.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "base/memory.h"
+#include "bloch/search.h"
+
+static const double PI = 3.141592653589793238;
+
+pk_character_request pk_look_request(const pk_look *look) {
+  const pk_cell *cell = &look->problem->cell;
+  pk_character_request request = {.pitch_um = cell->pitch_um, .k0 = look->k0};
+  request.phase = (pk_phase){1, 1, 0};
+  request.structure[0] = cell->lateral == PK_LATERAL_UNIFORM ? -1 : -0.5 * cell->span_um;
+  request.structure[1] = -request.structure[0];
+  if (cell->lateral == PK_LATERAL_OPEN) {
+    pk_geometry_extent(cell->geometry, PK_V, &request.structure[0], &request.structure[1]);
+  }
+  return request;
+}
+
+/* The permittivities at the wavelength, or the message of the material that is not known there. */
+static picket_status set_media(pk_look *look, pk_level *level) {
+  double wavelength = 2 * PI / look->k0;
+  look->lossless = true;
+  for (int m = 0; m < level->media.count; m++) {
+    if (level->media.used[m]) {
+      pk_medium medium;
+      picket_status status = pk_materials_at(look->problem->materials, m, wavelength,
+                                             look->problem->temperature_c, &medium);
+      if (status != PICKET_OK) {
+        return status;
+      }
+      look->lossless = look->lossless && cimag(medium.permittivity) == 0;
+    }
+  }
+  return pk_media_set(&level->media, look->k0, level->op);
+}
+
+picket_status pk_look_open(pk_look *look, const pk_cell_grid *base, int m, pk_level *out) {
+  pk_level level;
+  picket_status status = pk_level_open(look->problem, look->polarization, base, m, &level);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  status = set_media(look, &level);
+  if (status != PICKET_OK) {
+    pk_level_close(&level);
+    return status;
+  }
+  *out = level;
+  return PICKET_OK;
+}
+
+static picket_status keep_found(pk_look *look, const pk_level *level, int count,
+                                const pk_found_wave *found) {
+  picket_status status = PICKET_OK;
+  for (int i = 0; status == PICKET_OK && i < count; i++) {
+    pk_followed *f = &look->mode[i];
+    f->order = found[i].order;
+    f->character = found[i].character;
+    status = pk_follow_remember(look->problem->context, level->op, &found[i].wave, f);
+    look->count = i + 1;
+  }
+  return status;
+}
+
+static picket_status look_on(pk_look *look, const pk_cell_grid *base, int wanted) {
+  pk_level level;
+  picket_context *context = look->problem->context;
+  picket_status status = pk_look_open(look, base, 2, &level);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  pk_found_wave *found = PK_NEW(context, wanted, pk_found_wave);
+  int count = 0;
+  status = found ? PICKET_OK : PICKET_ERROR_MEMORY;
+  if (status == PICKET_OK) {
+    pk_character_request request = pk_look_request(look);
+    status = pk_wave_search(level.solver, &request, wanted, found, &count);
+  }
+  if (status == PICKET_OK) {
+    status = keep_found(look, &level, count, found);
+  }
+  pk_found_waves_clear(context, found ? count : 0, found);
+  pk_free(context, found);
+  pk_level_close(&level);
+  return status;
+}
+
+/* Sides are prepared for the mode that reaches farthest; a side needs a layer if any mode radiates
+ * there. */
+static void prepare_sides(pk_look *look, double accuracy) {
+  pk_survey worst = look->survey;
+  for (int i = 0; i < look->count; i++) {
+    pk_survey one = look->survey;
+    pk_survey_open_sides(&one, creal(look->mode[i].character.k), look->k0, accuracy);
+    for (int side = 0; side < 2; side++) {
+      if (i == 0 || one.decay_um[side] > worst.decay_um[side]) {
+        worst.decay_um[side] = one.decay_um[side];
+      }
+      if (i == 0 || one.layer[side].thickness > worst.layer[side].thickness) {
+        worst.layer[side] = one.layer[side];
+      }
+    }
+    if (i == 0 || (one.outer_step_um > 0 && one.outer_step_um < worst.outer_step_um) ||
+        worst.outer_step_um == 0) {
+      worst.outer_step_um = one.outer_step_um;
+    }
+  }
+  look->survey = worst;
+}
+
+static picket_status first_look(pk_look *look, int wanted) {
+  pk_cell_grid base;
+  pk_lay_plan plan = {.reach = 1, .mirror = false, .zero_walls = true};
+  pk_survey_absorb(&look->survey, look->k0);
+  picket_status status = pk_survey_lay(&look->survey, &plan, &base);
+  if (status == PICKET_OK) {
+    status = look_on(look, &base, wanted);
+    pk_cell_grid_clear(look->problem->context, &base);
+  }
+  return status;
+}
+
+picket_status pk_look_take(const pk_problem *problem, pk_polarization polarization,
+                           double wavelength_um, int wanted, double accuracy, pk_look *out) {
+  pk_look look = {.problem = problem, .polarization = polarization, .k0 = 2 * PI / wavelength_um};
+  if (problem->cell.shift != 0) {
+    return pk_fail(
+        problem->context, PICKET_ERROR_UNSUPPORTED,
+        "cell.lateral_shift is %g, must be 0 for a Bloch index: describe the straight cell "
+        "of several rows",
+        problem->cell.shift);
+  }
+  picket_status status = pk_survey_take(problem, polarization, &look.survey);
+  if (status == PICKET_OK) {
+    look.mode = PK_NEW(problem->context, wanted, pk_followed);
+    status = look.mode ? first_look(&look, wanted) : PICKET_ERROR_MEMORY;
+  }
+  if (status != PICKET_OK) {
+    pk_look_clear(&look);
+    return status;
+  }
+  prepare_sides(&look, accuracy);
+  *out = look;
+  return PICKET_OK;
+}
+
+void pk_look_clear(pk_look *look) {
+  if (look->problem) {
+    for (int i = 0; look->mode && i < look->count; i++) {
+      pk_follow_forget(look->problem->context, &look->mode[i]);
+    }
+    pk_free(look->problem->context, look->mode);
+  }
+  memset(look, 0, sizeof *look);
+}
+
+/* Inside a stop band both main harmonics weigh the same, and a grid may put the edge on the other
+ * side of the wavelength: then the nodes must do. */
+static bool same_mode(const pk_character *a, const pk_character *b) {
+  return a->nodes == b->nodes && (a->harmonic == b->harmonic || a->at_boundary || b->at_boundary);
+}
+
+picket_status pk_look_follow(const pk_look *look, pk_level *level, const pk_followed *mode,
+                             pk_wave *wave, pk_character *character, bool *same) {
+  picket_context *context = look->problem->context;
+  double complex *start = pk_follow_prolonged(context, level->op, mode);
+  if (!start) {
+    return PICKET_ERROR_MEMORY;
+  }
+  pk_wave found = {0};
+  pk_character c;
+  pk_character_request request = pk_look_request(look);
+  picket_status status =
+      pk_wave_near(level->solver, (pk_phase){1, 1, 0}, look->k0, mode->xi, start, &found);
+  pk_free(context, start);
+  if (status == PICKET_OK) {
+    status = pk_character_of(context, level->op, &request, &found, &c);
+  }
+  if (status != PICKET_OK) {
+    pk_wave_clear(context, &found);
+    return status;
+  }
+  *wave = found;
+  *character = c;
+  *same = same_mode(&mode->character, &c);
+  return PICKET_OK;
+}
