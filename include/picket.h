@@ -5,7 +5,9 @@
 
 #include <picket/bands.h>
 #include <picket/context.h>
+#include <picket/derivative.h>
 #include <picket/edges.h>
+#include <picket/field.h>
 #include <picket/index.h>
 #include <picket/options.h>
 #include <picket/problem.h>

@@ -260,6 +260,35 @@ picket_status pk_axis_divide(picket_context *context, const pk_axis *base, int m
   return PICKET_OK;
 }
 
+static double moved_place(int count, const double *marks, const double *moved, double s) {
+  if (s <= marks[0]) {
+    return s + moved[0] - marks[0];
+  }
+  for (int i = 0; i + 1 < count; i++) {
+    if (s <= marks[i + 1]) {
+      double part = (s - marks[i]) / (marks[i + 1] - marks[i]);
+      return moved[i] + part * (moved[i + 1] - moved[i]);
+    }
+  }
+  return s + moved[count - 1] - marks[count - 1];
+}
+
+picket_status pk_axis_move(picket_context *context, const pk_axis *axis, int count,
+                           const double *marks, const double *moved, pk_axis *out) {
+  pk_axis copy = {.low = axis->low, .high = axis->high, .layer = {axis->layer[0], axis->layer[1]}};
+  picket_status status = axis_allocate(context, axis->intervals, &copy);
+  if (status != PICKET_OK) {
+    pk_axis_clear(context, &copy);
+    return status;
+  }
+  for (int i = 0; i <= axis->intervals; i++) {
+    copy.line[i] = moved_place(count, marks, moved, axis->line[i]);
+  }
+  axis_lengths(&copy);
+  *out = copy;
+  return PICKET_OK;
+}
+
 void pk_axis_clear(picket_context *context, pk_axis *axis) {
   pk_free(context, axis->line);
   pk_free(context, axis->length);

@@ -61,6 +61,11 @@ picket_status pk_axis_lay_repeated(picket_context *context, const pk_axis_wish *
 /* The member m of the family of a base axis. */
 picket_status pk_axis_divide(picket_context *context, const pk_axis *base, int m, pk_axis *out);
 
+/* The axis with each line moved by the piecewise linear map that takes marks[i] to moved[i] (both
+ * rising, at least 1); beyond the outermost marks lines are shifted rigidly. */
+picket_status pk_axis_move(picket_context *context, const pk_axis *axis, int count,
+                           const double *marks, const double *moved, pk_axis *out);
+
 /* Frees the arrays; accepts an axis of zeros. */
 void pk_axis_clear(picket_context *context, pk_axis *axis);
 

@@ -34,6 +34,13 @@ picket_status pk_cell_grid_lay(picket_context *context, const pk_cell *cell,
 /* Member m of the family. */
 picket_status pk_cell_grid_divide(picket_context *context, const pk_cell_grid *base, int m,
                                   pk_cell_grid *out);
+/* The base grid moved with the geometry: the same intervals, with every line on an interface at the
+ * place of that interface in `to`, and the lines between in proportion; outer walls and layers keep
+ * their distance from the structure. PICKET_ERROR_UNSUPPORTED when the two cells do not have the
+ * same interfaces (a value at which shapes begin to touch, for example). */
+picket_status pk_cell_grid_move(picket_context *context, const pk_cell_grid *base,
+                                const pk_cell *from, const pk_cell *to, pk_cell_grid *out);
+
 void pk_cell_grid_clear(picket_context *context, pk_cell_grid *grid);
 
 #endif

@@ -4,6 +4,7 @@
 #include <stdio.h>
 #include <string.h>
 
+#include "base/hash.h"
 #include "base/memory.h"
 #include "io/document_private.h"
 #include "io/text.h"
@@ -107,6 +108,10 @@ pk_path_text pk_node_path(const pk_node *node) {
   }
   memcpy(path.text, buffer + start, sizeof buffer - start);
   return path;
+}
+
+picket_context *pk_document_context(const pk_document *document) {
+  return document->context;
 }
 
 const pk_node *pk_document_root(const pk_document *document) {
@@ -225,4 +230,21 @@ picket_status pk_document_read_file(picket_context *context, const char *path, p
   }
   pk_free(context, text);
   return status;
+}
+
+static uint64_t hash_node(uint64_t hash, const pk_node *node) {
+  /* An empty text differs from none, a list from a map, and the end of a block from its start. */
+  const char marks[2] = {(char)node->kind, (char)node->quoted};
+  hash = pk_hash_bytes(hash, marks, sizeof marks);
+  hash = pk_hash_text(hash, node->key ? node->key : "");
+  hash = pk_hash_text(hash, node->text ? node->text : "");
+  hash = pk_hash_bytes(hash, &node->count, sizeof node->count);
+  for (const pk_node *child = node->first; child; child = child->next) {
+    hash = hash_node(hash, child);
+  }
+  return hash;
+}
+
+uint64_t pk_document_hash(const pk_document *document) {
+  return hash_node(PK_HASH_START, document->root);
 }

@@ -7,6 +7,7 @@
 
 #include <stdbool.h>
 #include <stddef.h>
+#include <stdint.h>
 
 #include "base/context.h"
 
@@ -48,8 +49,17 @@ picket_status pk_document_read_text(picket_context *context, const char *text, s
 picket_status pk_document_set(pk_document *document, const char *label, const char *path,
                               const char *value);
 
+/* The node at a dotted path, as pk_document_set walks it.
+ * PICKET_ERROR_INPUT if the path is malformed or leads to nothing. */
+picket_status pk_document_find(pk_document *document, const char *path, pk_node **out);
+
 void pk_document_free(pk_document *document); /* accepts null */
 
+/* A fingerprint of what a document says: keys and values in their order, with what was set; not
+ * comments, layout or the names of files it came from. */
+uint64_t pk_document_hash(const pk_document *document);
+
+picket_context *pk_document_context(const pk_document *document);
 const pk_node *pk_document_root(const pk_document *document);
 /* Where files named in the document are looked for: ends with '/', or "". */
 const char *pk_document_folder(const pk_document *document);

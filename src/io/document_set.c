@@ -195,3 +195,24 @@ done:
   pk_free(context, s.pieces);
   return status;
 }
+
+picket_status pk_document_find(pk_document *document, const char *path, pk_node **out) {
+  setter s = {.context = document->context, .document = document, .path = path};
+  s.pieces = pk_text_copy(s.context, path);
+  if (!s.pieces) {
+    return PICKET_ERROR_MEMORY;
+  }
+  picket_status status = split(&s);
+  if (status == PICKET_OK) {
+    status = walk(&s);
+  }
+  if (status == PICKET_OK && s.used < s.count) {
+    status = pk_fail(s.context, PICKET_ERROR_INPUT, "path \"%s\" leads to no value of the problem",
+                     pk_text_shown(path).text);
+  }
+  if (status == PICKET_OK) {
+    *out = s.at;
+  }
+  pk_free(s.context, s.pieces);
+  return status;
+}

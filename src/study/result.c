@@ -1,7 +1,12 @@
 /* See result.h. */
 #include "study/result.h"
 
+#include <string.h>
+
 #include "base/memory.h"
+#include "study/index.h"
+
+enum { FIRST_TEXTS = 16 };
 
 picket_status pk_result_create(picket_context *context, pk_result_kind kind, const char *name,
                                double accuracy, picket_result **out) {
@@ -20,6 +25,29 @@ picket_status pk_result_create(picket_context *context, pk_result_kind kind, con
   }
   *out = result;
   return PICKET_OK;
+}
+
+const char *pk_result_text(picket_result *result, const char *text) {
+  for (int i = 0; i < result->text_count; i++) {
+    if (strcmp(result->texts[i], text) == 0) {
+      return result->texts[i];
+    }
+  }
+  if (result->text_count == result->text_capacity) {
+    int capacity = 2 * result->text_capacity + FIRST_TEXTS;
+    char **larger = pk_regrow(result->context, result->texts, (size_t)result->text_count,
+                              (size_t)capacity, sizeof *larger);
+    if (!larger) {
+      return NULL;
+    }
+    result->texts = larger;
+    result->text_capacity = capacity;
+  }
+  char *copy = pk_text_copy(result->context, text);
+  if (copy) {
+    result->texts[result->text_count++] = copy;
+  }
+  return copy;
 }
 
 static void free_edges(picket_context *context, int count, picket_edges_answer *answers) {
@@ -51,6 +79,30 @@ static void free_slab(picket_context *context, int count, picket_slab_answer *an
   pk_free(context, answers);
 }
 
+static void free_index(picket_context *context, int count, picket_index_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    picket_index_point *points = (picket_index_point *)answers[i].points;
+    for (int p = 0; points && p < answers[i].point_count; p++) {
+      pk_index_point_clear(context, &points[p]);
+    }
+    pk_free(context, points);
+  }
+  pk_free(context, answers);
+}
+
+static void free_derivatives(picket_result *result) {
+  for (int i = 0; i < result->count; i++) {
+    if (result->edge_derivatives) {
+      pk_free(result->context, (void *)result->edge_derivatives[i].bands);
+    }
+    if (result->index_derivatives) {
+      pk_free(result->context, (void *)result->index_derivatives[i].points);
+    }
+  }
+  pk_free(result->context, result->edge_derivatives);
+  pk_free(result->context, result->index_derivatives);
+}
+
 static void free_summary(picket_result *result) {
   for (int i = 0; i < result->count; i++) {
     if (result->summary) {
@@ -74,7 +126,13 @@ void pk_result_free(picket_result *result) {
   free_edges(context, result->count, result->edges);
   free_bands(context, result->count, result->bands);
   free_slab(context, result->count, result->slab);
+  free_index(context, result->count, result->index);
+  free_derivatives(result);
   free_summary(result);
+  for (int i = 0; i < result->text_count; i++) {
+    pk_free(context, result->texts[i]);
+  }
+  pk_free(context, result->texts);
   pk_free(context, result->name);
   pk_free(context, result->shortfall);
   pk_free(context, result->json);

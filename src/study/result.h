@@ -4,6 +4,7 @@
 #define PK_STUDY_RESULT_H
 
 #include <picket/bands.h>
+#include <picket/derivative.h>
 #include <picket/edges.h>
 #include <picket/index.h>
 #include <picket/slab.h>
@@ -15,6 +16,8 @@ typedef enum pk_result_kind {
   PK_RESULT_BANDS,
   PK_RESULT_SLAB,
   PK_RESULT_INDEX,
+  PK_RESULT_EDGE_DERIVATIVES,
+  PK_RESULT_INDEX_DERIVATIVES,
   PK_RESULT_SUMMARY
 } pk_result_kind;
 
@@ -38,14 +41,21 @@ struct picket_result {
   picket_bands_answer *bands;
   picket_slab_answer *slab;
   picket_index_answer *index;
+  picket_edge_derivatives *edge_derivatives;
+  picket_index_derivatives *index_derivatives;
   pk_summary_item *summary;
   char *json, *csv; /* made when first asked for */
   char **lines;     /* of a summary, for people; [count], or null */
+  char **texts;     /* notes that are not static, each once */
+  int text_count, text_capacity;
 };
 
 /* An empty result of a kind, complete, with the name copied. */
 picket_status pk_result_create(picket_context *context, pk_result_kind kind, const char *name,
                                double accuracy, picket_result **out);
+
+/* The result's own copy of a text, made at its first use; null when memory is out. */
+const char *pk_result_text(picket_result *result, const char *text);
 
 /* Accepts null and half-built results. */
 void pk_result_free(picket_result *result);

@@ -1,0 +1,103 @@
+/* See picket/derivative.h. */
+#include <math.h>
+#include <string.h>
+
+#include "api/border.h"
+#include "api/problem_private.h"
+#include "io/vary.h"
+#include "study/derivative.h"
+
+/* Step of a value, as a part of its size: the operator is smooth, so the error of the central
+ * difference is of the order of the square, 1e-8, and rounding of the order of 1e-12 over it. */
+static const double STEP = 1e-4;
+
+/* A value near zero (a position, a temperature) has no size of its own: by its unit. */
+static double size_of(const char *path, double value) {
+  size_t length = strlen(path);
+  bool is_length = length > 3 && strcmp(path + length - 3, "_nm") == 0;
+  bool is_temperature = strcmp(path, "temperature_c") == 0;
+  bool in_list = length > 0 && path[length - 1] >= '0' && path[length - 1] <= '9';
+  return fmax(fabs(value), is_length || is_temperature || in_list ? 100 : 1);
+}
+
+typedef picket_status (*derivative_study)(const pk_variation *variation,
+                                          const picket_options *options, picket_result **out);
+
+static picket_status run(picket_problem *problem, const char *path, const picket_options *options,
+                         const pk_problem *understood, derivative_study study,
+                         picket_result **out) {
+  picket_context *context = problem->context;
+  pk_node *node = NULL;
+  double value = 0;
+  picket_status status = pk_vary_value(problem->document, path, &node, &value);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  double step = STEP * size_of(path, value);
+  pk_problem *minus = NULL, *plus = NULL;
+  status = pk_vary_read(context, problem->document, node, value - step, &minus);
+  if (status == PICKET_OK) {
+    status = pk_vary_read(context, problem->document, node, value + step, &plus);
+  }
+  if (status == PICKET_OK) {
+    pk_variation variation = {understood, minus, plus, step};
+    status = study(&variation, options, out);
+  }
+  pk_problem_free(minus);
+  pk_problem_free(plus);
+  return status;
+}
+
+static picket_status find(picket_problem *problem, const char *path, const picket_options *options,
+                          derivative_study study, picket_result **out) {
+  if (!problem || !path) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  picket_status status = pk_border_enter(problem->context);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  picket_options chosen;
+  const pk_problem *understood = NULL;
+  status = pk_border_prepare(problem, options, out, &chosen, &understood);
+  if (status == PICKET_OK) {
+    status = run(problem, path, &chosen, understood, study, out);
+  }
+  return pk_border_leave(problem->context, status);
+}
+
+picket_status picket_edge_derivatives_find(picket_problem *problem, const char *path,
+                                           const picket_options *options, picket_result **out) {
+  return find(problem, path, options, pk_study_edge_derivatives, out);
+}
+
+int picket_edge_derivatives_count(const picket_result *result) {
+  return pk_border_count(result, PK_RESULT_EDGE_DERIVATIVES);
+}
+
+picket_status picket_edge_derivatives_get(const picket_result *result, int i,
+                                          picket_edge_derivatives *out) {
+  if (i < 0 || i >= picket_edge_derivatives_count(result) || !out) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  *out = result->edge_derivatives[i];
+  return PICKET_OK;
+}
+
+picket_status picket_index_derivatives_find(picket_problem *problem, const char *path,
+                                            const picket_options *options, picket_result **out) {
+  return find(problem, path, options, pk_study_index_derivatives, out);
+}
+
+int picket_index_derivatives_count(const picket_result *result) {
+  return pk_border_count(result, PK_RESULT_INDEX_DERIVATIVES);
+}
+
+picket_status picket_index_derivatives_get(const picket_result *result, int i,
+                                           picket_index_derivatives *out) {
+  if (i < 0 || i >= picket_index_derivatives_count(result) || !out) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  *out = result->index_derivatives[i];
+  return PICKET_OK;
+}

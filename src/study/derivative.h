@@ -1,0 +1,21 @@
+/* Derivatives of edges and of the Bloch index with respect to a value of the problem. */
+#ifndef PK_STUDY_DERIVATIVE_H
+#define PK_STUDY_DERIVATIVE_H
+
+#include <picket/options.h>
+
+#include "study/problem.h"
+#include "study/result.h"
+
+/* A problem and its two neighbours: the same but for one value, `step` below and above. */
+typedef struct pk_variation {
+  const pk_problem *problem, *minus, *plus;
+  double step;
+} pk_variation;
+
+picket_status pk_study_edge_derivatives(const pk_variation *variation,
+                                        const picket_options *options, picket_result **out);
+picket_status pk_study_index_derivatives(const pk_variation *variation,
+                                         const picket_options *options, picket_result **out);
+
+#endif
