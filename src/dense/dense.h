@@ -23,7 +23,8 @@ picket_status pk_dense_hermitian(picket_context *context, int n, double complex 
 picket_status pk_dense_general(picket_context *context, int n, double complex *a,
                                double complex *values, double complex *left, double complex *right);
 
-/* Generalised eigenpairs A x = λ B x of general complex matrices (both destroyed): λ = alpha/beta. */
+/* Generalised eigenpairs A x = λ B x of general complex matrices (both destroyed): λ = alpha/beta.
+ */
 picket_status pk_dense_pencil(picket_context *context, int n, double complex *a, double complex *b,
                               double complex *alpha, double complex *beta, double complex *right);
 
@@ -36,17 +37,34 @@ void pk_dense_lu_solve(int n, const double complex *a, const int *pivots, int co
 void pk_dense_lu_solve_transposed(int n, const double complex *a, const int *pivots, int columns,
                                   double complex *b);
 
+/* A⁻¹ in place; PICKET_ERROR_NUMERIC if singular. */
+picket_status pk_dense_inverse(picket_context *context, int n, double complex *a);
+
+/* Replaces the columns of a rows × columns matrix, rows >= columns, by orthonormal ones that span
+ * them. */
+picket_status pk_dense_orthonormal(picket_context *context, int rows, int columns,
+                                   double complex *a);
+
 /* C = alpha A B + beta C; A is m × k, B is k × n. */
 void pk_dense_times(int m, int n, int k, double complex alpha, const double complex *a,
                     const double complex *b, double complex beta, double complex *c);
+/* C = alpha Aᵀ B + beta C (plain transpose); A is k × m, B is k × n. */
+void pk_dense_transposed_times(int m, int n, int k, double complex alpha, const double complex *a,
+                               const double complex *b, double complex beta, double complex *c);
 
-/* Least squares: x[columns] minimising |A x - b| for a real rows × columns matrix (destroyed), rows >=
- * columns; b[rows] is destroyed. */
+/* C = alpha A B + beta C, all n × n, for a C and a product A B that are (complex) symmetric: about
+ * half of the work; the lower triangle is a copy of the upper one. */
+void pk_dense_symmetric_times(int n, double complex alpha, const double complex *a,
+                              const double complex *b, double complex beta, double complex *c);
+
+/* Least squares: x[columns] minimising |A x - b| for a real rows × columns matrix (destroyed), rows
+ * >= columns; b[rows] is destroyed. */
 picket_status pk_dense_least_squares(picket_context *context, int rows, int columns, double *a,
                                      double *b, double *x);
 
 /* Plain vector work. */
-double complex pk_dense_dot(long n, const double complex *x, const double complex *y); /* conj(x)·y */
+double complex pk_dense_dot(long n, const double complex *x,
+                            const double complex *y); /* conj(x)·y */
 double pk_dense_norm(long n, const double complex *x);
 
 #endif

@@ -4,6 +4,7 @@
  *   general                A x = λ x, uᴴ A = λ uᴴ    QR algorithm
  *   pencil                 A x = λ B x               QZ algorithm
  *   LU                     P A = L U                 partial pivoting
+ *   orthonormal columns    A = Q R                   Householder reflections
  *   least squares          min |A x - b|₂            singular values, so that a matrix of
  *                                                    deficient rank gives the shortest x
  *
@@ -49,6 +50,12 @@ void zgetrf_(const int *m, const int *n, double complex *a, const int *lda, int 
 void zgetrs_(const char *trans, const int *n, const int *columns, const double complex *a,
              const int *lda, const int *pivots, double complex *b, const int *ldb, int *info,
              size_t);
+void zgetri_(const int *n, double complex *a, const int *lda, const int *pivots,
+             double complex *work, const int *lwork, int *info);
+void zgeqrf_(const int *m, const int *n, double complex *a, const int *lda, double complex *tau,
+             double complex *work, const int *lwork, int *info);
+void zungqr_(const int *m, const int *n, const int *k, double complex *a, const int *lda,
+             const double complex *tau, double complex *work, const int *lwork, int *info);
 void dgelsd_(const int *m, const int *n, const int *columns, double *a, const int *lda, double *b,
              const int *ldb, double *singular, const double *condition, int *rank, double *work,
              const int *lwork, int *iwork, int *info);
@@ -201,10 +208,69 @@ void pk_dense_lu_solve_transposed(int n, const double complex *a, const int *piv
   lu_solve("T", n, a, pivots, columns, b);
 }
 
+picket_status pk_dense_inverse(picket_context *context, int n, double complex *a) {
+  double complex size = 0.0;
+  int info = 0;
+  zgetri_(&n, a, &n, NULL, &size, &ask_for_size, &info);
+  int lwork = (int)creal(size);
+  int *pivots = PK_NEW(context, n, int);
+  double complex *work = pivots ? PK_NEW(context, lwork, double complex) : NULL;
+  picket_status status = work ? pk_dense_lu(context, n, a, pivots) : PICKET_ERROR_MEMORY;
+  if (status == PICKET_OK) {
+    zgetri_(&n, a, &n, pivots, work, &lwork, &info);
+    assert(info == 0); /* a zero pivot was found by the factorisation */
+  }
+  pk_free(context, work);
+  pk_free(context, pivots);
+  return status;
+}
+
+picket_status pk_dense_orthonormal(picket_context *context, int rows, int columns,
+                                   double complex *a) {
+  assert(columns > 0 && rows >= columns);
+  double complex size = 0.0;
+  int info = 0;
+  zungqr_(&rows, &columns, &columns, a, &rows, NULL, &size, &ask_for_size, &info);
+  int lwork = (int)creal(size);
+  zgeqrf_(&rows, &columns, a, &rows, NULL, &size, &ask_for_size, &info);
+  lwork = lwork > (int)creal(size) ? lwork : (int)creal(size);
+  double complex *work = PK_NEW(context, (size_t)lwork + (size_t)columns, double complex);
+  if (!work) {
+    return PICKET_ERROR_MEMORY;
+  }
+  double complex *tau = work + lwork;
+  zgeqrf_(&rows, &columns, a, &rows, tau, work, &lwork, &info);
+  zungqr_(&rows, &columns, &columns, a, &rows, tau, work, &lwork, &info);
+  assert(info == 0);
+  pk_free(context, work);
+  return PICKET_OK;
+}
+
 void pk_dense_times(int m, int n, int k, double complex alpha, const double complex *a,
                     const double complex *b, double complex beta, double complex *c) {
   const int lda = m > 1 ? m : 1, ldb = k > 1 ? k : 1; /* BLAS refuses a leading dimension of 0 */
   zgemm_("N", "N", &m, &n, &k, &alpha, a, &lda, b, &ldb, &beta, c, &lda, 1, 1);
+}
+
+void pk_dense_transposed_times(int m, int n, int k, double complex alpha, const double complex *a,
+                               const double complex *b, double complex beta, double complex *c) {
+  const int ld = k > 1 ? k : 1, ldc = m > 1 ? m : 1;
+  zgemm_("T", "N", &m, &n, &k, &alpha, a, &ld, b, &ld, &beta, c, &ldc, 1, 1);
+}
+
+void pk_dense_symmetric_times(int n, double complex alpha, const double complex *a,
+                              const double complex *b, double complex beta, double complex *c) {
+  enum { PANEL = 64 }; /* columns at a time: wide enough for the full speed of a product */
+  for (int from = 0; from < n; from += PANEL) {
+    const int to = from + PANEL < n ? from + PANEL : n, width = to - from;
+    const size_t at = (size_t)from * (size_t)n;
+    zgemm_("N", "N", &to, &width, &n, &alpha, a, &n, b + at, &n, &beta, c + at, &n, 1, 1);
+  }
+  for (size_t j = 0; j < (size_t)n; j++) {
+    for (size_t i = 0; i < j; i++) {
+      c[j + i * (size_t)n] = c[i + j * (size_t)n];
+    }
+  }
 }
 
 picket_status pk_dense_least_squares(picket_context *context, int rows, int columns, double *a,

@@ -185,6 +185,69 @@ static void times_handles_oblongs_and_scales(void **state) {
   assert_true(cabs(c[0] - 4.0) < TIGHT);
 }
 
+static void inverse_undoes_and_refuses_the_singular(void **state) {
+  (void)state;
+  double complex a[N * N], inverse[N * N], product[N * N];
+  fill(N * N, a, 7);
+  memcpy(inverse, a, sizeof a);
+  assert_int_equal(pk_dense_inverse(context, N, inverse), PICKET_OK);
+  pk_dense_times(N, N, N, 1.0, a, inverse, 0.0, product);
+  for (int i = 0; i < N * N; i++) {
+    assert_true(cabs(product[i] - (i % (N + 1) == 0 ? 1.0 : 0.0)) < 100 * TIGHT);
+  }
+  double complex singular[4] = {1.0, 2.0, 2.0, 4.0};
+  assert_int_equal(pk_dense_inverse(context, 2, singular), PICKET_ERROR_NUMERIC);
+}
+
+static void orthonormal_columns_span_the_given_ones(void **state) {
+  (void)state;
+  enum { COLUMNS = 4 };
+  double complex a[N * COLUMNS], q[N * COLUMNS], rest[N];
+  fill(N * COLUMNS, a, 8);
+  memcpy(q, a, sizeof a);
+  assert_int_equal(pk_dense_orthonormal(context, N, COLUMNS, q), PICKET_OK);
+  for (int j = 0; j < COLUMNS; j++) {
+    memcpy(rest, a + j * N, sizeof rest);
+    for (int k = 0; k < COLUMNS; k++) {
+      const double complex along = pk_dense_dot(N, q + k * N, a + j * N);
+      assert_true(cabs(pk_dense_dot(N, q + k * N, q + j * N) - (j == k ? 1.0 : 0.0)) < TIGHT);
+      for (int i = 0; i < N; i++) {
+        rest[i] -= along * q[i + k * N];
+      }
+    }
+    assert_true(pk_dense_norm(N, rest) < TIGHT);
+  }
+}
+
+static void transposed_times_does_not_conjugate(void **state) {
+  (void)state;
+  /* Aᵀ B with A = [1 i; 2 0; 3 1] and B = [1 1 i]ᵀ, worked out by hand. */
+  const double complex a[6] = {1.0, 2.0, 3.0, I, 0.0, 1.0}, b[3] = {1.0, 1.0, I};
+  double complex c[2] = {2.0, 4.0};
+  pk_dense_transposed_times(2, 1, 3, 1.0, a, b, 0.5, c);
+  assert_true(cabs(c[0] - (4.0 + 3.0 * I)) < TIGHT);
+  assert_true(cabs(c[1] - (2.0 + 2.0 * I)) < TIGHT);
+}
+
+/* A Aᵀ is symmetric; the order is above one panel, and not a multiple of it. */
+static void symmetric_times_gives_the_whole_product(void **state) {
+  (void)state;
+  enum { ORDER = 150 };
+  static double complex a[ORDER * ORDER], b[ORDER * ORDER], c[ORDER * ORDER], d[ORDER * ORDER];
+  fill(ORDER * ORDER, a, 9);
+  for (int j = 0; j < ORDER; j++) {
+    for (int i = 0; i < ORDER; i++) {
+      b[j + i * ORDER] = a[i + j * ORDER];
+      c[i + j * ORDER] = d[i + j * ORDER] = i + j;
+    }
+  }
+  pk_dense_times(ORDER, ORDER, ORDER, 2.0 * I, a, b, 0.5, c);
+  pk_dense_symmetric_times(ORDER, 2.0 * I, a, b, 0.5, d);
+  for (int i = 0; i < ORDER * ORDER; i++) {
+    assert_true(cabs(c[i] - d[i]) < TIGHT * ORDER);
+  }
+}
+
 static void least_squares_fits_a_parabola(void **state) {
   (void)state;
   enum { ROWS = 7 };
@@ -238,6 +301,13 @@ static picket_status run_all(picket_context *c) {
   if (status == PICKET_OK) {
     status = pk_dense_least_squares(c, 2, 2, real, values, x);
   }
+  double complex d[4] = {2.0, 1.0, 1.0, 3.0};
+  if (status == PICKET_OK) {
+    status = pk_dense_inverse(c, 2, d);
+  }
+  if (status == PICKET_OK) {
+    status = pk_dense_orthonormal(c, 2, 2, d);
+  }
   return status;
 }
 
@@ -269,6 +339,10 @@ int main(void) {
       cmocka_unit_test(lu_solves_plain_and_transposed),
       cmocka_unit_test(singular_lu_is_refused_with_a_reason),
       cmocka_unit_test(times_handles_oblongs_and_scales),
+      cmocka_unit_test(inverse_undoes_and_refuses_the_singular),
+      cmocka_unit_test(orthonormal_columns_span_the_given_ones),
+      cmocka_unit_test(transposed_times_does_not_conjugate),
+      cmocka_unit_test(symmetric_times_gives_the_whole_product),
       cmocka_unit_test(least_squares_fits_a_parabola),
       cmocka_unit_test(least_squares_of_deficient_rank_takes_the_shortest),
       cmocka_unit_test(dot_conjugates_its_first_argument),
