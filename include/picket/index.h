@@ -59,12 +59,38 @@ typedef struct picket_index_answer {
 
 /* Bloch modes at each wavelength of the problem's `light`, for each of its polarizations,
  * `options->count` modes (default 1: the fundamental one).
- * A point that fails is marked and does not stop the rest.
+ *
+ * A point that cannot be computed (a material is not known there, no mode, no convergence) is
+ * marked with the reason and does not stop the rest; if every point fails for the same reason, that
+ * is the failure of the call. Modes are followed through the wavelengths, so that an order stays
+ * with its mode where indices cross.
+ *
+ * With `options->jobs` other than 1 the points are solved in worker processes, forked from the
+ * caller; the numbers are the same to the last digit. No other thread may be inside the library at
+ * that time. Callbacks are only called in the calling process, except those for memory.
+ *
  * Errors as for picket_edges_find; PICKET_ERROR_INPUT also without wavelengths.
+ * PICKET_ERROR_STOPPED: if any point was finished, *out receives the result all the same, partial,
+ * with the other points marked; it is yours to free. Else *out is untouched.
+ *
  * Cost per wavelength: three grids, on each a factorisation per mode, and one reduction of the
  * coarsest cell to a column. */
 PICKET_EXPORT picket_status picket_index_find(picket_problem *problem,
                                               const picket_options *options, picket_result **out);
+
+/* The same with a journal: a file to which every finished point is added at once. If the file is
+ * there already, the points in it are taken from it and only the others are solved, so a run that
+ * was ended in whatever way can be taken up again; the result is the same to the last digit as that
+ * of a run in one go. The file is kept.
+ *
+ * PICKET_ERROR_INPUT if the file is not a journal, or one of another problem, other options or
+ * another version of the library. PICKET_ERROR_OUTPUT if it cannot be written or another run is
+ * writing it; once the work has begun, *out then receives what was finished, as for
+ * PICKET_ERROR_STOPPED. */
+PICKET_EXPORT picket_status picket_index_find_resumable(picket_problem *problem,
+                                                        const picket_options *options,
+                                                        const char *journal_path,
+                                                        picket_result **out);
 
 /* Polarizations in the result of picket_index_find; 0 for another kind of result. */
 PICKET_EXPORT int picket_index_count(const picket_result *result);

@@ -18,6 +18,8 @@ typedef struct picket_options {
   double count;    /* how many bands, modes or stop bands, 1 to 200; 0: the command's own choice */
   double unknowns; /* most unknowns of one grid, 1000 to 1e8; default 2e6 */
   double points;   /* wavenumbers between two neighbours of a path, 1 to 1000; default 12 */
+  double jobs;     /* worker processes of a sweep, 0 to 1024; default 1: the calling process alone.
+                      0: as many as there are cores. Numbers do not depend on it */
 } picket_options;
 
 /* Defaults. Null is ignored. */

@@ -12,7 +12,7 @@ extern "C" {
  * uncertainty   half-width of the error bar in the unit of the value: the true value of the
  *               two-dimensional ideal problem lies within value ± uncertainty. NaN when no bar can
  *               be vouched for
- * note          why value or uncertainty is missing, or null; static text, never freed */
+ * note          why value or uncertainty is missing, or null; borrowed from the result */
 typedef struct picket_quantity {
   double value;
   double uncertainty;

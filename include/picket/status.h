@@ -16,7 +16,7 @@ typedef enum picket_status {
   PICKET_ERROR_INPUT = -2,
   /* Memory ran out; everything acquired was released. */
   PICKET_ERROR_MEMORY = -3,
-  /* A file could not be read or written. */
+  /* A file could not be read. */
   PICKET_ERROR_FILE = -4,
   /* The numbers could not be obtained: an iteration failed or a residual was too large. */
   PICKET_ERROR_NUMERIC = -5,
@@ -31,7 +31,9 @@ typedef enum picket_status {
   /* The request is understood but this version does not do it. */
   PICKET_ERROR_UNSUPPORTED = -10,
   /* An internal check failed: a defect of the library. */
-  PICKET_ERROR_INTERNAL = -11
+  PICKET_ERROR_INTERNAL = -11,
+  /* A file that the library keeps for the caller could not be written. */
+  PICKET_ERROR_OUTPUT = -12
 } picket_status;
 
 /* The name of a status code, e.g. "PICKET_ERROR_INPUT"; "unknown status" for any other number.

@@ -17,6 +17,24 @@ picket_status pk_border_leave(picket_context *context, picket_status status) {
   return status;
 }
 
+picket_status pk_border_prepare(picket_problem *problem, const picket_options *options,
+                                picket_result **out, picket_options *chosen,
+                                const pk_problem **understood) {
+  picket_status status = PICKET_OK;
+  picket_options_init(chosen);
+  if (!out) {
+    status = pk_fail(problem->context, PICKET_ERROR_ARGUMENT,
+                     "out is null, must be the address of a result pointer");
+  }
+  if (status == PICKET_OK && options) {
+    status = pk_options_check(problem->context, options);
+  }
+  if (status == PICKET_OK && options) {
+    *chosen = *options;
+  }
+  return status == PICKET_OK ? pk_problem_understand(problem, understood) : status;
+}
+
 picket_status pk_border_study(picket_problem *problem, const picket_options *options,
                               picket_result **out, pk_study study) {
   if (!problem) {
@@ -28,21 +46,8 @@ picket_status pk_border_study(picket_problem *problem, const picket_options *opt
     return status;
   }
   picket_options chosen;
-  picket_options_init(&chosen);
   const pk_problem *understood = NULL;
-  if (!out) {
-    status = pk_fail(context, PICKET_ERROR_ARGUMENT,
-                     "out is null, must be the address of a result pointer");
-  }
-  if (status == PICKET_OK && options) {
-    status = pk_options_check(context, options);
-  }
-  if (status == PICKET_OK && options) {
-    chosen = *options;
-  }
-  if (status == PICKET_OK) {
-    status = pk_problem_understand(problem, &understood);
-  }
+  status = pk_border_prepare(problem, options, out, &chosen, &understood);
   if (status == PICKET_OK) {
     status = study(understood, &chosen, out);
   }

@@ -3,6 +3,7 @@
 #define PK_API_BORDER_H
 
 #include <picket/options.h>
+#include <picket/problem.h>
 #include <picket/result.h>
 
 #include "study/problem.h"
@@ -17,6 +18,12 @@ picket_status pk_border_leave(picket_context *context, picket_status status);
 /* A study that takes options. */
 typedef picket_status (*pk_study)(const pk_problem *problem, const picket_options *options,
                                   picket_result **out);
+
+/* What a study needs, inside an entered context: options checked (null: the defaults) and copied to
+ * `chosen`, the problem understood. PICKET_ERROR_ARGUMENT if `out` is null. */
+picket_status pk_border_prepare(picket_problem *problem, const picket_options *options,
+                                picket_result **out, picket_options *chosen,
+                                const pk_problem **understood);
 
 /* The whole of picket_<study>_find: checks, understands the problem, runs the study. */
 picket_status pk_border_study(picket_problem *problem, const picket_options *options,

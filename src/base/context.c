@@ -127,3 +127,13 @@ picket_status pk_progress(picket_context *context, const char *phase, double fra
   }
   return pk_fail(context, PICKET_ERROR_STOPPED, "stopped on request during: %s", phase);
 }
+
+pk_listeners pk_context_listen(picket_context *context, pk_listeners listeners) {
+  picket_context_options *o = &context->options;
+  pk_listeners before = {o->log, o->log_user, o->progress, o->progress_user};
+  o->log = listeners.log;
+  o->log_user = listeners.log_user;
+  o->progress = listeners.progress;
+  o->progress_user = listeners.progress_user;
+  return before;
+}

@@ -40,6 +40,18 @@ bool pk_log_wanted(const picket_context *context, picket_log_level level);
 /* Asks the progress callback. PICKET_OK to go on, PICKET_ERROR_STOPPED (message set) to stop. */
 picket_status pk_progress(picket_context *context, const char *phase, double fraction);
 
+/* Who listens to a context. */
+typedef struct pk_listeners {
+  void (*log)(picket_log_level level, const char *line, void *user);
+  void *log_user;
+  picket_verdict (*progress)(const picket_progress *progress, void *user);
+  void *progress_user;
+} pk_listeners;
+
+/* Puts others in the place of the callbacks of the creator, and returns those that were there: for
+ * work in parts, which says how far the whole is, and for worker processes. */
+pk_listeners pk_context_listen(picket_context *context, pk_listeners listeners);
+
 /* Objects hold their context: one hold per object, released with it. */
 picket_context *pk_context_hold(picket_context *context);
 void pk_context_release(picket_context *context);

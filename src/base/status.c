@@ -16,6 +16,7 @@ const char *picket_status_name(picket_status status) {
     case PICKET_ERROR_BUSY: return "PICKET_ERROR_BUSY";
     case PICKET_ERROR_UNSUPPORTED: return "PICKET_ERROR_UNSUPPORTED";
     case PICKET_ERROR_INTERNAL: return "PICKET_ERROR_INTERNAL";
+    case PICKET_ERROR_OUTPUT: return "PICKET_ERROR_OUTPUT";
   }
   return "unknown status";
 }

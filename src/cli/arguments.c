@@ -10,6 +10,7 @@
 typedef enum option_kind {
   OPTION_JSON,
   OPTION_CSV,
+  OPTION_RESUME,
   OPTION_SET,
   OPTION_QUIET,
   OPTION_VERBOSE,
@@ -26,11 +27,11 @@ typedef struct option {
 } option;
 
 static const option OPTIONS[] = {
-    {"json", OPTION_JSON, NULL},       {"csv", OPTION_CSV, "a file name"},
-    {"set", OPTION_SET, "KEY=VALUE"},  {"quiet", OPTION_QUIET, NULL},
-    {"verbose", OPTION_VERBOSE, NULL}, {"help", OPTION_HELP, NULL},
-    {"version", OPTION_VERSION, NULL}, {"figure", OPTION_LATER, NULL},
-    {"fields", OPTION_LATER, NULL},    {"jobs", OPTION_LATER, NULL},
+    {"json", OPTION_JSON, NULL},      {"csv", OPTION_CSV, "a file name"},
+    {"set", OPTION_SET, "KEY=VALUE"}, {"resume", OPTION_RESUME, "a file name"},
+    {"quiet", OPTION_QUIET, NULL},    {"verbose", OPTION_VERBOSE, NULL},
+    {"help", OPTION_HELP, NULL},      {"version", OPTION_VERSION, NULL},
+    {"figure", OPTION_LATER, NULL},   {"fields", OPTION_LATER, NULL},
 };
 enum { OPTION_COUNT = sizeof OPTIONS / sizeof OPTIONS[0], NAME_LENGTH = 40 };
 
@@ -95,6 +96,14 @@ static int add_set(pk_arguments *a, const char *text) {
   return PK_EXIT_DONE;
 }
 
+static int set_file(const char **out, const char *name, const char *value) {
+  if (value[0] == '\0' || strcmp(value, "-") == 0) {
+    return pk_complain(PK_EXIT_WRONG, "--%s is \"%s\", must be the name of a file", name, value);
+  }
+  *out = value;
+  return PK_EXIT_DONE;
+}
+
 static int apply(pk_arguments *a, const option *o, const char *value) {
   switch (o->kind) {
     case OPTION_JSON: a->json = true; break;
@@ -107,12 +116,8 @@ static int apply(pk_arguments *a, const option *o, const char *value) {
     case OPTION_LATER:
       return pk_complain(PK_EXIT_WRONG, "--%s is not in this version (%s)", o->name,
                          picket_version());
-    case OPTION_CSV:
-      if (value[0] == '\0' || strcmp(value, "-") == 0) {
-        return pk_complain(PK_EXIT_WRONG, "--csv is \"%s\", must be the name of a file", value);
-      }
-      a->csv = value;
-      break;
+    case OPTION_CSV: return set_file(&a->csv, o->name, value);
+    case OPTION_RESUME: return set_file(&a->resume, o->name, value);
   }
   return PK_EXIT_DONE;
 }
@@ -181,6 +186,10 @@ static int check_whole(const pk_arguments *a) {
     return pk_complain(PK_EXIT_WRONG, "picket %s needs a problem file, or - for standard input",
                        a->command->name);
   }
+  if (a->resume && a->command->find != picket_index_find) {
+    return pk_complain(PK_EXIT_WRONG, "--resume is for picket index; picket %s keeps no journal",
+                       a->command->name);
+  }
   if (a->quiet && a->verbose) {
     return pk_complain(PK_EXIT_WRONG, "--quiet and --verbose cannot both be meant");
   }
@@ -190,6 +199,7 @@ static int check_whole(const pk_arguments *a) {
 int pk_arguments_parse(int argc, char **argv, pk_arguments *out) {
   *out = (pk_arguments){0};
   picket_options_init(&out->options);
+  out->options.jobs = PK_USUAL_JOBS;
   out->sets = calloc((size_t)argc + 1, sizeof *out->sets);
   if (!out->sets) {
     return pk_complain(PK_EXIT_MACHINE, "out of memory");

@@ -8,6 +8,10 @@
 #include <picket.h>
 #include <stdbool.h>
 
+/* What --jobs is without being said: as many as there are cores. (In the library it is 1, because a
+ * program may not expect to be forked.) */
+#define PK_USUAL_JOBS 0.0
+
 /* The contract of the command line. */
 enum {
   PK_EXIT_DONE = 0,
@@ -23,7 +27,8 @@ typedef struct pk_arguments {
   const pk_command *command; /* null with --version and --help alone */
   const char *file;          /* null until given; "-" is standard input */
   bool json, quiet, verbose, help, version;
-  const char *csv; /* or null */
+  const char *csv;    /* or null */
+  const char *resume; /* a journal, or null */
   picket_options options;
   int set_count;
   const char **sets; /* [set_count] KEY=VALUE, borrowed from argv; the array is owned */
@@ -44,6 +49,7 @@ extern const pk_command pk_commands[]; /* ends with an empty row */
 
 void pk_edges_print(const pk_arguments *arguments, const picket_result *result);
 void pk_bands_print(const pk_arguments *arguments, const picket_result *result);
+void pk_index_print(const pk_arguments *arguments, const picket_result *result);
 void pk_slab_print(const pk_arguments *arguments, const picket_result *result);
 picket_status pk_check_find(picket_problem *problem, const picket_options *options,
                             picket_result **out);

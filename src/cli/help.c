@@ -1,5 +1,6 @@
 /* --help: of the tool, or of one command. Numbers come from the library's table of options. */
 #include <stdio.h>
+#include <string.h>
 
 #include "cli/cli.h"
 
@@ -8,12 +9,13 @@ static void print_options(void) {
   const picket_option_description *d;
   for (int i = 0; (d = picket_option_at(i)) != NULL; i++) {
     printf("  --%-8s N     %s: %g to %g, usually %g\n", d->name, d->help, d->least, d->most,
-           d->usual);
+           strcmp(d->name, "jobs") == 0 ? PK_USUAL_JOBS : d->usual);
   }
   printf(
       "  --set KEY=VALUE  override one value of the file, e.g. cell.pitch_nm=310; may be repeated\n"
       "  --json           one JSON document on standard output, nothing else\n"
       "  --csv FILE       the table of the result, comma-separated\n"
+      "  --resume FILE    index: keep finished points in FILE, and take up what is in it\n"
       "  --quiet          the answer only\n"
       "  --verbose        grids and solver settings on standard error\n"
       "  --version        which version this is\n"
@@ -24,7 +26,8 @@ static void print_status(void) {
   printf(
       "Exit status: 0 done; 1 the numbers could not be obtained to the accuracy asked (what there\n"
       "is, is printed and marked); 2 the command line or the file is wrong; 3 the machine failed\n"
-      "(memory, or a file or pipe that cannot be written); 130 interrupted.\n");
+      "(memory, or a file or pipe that cannot be written); 130 interrupted (what index\nfinished "
+      "is printed).\n");
 }
 
 static void print_tool(void) {

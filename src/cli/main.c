@@ -15,9 +15,10 @@ const pk_command pk_commands[] = {
      "cell", picket_edges_find, pk_edges_print},
     {"bands", "bands over a path of wavenumbers, and the gaps between them", "cell",
      picket_bands_find, pk_bands_print},
+    {"index", "Bloch index, group index, dispersion, loss and regime at each wavelength",
+     "cell, light", picket_index_find, pk_index_print},
     {"slab", "guided modes of a stack of films, analytic", "slab, light", picket_slab_find,
      pk_slab_print},
-    {"index", NULL, NULL, NULL, NULL},
     {"modes", NULL, NULL, NULL, NULL},
     {"aim", NULL, NULL, NULL, NULL},
     {"tolerance", NULL, NULL, NULL, NULL},
@@ -74,25 +75,41 @@ static int deliver(const pk_arguments *a, picket_context *context, picket_result
   return file_status != PK_EXIT_DONE ? file_status : status;
 }
 
+static picket_status ask(const pk_arguments *a, picket_problem *problem, picket_result **out) {
+  return a->resume ? picket_index_find_resumable(problem, &a->options, a->resume, out)
+                   : a->command->find(problem, &a->options, out);
+}
+
+/* The question and its answer. A failure may leave a part of the answer, which is delivered too. */
+static int ask_and_deliver(const pk_arguments *a, picket_context *context, picket_problem *problem,
+                           pk_csv_file *csv) {
+  picket_result *result = NULL;
+  picket_status found = ask(a, problem, &result);
+  pk_session_quiet();
+  int status = PK_EXIT_DONE;
+  if (found != PICKET_OK) {
+    status = pk_complain(pk_exit_of(found), "%s", picket_context_message(context));
+  }
+  if (result) {
+    int delivered = deliver(a, context, result, csv);
+    status = status != PK_EXIT_DONE && delivered != PK_EXIT_MACHINE ? status : delivered;
+  } else {
+    pk_csv_drop(csv);
+  }
+  picket_result_free(result);
+  return status;
+}
+
 static int answer(const pk_arguments *a, picket_context *context) {
   picket_problem *problem = NULL;
-  picket_result *result = NULL;
   pk_csv_file *csv = NULL;
   int status = pk_session_problem(a, context, &problem);
   if (status == PK_EXIT_DONE && a->csv) {
     status = pk_csv_open(a->csv, &csv);
   }
   if (status == PK_EXIT_DONE) {
-    picket_status found = a->command->find(problem, &a->options, &result);
-    pk_session_quiet();
-    if (found != PICKET_OK) {
-      status = pk_complain(pk_exit_of(found), "%s", picket_context_message(context));
-      pk_csv_drop(csv);
-    } else {
-      status = deliver(a, context, result, csv);
-    }
+    status = ask_and_deliver(a, context, problem, csv);
   }
-  picket_result_free(result);
   picket_problem_free(problem);
   return status;
 }

@@ -49,6 +49,7 @@ int pk_exit_of(picket_status status) {
     case PICKET_ERROR_UNSUPPORTED: return PK_EXIT_WRONG;
     case PICKET_ERROR_STOPPED: return PK_EXIT_INTERRUPTED;
     case PICKET_ERROR_MEMORY:
+    case PICKET_ERROR_OUTPUT:
     case PICKET_ERROR_BUSY:
     case PICKET_ERROR_INTERNAL: break;
   }

@@ -192,6 +192,80 @@ static void write_slab(sheet *s, const picket_result *result) {
   }
 }
 
+/* Columns of an index row besides polarization, wavelength, order and what follows the regime. */
+static const picket_quantity *index_quantity(const picket_bloch_mode *mode, int i) {
+  const picket_quantity *const all[] = {&mode->bloch_index,
+                                        &mode->group_index,
+                                        &mode->dispersion_ps_per_nm_km,
+                                        &mode->loss_db_per_cm,
+                                        &mode->loss_db_per_pitch,
+                                        &mode->absorption_db_per_cm,
+                                        &mode->radiation_db_per_cm,
+                                        &mode->radiation_per_mm,
+                                        &mode->upward_share,
+                                        NULL};
+  return all[i];
+}
+
+static void put_index_header(sheet *s) {
+  static const char *const first[] = {"polarization", "wavelength_nm", "order", NULL};
+  static const char *const names[] = {"bloch_index",
+                                      "group_index",
+                                      "dispersion_ps_per_nm_km",
+                                      "loss_db_per_cm",
+                                      "loss_db_per_pitch",
+                                      "absorption_db_per_cm",
+                                      "radiation_db_per_cm",
+                                      "radiation_per_mm",
+                                      "upward_share",
+                                      NULL};
+  static const char *const last[] = {"regime", "estimate", "failed", "note", NULL};
+  put_header(s, first);
+  for (int i = 0; names[i]; i++) {
+    char bar[COLUMN_NAME];
+    snprintf(bar, sizeof bar, "%s_uncertainty", names[i]);
+    put_text(s, names[i]);
+    put_text(s, bar);
+  }
+  put_header(s, last);
+  end_row(s);
+}
+
+/* One row; `mode` null for a point without modes. */
+static void write_index_row(sheet *s, const picket_index_answer *answer,
+                            const picket_index_point *point, const picket_bloch_mode *mode) {
+  const picket_quantity none = {NAN, NAN, NULL};
+  const picket_bloch_mode nothing = {0};
+  bool known = mode && mode->regime != PICKET_REGIME_UNKNOWN;
+  put_text(s, pk_word_polarization(answer->polarization));
+  put_number(s, PK_NM_OF_UM * point->wavelength_um);
+  put_number(s, mode ? mode->order : NAN);
+  for (int i = 0; index_quantity(mode ? mode : &nothing, i); i++) {
+    put_quantity(s, mode ? *index_quantity(mode, i) : none, 1);
+  }
+  put_text(s, known ? picket_regime_name(mode->regime) : NULL);
+  put_number(s, point->estimate);
+  put_flag(s, point->failed);
+  put_text(s, point->note);
+  end_row(s);
+}
+
+static void write_index(sheet *s, const picket_result *result) {
+  put_index_header(s);
+  for (int i = 0; i < result->count; i++) {
+    const picket_index_answer *answer = &result->index[i];
+    for (int p = 0; p < answer->point_count; p++) {
+      const picket_index_point *point = &answer->points[p];
+      for (int m = 0; m < point->mode_count; m++) {
+        write_index_row(s, answer, point, &point->modes[m]);
+      }
+      if (point->mode_count == 0) {
+        write_index_row(s, answer, point, NULL);
+      }
+    }
+  }
+}
+
 static void write_summary(sheet *s, const picket_result *result) {
   static const char *const header[] = {"name", "value", "unit", "text", NULL};
   put_header(s, header);
@@ -208,9 +282,8 @@ static void write_summary(sheet *s, const picket_result *result) {
 
 picket_status pk_csv_write(const picket_result *result, char **out) {
   static void (*const writers[])(sheet *, const picket_result *) = {
-      [PK_RESULT_EDGES] = write_edges,
-      [PK_RESULT_BANDS] = write_bands,
-      [PK_RESULT_SLAB] = write_slab,
+      [PK_RESULT_EDGES] = write_edges,     [PK_RESULT_BANDS] = write_bands,
+      [PK_RESULT_SLAB] = write_slab,       [PK_RESULT_INDEX] = write_index,
       [PK_RESULT_SUMMARY] = write_summary,
   };
   sheet s = {.context = result->context, .status = PICKET_OK, .fresh = true};

@@ -171,6 +171,56 @@ static json_t *slab_answer(const void *user, int i) {
   return finish(object, good);
 }
 
+/* ---- index ---- */
+
+static json_t *radiated_order(const void *user, int i) {
+  const picket_radiated_order *wave = (const picket_radiated_order *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "order", json_integer(wave->order)) &&
+              put(object, "side", text(wave->side == PICKET_SIDE_LOW ? "low" : "high")) &&
+              put(object, "angle_deg", number(PK_DEGREES * wave->angle_rad)) &&
+              put(object, "share", number(wave->share));
+  return finish(object, good);
+}
+
+static json_t *bloch_mode(const void *user, int i) {
+  const picket_bloch_mode *mode = (const picket_bloch_mode *)user + i;
+  bool known = mode->regime != PICKET_REGIME_UNKNOWN;
+  json_t *object = json_object();
+  bool good = put(object, "order", json_integer(mode->order)) &&
+              put(object, "bloch_index", quantity(mode->bloch_index, 1)) &&
+              put(object, "group_index", quantity(mode->group_index, 1)) &&
+              put(object, "dispersion_ps_per_nm_km", quantity(mode->dispersion_ps_per_nm_km, 1)) &&
+              put(object, "loss_db_per_cm", quantity(mode->loss_db_per_cm, 1)) &&
+              put(object, "loss_db_per_pitch", quantity(mode->loss_db_per_pitch, 1)) &&
+              put(object, "absorption_db_per_cm", quantity(mode->absorption_db_per_cm, 1)) &&
+              put(object, "radiation_db_per_cm", quantity(mode->radiation_db_per_cm, 1)) &&
+              put(object, "radiation_per_mm", quantity(mode->radiation_per_mm, 1)) &&
+              put(object, "upward_share", quantity(mode->upward_share, 1)) &&
+              put(object, "regime", text(known ? picket_regime_name(mode->regime) : NULL)) &&
+              put(object, "radiated", array(mode->radiated_count, radiated_order, mode->radiated));
+  return finish(object, good);
+}
+
+static json_t *index_point(const void *user, int i) {
+  const picket_index_point *point = (const picket_index_point *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "wavelength_nm", number(PK_NM_OF_UM * point->wavelength_um)) &&
+              put(object, "modes", array(point->mode_count, bloch_mode, point->modes)) &&
+              put(object, "estimate", number(point->estimate)) &&
+              (!point->note || put(object, "note", text(point->note))) &&
+              (!point->failed || put(object, "failed", json_true()));
+  return finish(object, good);
+}
+
+static json_t *index_answer(const void *user, int i) {
+  const picket_index_answer *answer = ((const picket_result *)user)->index + i;
+  json_t *object = json_object();
+  bool good = put(object, "polarization", text(pk_word_polarization(answer->polarization))) &&
+              put(object, "points", array(answer->point_count, index_point, answer->points));
+  return finish(object, good);
+}
+
 /* ---- summary ---- */
 
 static json_t *summary_item(const void *user, int i) {
@@ -191,9 +241,8 @@ typedef struct writer {
 } writer;
 
 static const writer WRITER[] = {
-    [PK_RESULT_EDGES] = {"edges", edges_answer},
-    [PK_RESULT_BANDS] = {"bands", bands_answer},
-    [PK_RESULT_SLAB] = {"slab", slab_answer},
+    [PK_RESULT_EDGES] = {"edges", edges_answer},   [PK_RESULT_BANDS] = {"bands", bands_answer},
+    [PK_RESULT_SLAB] = {"slab", slab_answer},      [PK_RESULT_INDEX] = {"index", index_answer},
     [PK_RESULT_SUMMARY] = {"check", summary_item},
 };
 

@@ -11,8 +11,9 @@ picket_status pk_json_write(const picket_result *result, char **out);
 
 /* One header line, units in the names of the columns, quoting as in RFC 4180; a number that is not
  * finite is an empty field. Rows: edges, one per stop band (what holds for its polarization is
- * repeated in each); bands, one per wavenumber with a pair of columns per band; slab, one per mode;
- * summary, one per item. PICKET_ERROR_MEMORY. */
+ * repeated in each); bands, one per wavenumber with a pair of columns per band; slab
+ * and index, one per mode (index also one per point without modes, with the reason); summary, one
+ * per item. PICKET_ERROR_MEMORY. */
 picket_status pk_csv_write(const picket_result *result, char **out);
 
 /* Words that both documents use. */
@@ -20,5 +21,6 @@ const char *pk_word_polarization(picket_polarization polarization);
 const char *pk_word_slab_polarization(picket_slab_polarization polarization);
 
 static const double PK_NM_OF_UM = 1000.0;
+static const double PK_DEGREES = 57.29577951308232088; /* of a radian */
 
 #endif

@@ -4,8 +4,8 @@ import unittest
 
 import tool
 
-COMMANDS = ('check', 'edges', 'bands', 'slab')
-LATER = ('index', 'modes', 'aim', 'tolerance', 'match', 'taper', 'report', 'start')
+COMMANDS = ('check', 'edges', 'bands', 'index', 'slab')
+LATER = ('modes', 'aim', 'tolerance', 'match', 'taper', 'report', 'start')
 
 
 class CommandLine(tool.ToolTest):
@@ -27,6 +27,9 @@ class CommandLine(tool.ToolTest):
             text = self.run_tool(command, '--help').stdout
             self.assertTrue(text.startswith(f'picket {command}: '), text)
             self.assertIn('Needs in the file: ', text)
+
+    def test_help_says_what_is_usual_here(self):
+        self.assertRegex(self.run_tool('--help').stdout, r'--jobs +N .*: 0 to 1024, usually 0')
 
     def test_help_comes_before_what_is_missing(self):
         self.run_tool('edges', '--help', 'no such file.yaml')
@@ -52,7 +55,7 @@ class CommandLine(tool.ToolTest):
     def test_what_comes_later_says_so(self):
         for command in LATER:
             self.assert_refused(command, 'x.yaml', says=[command, 'not in this version'])
-        for option in (['--figure', 'a.svg'], ['--fields=a.h5'], ['--jobs', '3'], ['--jobs=3']):
+        for option in (['--figure', 'a.svg'], ['--fields=a.h5']):
             self.assert_refused('edges', *option, 'x.yaml',
                                 says=[option[0].split('=')[0], 'not in this version'])
 
@@ -64,6 +67,8 @@ class CommandLine(tool.ToolTest):
         self.assert_refused('edges', 'a.yaml', '--csv', '--json', says=['--csv needs'])
         self.assert_refused('edges', 'a.yaml', '--json=1', says=['--json takes no value'])
         self.assert_refused('edges', 'a.yaml', '--csv', '-', says=['--csv', 'name of a file'])
+        self.assert_refused('index', 'a.yaml', '--resume', '-', says=['--resume', 'name of a file'])
+        self.assert_refused('edges', 'a.yaml', '--resume', 'j', says=['--resume', 'picket index', 'picket edges'])
         self.assert_refused('edges', 'a.yaml', '--csv=', says=['--csv', 'name of a file'])
         self.assert_refused('edges', 'a.yaml', '--quiet', '--verbose', says=['--quiet', '--verbose'])
 
@@ -73,6 +78,8 @@ class CommandLine(tool.ToolTest):
         for text in ('-1', '201', '1.5', 'many'):
             self.assert_refused('edges', f'--count={text}', 'x', says=['--count', 'whole number from 0 to 200'])
         self.assert_refused('edges', '--unknowns=10', 'x', says=['--unknowns', '1000'])
+        for text in ('-1', '1025', '1.5'):
+            self.assert_refused('index', f'--jobs={text}', 'x', says=['--jobs', 'whole number from 0 to 1024'])
         self.assert_refused('edges', '--points=0', 'x', says=['--points', '1 to 1000'])
 
     def test_malformed_sets(self):

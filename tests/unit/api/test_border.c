@@ -17,7 +17,9 @@ static const char GOOD[] =
     "slab: {substrate: oxide, films: [{fill: core, thickness_nm: 220}], cover: oxide}\n";
 
 typedef picket_status (*find)(picket_problem *, const picket_options *, picket_result **);
-static const find finds[] = {picket_edges_find, picket_bands_find, picket_slab_find};
+static const find finds[] = {picket_edges_find, picket_bands_find, picket_slab_find,
+                             picket_index_find};
+enum { FINDS = sizeof finds / sizeof *finds };
 
 static picket_context *context;
 static picket_problem *problem;
@@ -46,7 +48,7 @@ static picket_result *slab_result(void) {
 static void null_arguments(void **state) {
   (void)state;
   picket_result *result = NULL;
-  for (int i = 0; i < 3; i++) {
+  for (int i = 0; i < FINDS; i++) {
     assert_int_equal(finds[i](NULL, NULL, &result), PICKET_ERROR_ARGUMENT);
     assert_int_equal(finds[i](problem, NULL, NULL), PICKET_ERROR_ARGUMENT);
     assert_non_null(strstr(picket_context_message(context), "out"));
@@ -61,7 +63,7 @@ static void options_out_of_range(void **state) {
   const double accuracies[] = {0, -1, 1e-9, 0.1, NAN, INFINITY};
   const double counts[] = {-1, 201, 1.5, NAN};
   picket_result *result = NULL;
-  for (int i = 0; i < 3; i++) {
+  for (int i = 0; i < FINDS; i++) {
     picket_options options;
     for (size_t k = 0; k < sizeof accuracies / sizeof *accuracies; k++) {
       picket_options_init(&options);
@@ -87,7 +89,7 @@ static void a_wrong_problem_is_refused(void **state) {
   (void)state;
   picket_result *result = NULL;
   assert_int_equal(picket_problem_set(problem, "cell.pitch_nm", "-3"), PICKET_OK);
-  for (int i = 0; i < 3; i++) {
+  for (int i = 0; i < FINDS; i++) {
     assert_int_equal(finds[i](problem, NULL, &result), PICKET_ERROR_INPUT);
     assert_non_null(strstr(picket_context_message(context), "cell.pitch_nm"));
   }
@@ -111,6 +113,7 @@ static void a_result_answers_its_own_questions_only(void **state) {
   picket_edges_answer edges;
   picket_bands_answer bands;
   picket_slab_answer slab;
+  picket_index_answer index;
   memset(&slab, 0x55, sizeof slab);
   const picket_slab_answer before = slab;
   assert_int_equal(picket_slab_count(result), 2);
@@ -119,6 +122,9 @@ static void a_result_answers_its_own_questions_only(void **state) {
   assert_int_equal(picket_slab_count(NULL), 0);
   assert_int_equal(picket_edges_count(NULL), 0);
   assert_int_equal(picket_bands_count(NULL), 0);
+  assert_int_equal(picket_index_count(result), 0);
+  assert_int_equal(picket_index_count(NULL), 0);
+  assert_int_equal(picket_index_get(result, 0, &index), PICKET_ERROR_ARGUMENT);
   assert_int_equal(picket_edges_get(result, 0, &edges), PICKET_ERROR_ARGUMENT);
   assert_int_equal(picket_bands_get(result, 0, &bands), PICKET_ERROR_ARGUMENT);
   assert_int_equal(picket_slab_get(result, -1, &slab), PICKET_ERROR_ARGUMENT);

@@ -88,6 +88,36 @@ static inline picket_result *handmade_slab(picket_context *context) {
   return result;
 }
 
+/* hy: a mode that radiates one order, a point without modes, a point that failed. */
+static inline picket_result *handmade_index(picket_context *context) {
+  picket_result *result = handmade(context, PK_RESULT_INDEX, "row", 0.25);
+  picket_index_answer *answers = PK_NEW(context, 2, picket_index_answer);
+  picket_index_point *points = PK_NEW(context, 3, picket_index_point);
+  picket_bloch_mode *modes = PK_NEW(context, 1, picket_bloch_mode);
+  picket_radiated_order *radiated = PK_NEW(context, 1, picket_radiated_order);
+  radiated[0] = (picket_radiated_order){-1, PICKET_SIDE_HIGH, 0, 1};
+  modes[0] = (picket_bloch_mode){.order = 0,
+                                 .bloch_index = with_bar(2.5, 0.5),
+                                 .group_index = without(3.5, "no bar"),
+                                 .dispersion_ps_per_nm_km = with_bar(-64, 8),
+                                 .loss_db_per_cm = with_bar(4, 1),
+                                 .loss_db_per_pitch = with_bar(0.25, 0.125),
+                                 .absorption_db_per_cm = with_bar(0, 0),
+                                 .radiation_db_per_cm = with_bar(4, 2),
+                                 .radiation_per_mm = with_bar(8, 4),
+                                 .upward_share = with_bar(0.5, 0.25),
+                                 .regime = PICKET_REGIME_RADIATING,
+                                 .radiated_count = 1,
+                                 .radiated = radiated};
+  points[0] = (picket_index_point){1.5, 1, modes, 2.75, NULL, 0};
+  points[1] = (picket_index_point){2, 0, NULL, NAN, "no mode", 0};
+  points[2] = (picket_index_point){4, 0, NULL, NAN, "out of range, here", 1};
+  answers[0] = (picket_index_answer){PICKET_HY, 3, points};
+  result->index = answers;
+  result->count = 1;
+  return result;
+}
+
 static inline picket_result *handmade_summary(picket_context *context) {
   picket_result *result = handmade(context, PK_RESULT_SUMMARY, "n", NAN);
   result->summary = PK_NEW(context, 2, pk_summary_item);

@@ -54,6 +54,21 @@ static void edges_without_an_operating_band(void **state) {
   expect(result, expected);
 }
 
+static void index_points(void **state) {
+  (void)state;
+  expect(handmade_index(context),
+         "polarization,wavelength_nm,order,bloch_index,bloch_index_uncertainty,group_index,"
+         "group_index_uncertainty,dispersion_ps_per_nm_km,dispersion_ps_per_nm_km_uncertainty,"
+         "loss_db_per_cm,loss_db_per_cm_uncertainty,loss_db_per_pitch,"
+         "loss_db_per_pitch_uncertainty,absorption_db_per_cm,absorption_db_per_cm_uncertainty,"
+         "radiation_db_per_cm,radiation_db_per_cm_uncertainty,radiation_per_mm,"
+         "radiation_per_mm_uncertainty,upward_share,upward_share_uncertainty,regime,estimate,"
+         "failed,note\n"
+         "hy,1500,0,2.5,0.5,3.5,,-64,8,4,1,0.25,0.125,0,0,4,2,8,4,0.5,0.25,radiating,2.75,false,\n"
+         "hy,2000,,,,,,,,,,,,,,,,,,,,,,false,no mode\n"
+         "hy,4000,,,,,,,,,,,,,,,,,,,,,,true,\"out of range, here\"\n");
+}
+
 static void bands(void **state) {
   (void)state;
   expect(handmade_bands(context, "Γ"),
@@ -149,6 +164,7 @@ int main(void) {
       cmocka_unit_test(bands),
       cmocka_unit_test(odd_labels_are_quoted),
       cmocka_unit_test(slab),
+      cmocka_unit_test(index_points),
       cmocka_unit_test(summary),
       cmocka_unit_test(a_long_table_is_whole),
       cmocka_unit_test(out_of_memory),

@@ -93,6 +93,28 @@ static void bands(void **state) {
          "\"uncertainty\":0.0625},\"to\":{\"value\":0.5,\"uncertainty\":0.0625}}]}]}");
 }
 
+static void index_points(void **state) {
+  (void)state;
+  expect(handmade_index(context),
+         "\"command\":\"index\",\"name\":\"row\",\"accuracy\":0.25,"
+         "\"complete\":true,\"shortfall\":null,\"results\":[{\"polarization\":\"hy\",\"points\":["
+         "{\"wavelength_nm\":1500.0,\"modes\":[{\"order\":0,"
+         "\"bloch_index\":{\"value\":2.5,\"uncertainty\":0.5},"
+         "\"group_index\":{\"value\":3.5,\"uncertainty\":null,\"note\":\"no bar\"},"
+         "\"dispersion_ps_per_nm_km\":{\"value\":-64.0,\"uncertainty\":8.0},"
+         "\"loss_db_per_cm\":{\"value\":4.0,\"uncertainty\":1.0},"
+         "\"loss_db_per_pitch\":{\"value\":0.25,\"uncertainty\":0.125},"
+         "\"absorption_db_per_cm\":{\"value\":0.0,\"uncertainty\":0.0},"
+         "\"radiation_db_per_cm\":{\"value\":4.0,\"uncertainty\":2.0},"
+         "\"radiation_per_mm\":{\"value\":8.0,\"uncertainty\":4.0},"
+         "\"upward_share\":{\"value\":0.5,\"uncertainty\":0.25},\"regime\":\"radiating\","
+         "\"radiated\":[{\"order\":-1,\"side\":\"high\",\"angle_deg\":0.0,\"share\":1.0}]}],"
+         "\"estimate\":2.75},"
+         "{\"wavelength_nm\":2000.0,\"modes\":[],\"estimate\":null,\"note\":\"no mode\"},"
+         "{\"wavelength_nm\":4000.0,\"modes\":[],\"estimate\":null,"
+         "\"note\":\"out of range, here\",\"failed\":true}]}]}");
+}
+
 static void slab(void **state) {
   (void)state;
   expect(handmade_slab(context),
@@ -199,6 +221,7 @@ int main(void) {
       cmocka_unit_test(confined_needs_both_edges),
       cmocka_unit_test(bands),
       cmocka_unit_test(slab),
+      cmocka_unit_test(index_points),
       cmocka_unit_test(summary),
       cmocka_unit_test(partial_results_are_marked),
       cmocka_unit_test(odd_names_are_escaped),

@@ -1,0 +1,133 @@
+/* See sweep_point.h. The line: status, wavelength, estimate, note, shortfall, number of modes; of
+ * each mode its order, regime, quantities and radiated orders. */
+#include "study/sweep_point.h"
+
+#include <stddef.h>
+
+#include "base/memory.h"
+#include "study/index.h"
+
+/* Far above what a point has: they only bound what a damaged line can ask for. */
+enum { MOST_MODES = 10000, MOST_ORDERS = 10000 };
+
+/* Every quantity of a mode. */
+static const size_t QUANTITY[] = {
+    offsetof(picket_bloch_mode, bloch_index),
+    offsetof(picket_bloch_mode, group_index),
+    offsetof(picket_bloch_mode, dispersion_ps_per_nm_km),
+    offsetof(picket_bloch_mode, loss_db_per_cm),
+    offsetof(picket_bloch_mode, loss_db_per_pitch),
+    offsetof(picket_bloch_mode, absorption_db_per_cm),
+    offsetof(picket_bloch_mode, radiation_db_per_cm),
+    offsetof(picket_bloch_mode, radiation_per_mm),
+    offsetof(picket_bloch_mode, upward_share),
+};
+enum { QUANTITIES = sizeof QUANTITY / sizeof QUANTITY[0] };
+
+static void write_mode(const picket_bloch_mode *mode, pk_record *record) {
+  pk_record_whole(record, mode->order);
+  pk_record_whole(record, (int)mode->regime);
+  for (int i = 0; i < QUANTITIES; i++) {
+    const picket_quantity *q = (const picket_quantity *)((const char *)mode + QUANTITY[i]);
+    pk_record_number(record, q->value);
+    pk_record_number(record, q->uncertainty);
+    pk_record_text(record, q->note);
+  }
+  pk_record_whole(record, mode->radiated_count);
+  for (int i = 0; i < mode->radiated_count; i++) {
+    pk_record_whole(record, mode->radiated[i].order);
+    pk_record_whole(record, (int)mode->radiated[i].side);
+    pk_record_number(record, mode->radiated[i].angle_rad);
+    pk_record_number(record, mode->radiated[i].share);
+  }
+}
+
+void pk_sweep_point_write(const pk_sweep_point *point, pk_record *record) {
+  pk_record_whole(record, (int)point->status);
+  pk_record_number(record, point->point.wavelength_um);
+  pk_record_number(record, point->point.estimate);
+  pk_record_text(record, point->point.note);
+  pk_record_text(record, point->shortfall);
+  pk_record_whole(record, point->point.mode_count);
+  for (int i = 0; i < point->point.mode_count; i++) {
+    write_mode(&point->point.modes[i], record);
+  }
+}
+
+/* A text of the line as the result's own; false when memory is out. */
+static bool read_text(picket_result *result, pk_record_reader *reader, const char **out) {
+  char buffer[PK_RECORD_TEXT];
+  const char *text = pk_record_read_text(reader, buffer);
+  *out = text ? pk_result_text(result, text) : NULL;
+  return *out || !text;
+}
+
+static picket_status read_radiated(picket_result *result, pk_record_reader *reader,
+                                   picket_bloch_mode *mode) {
+  int count = pk_record_read_whole(reader, 0, MOST_ORDERS);
+  if (count == 0) {
+    return PICKET_OK;
+  }
+  picket_radiated_order *radiated = PK_NEW(result->context, count, picket_radiated_order);
+  if (!radiated) {
+    return PICKET_ERROR_MEMORY;
+  }
+  mode->radiated = radiated;
+  mode->radiated_count = count;
+  for (int i = 0; i < count; i++) {
+    radiated[i].order = pk_record_read_whole(reader, -MOST_ORDERS, MOST_ORDERS);
+    radiated[i].side = (picket_side)pk_record_read_whole(reader, PICKET_SIDE_LOW, PICKET_SIDE_HIGH);
+    radiated[i].angle_rad = pk_record_read_number(reader);
+    radiated[i].share = pk_record_read_number(reader);
+  }
+  return PICKET_OK;
+}
+
+static picket_status read_mode(picket_result *result, pk_record_reader *reader,
+                               picket_bloch_mode *mode) {
+  mode->order = pk_record_read_whole(reader, 0, MOST_MODES);
+  mode->regime =
+      (picket_regime)pk_record_read_whole(reader, PICKET_REGIME_UNKNOWN, PICKET_REGIME_RADIATING);
+  bool good = true;
+  for (int i = 0; i < QUANTITIES && good; i++) {
+    picket_quantity *q = (picket_quantity *)((char *)mode + QUANTITY[i]);
+    q->value = pk_record_read_number(reader);
+    q->uncertainty = pk_record_read_number(reader);
+    good = read_text(result, reader, &q->note);
+  }
+  return good ? read_radiated(result, reader, mode) : PICKET_ERROR_MEMORY;
+}
+
+static picket_status read_modes(picket_result *result, pk_record_reader *reader,
+                                picket_index_point *point) {
+  int count = pk_record_read_whole(reader, 0, MOST_MODES);
+  picket_bloch_mode *modes = count > 0 ? PK_NEW(result->context, count, picket_bloch_mode) : NULL;
+  picket_status status = modes || count == 0 ? PICKET_OK : PICKET_ERROR_MEMORY;
+  point->modes = modes;
+  for (int i = 0; i < count && status == PICKET_OK && reader->good; i++) {
+    point->mode_count = i + 1;
+    status = read_mode(result, reader, &modes[i]);
+  }
+  return status;
+}
+
+picket_status pk_sweep_point_read(picket_result *result, const char *line, pk_sweep_point *out) {
+  pk_record_reader reader = {line, true};
+  pk_sweep_point p = {0};
+  p.status = (picket_status)pk_record_read_whole(&reader, PICKET_ERROR_OUTPUT, PICKET_OK);
+  p.point.failed = p.status != PICKET_OK;
+  p.point.wavelength_um = pk_record_read_number(&reader);
+  p.point.estimate = pk_record_read_number(&reader);
+  bool good = read_text(result, &reader, &p.point.note) && read_text(result, &reader, &p.shortfall);
+  picket_status status = good ? read_modes(result, &reader, &p.point) : PICKET_ERROR_MEMORY;
+  if (status == PICKET_OK && !pk_record_read_end(&reader)) {
+    status = pk_fail(result->context, PICKET_ERROR_INTERNAL,
+                     "a line that should hold a point of a sweep does not");
+  }
+  if (status != PICKET_OK) {
+    pk_index_point_clear(result->context, &p.point);
+    return status;
+  }
+  *out = p;
+  return PICKET_OK;
+}
