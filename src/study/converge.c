@@ -12,13 +12,23 @@
 /* Members of the family on each attempt; zeros are left out. Three grids settle two exponents; a
  * fourth tells scatter from law where interfaces cut the cells, and a third exponent on
  * one-dimensional stacks and at corners. */
-enum { ATTEMPTS = 4, MOST_GRIDS = 4, MOST_MEMBERS = ATTEMPTS * MOST_GRIDS };
+enum { ATTEMPTS = 7, MOST_GRIDS = 4, MOST_MEMBERS = ATTEMPTS * MOST_GRIDS };
 static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {
-    {2, 3, 4}, {3, 4, 6}, {4, 6, 8}, {6, 8, 12}};
+    {2, 3, 4}, {3, 4, 6}, {4, 6, 8}, {6, 8, 12}, {8, 12, 16}, {12, 16, 24}, {16, 24, 32}};
 static const int MEMBERS_FOUR[ATTEMPTS][MOST_GRIDS] = {
-    {2, 3, 4, 6}, {4, 5, 6, 8}, {6, 8, 10, 12}, {8, 12, 16, 20}};
+    {2, 3, 4, 6},     {4, 5, 6, 8},     {6, 8, 10, 12},  {8, 12, 16, 20},
+    {12, 16, 20, 24}, {16, 20, 24, 32}, {20, 24, 32, 40}};
 static const int MEMBERS_CORNERS[ATTEMPTS][MOST_GRIDS] = {
-    {2, 3, 4}, {2, 3, 4, 6}, {3, 4, 6, 8}, {4, 6, 8, 12}};
+    {2, 3, 4},      {2, 3, 4, 6},    {3, 4, 6, 8},    {4, 6, 8, 12},
+    {6, 8, 12, 16}, {8, 12, 16, 24}, {12, 16, 24, 32}};
+
+/* A family that brings the worst bar down by less than this factor, twice running, is not worth a
+ * finer one: rounding, open sides or scatter decide. */
+static const double WORTHWHILE = 0.7;
+
+/* Open sides are moved out when cutting them off takes more than this part of what is allowed. */
+static const double SPAN_PART = 0.3;
+enum { WIDENINGS = 3 };
 
 /* Open sides end where the field has fallen to a tenth of the accuracy in power, and one more decay
  * length. */
@@ -29,6 +39,7 @@ static double reach_for(double accuracy) {
 typedef struct family {
   const pk_converge_request *request;
   picket_context *context;
+  double reach; /* of open sides, in decay lengths */
   pk_cell_grid base;
   pk_error_law law;
   int count;    /* grids of this attempt */
@@ -86,7 +97,7 @@ static picket_status sample_span_error(family *f) {
   if (!survey->open) {
     return PICKET_OK;
   }
-  pk_lay_plan plan = {reach_for(f->request->options->accuracy), f->request->mirror, false};
+  pk_lay_plan plan = {f->reach, f->request->mirror, false};
   pk_cell_grid base;
   picket_status status = pk_survey_lay(survey, &plan, &base);
   if (status != PICKET_OK) {
@@ -137,7 +148,7 @@ static void judge(const family *f, picket_quantity *quantities) {
 static bool is_split(const family *f, int i) {
   int found = 0;
   for (int g = 0; g < f->count; g++) {
-    found += isfinite(f->values[g * f->request->count + i]) ? 1 : 0;
+    found += isfinite(values_of(f, f->m[g])[i]) ? 1 : 0;
   }
   return found > 0 && found < f->count;
 }
@@ -183,49 +194,116 @@ static const int *members_of(const pk_error_law *law, int attempt) {
   return law->smooth && law->count <= 2 ? MEMBERS_SMOOTH[attempt] : MEMBERS_FOUR[attempt];
 }
 
-static picket_status run_family(family *f, picket_quantity *quantities, picket_result *result) {
+/* The part of what is allowed that cutting off open sides takes, at worst. */
+static double span_part(const family *f, const picket_quantity *quantities) {
   double worst = 0;
-  for (int attempt = 0; attempt < ATTEMPTS; attempt++) {
-    const int *m = members_of(&f->law, attempt);
-    int count = m[MOST_GRIDS - 1] > 0 ? MOST_GRIDS : MOST_GRIDS - 1;
-    if (attempt > 0 && pk_level_unknowns(&f->base, m[count - 1]) > f->request->options->unknowns) {
+  for (int i = 0; i < f->request->count; i++) {
+    double allowed = allowed_of(f, quantities, i);
+    if (isfinite(f->span_error[i]) && isfinite(quantities[i].value) && allowed > 0) {
+      worst = fmax(worst, f->span_error[i] / allowed);
+    }
+  }
+  return worst;
+}
+
+static picket_status lay_base(family *f) {
+  pk_lay_plan plan = {f->reach, f->request->mirror, true};
+  pk_cell_grid_clear(f->context, &f->base);
+  f->members = 0;
+  picket_status status = pk_survey_lay(f->request->survey, &plan, &f->base);
+  return status == PICKET_OK ? pk_corner_law(f->request->survey, &f->base, &f->law) : status;
+}
+
+/* The first family; open sides are moved out until cutting them off hardly matters. */
+static picket_status first_attempt(family *f, picket_quantity *quantities) {
+  picket_status status = PICKET_OK;
+  for (int i = 0; status == PICKET_OK && i <= WIDENINGS; i++) {
+    status = sample_grids(f, 0);
+    if (status == PICKET_OK) {
+      status = sample_span_error(f);
+    }
+    if (status != PICKET_OK) {
       break;
     }
-    f->m = m;
-    f->count = count;
+    judge(f, quantities);
+    double part = span_part(f, quantities);
+    if (part <= SPAN_PART || i == WIDENINGS) {
+      break;
+    }
+    f->reach += 0.5 * log(part / SPAN_PART) + 1;
+    pk_log(f->context, PICKET_LOG_DETAIL, "%s: open sides moved out to %.3g decay lengths",
+           f->request->phase, f->reach);
+    status = lay_base(f);
+  }
+  return status;
+}
+
+static void choose_members(family *f, int attempt) {
+  f->m = members_of(&f->law, attempt);
+  f->count = f->m[MOST_GRIDS - 1] > 0 ? MOST_GRIDS : MOST_GRIDS - 1;
+}
+
+static picket_status check_size(const family *f) {
+  double unknowns = pk_level_unknowns(&f->base, f->m[f->count - 1]);
+  double most = f->request->options->unknowns;
+  if (unknowns > most) {
+    return pk_fail(f->context, PICKET_ERROR_NUMERIC,
+                   "%s: the coarsest family of grids needs %.0f unknowns, %.0f are allowed: allow "
+                   "more unknowns, or simplify the cell",
+                   f->request->phase, unknowns, most);
+  }
+  return PICKET_OK;
+}
+
+/* Finer families while they help. Memory that runs out on the way leaves the values found so far.
+ */
+static picket_status refine(family *f, picket_quantity *quantities, double *worst) {
+  int idle = 0;
+  for (int attempt = 1; attempt<ATTEMPTS && * worst> 1 && idle < 2; attempt++) {
+    choose_members(f, attempt);
+    if (pk_level_unknowns(&f->base, f->m[f->count - 1]) > f->request->options->unknowns) {
+      return PICKET_OK;
+    }
     picket_status status = sample_grids(f, attempt);
-    if (status == PICKET_OK && attempt == 0) {
-      status = sample_span_error(f);
+    if (status == PICKET_ERROR_MEMORY) {
+      pk_message_clear(f->context);
+      return PICKET_OK;
     }
     if (status != PICKET_OK) {
       return status;
     }
+    double before = *worst;
     judge(f, quantities);
-    worst = worst_of(f, quantities);
-    if (worst <= 1) {
-      return PICKET_OK;
-    }
+    *worst = worst_of(f, quantities);
+    idle = *worst > WORTHWHILE * before ? idle + 1 : 0;
   }
-  return mark_partial(f, worst, result);
+  return PICKET_OK;
+}
+
+static picket_status run_family(family *f, picket_quantity *quantities, picket_result *result) {
+  choose_members(f, 0);
+  picket_status status = check_size(f);
+  if (status == PICKET_OK) {
+    status = first_attempt(f, quantities);
+  }
+  double worst = status == PICKET_OK ? worst_of(f, quantities) : 0;
+  if (status == PICKET_OK) {
+    status = refine(f, quantities, &worst);
+  }
+  return status == PICKET_OK && worst > 1 ? mark_partial(f, worst, result) : status;
 }
 
 picket_status pk_converge(const pk_converge_request *request, picket_quantity *quantities,
                           picket_result *result) {
   family f = {.request = request, .context = request->survey->problem->context};
+  f.reach = reach_for(request->options->accuracy);
   f.values = PK_NEW(f.context, MOST_MEMBERS * request->count, double);
   f.span_error = PK_NEW(f.context, request->count, double);
-  picket_status status = f.values && f.span_error ? PICKET_OK : PICKET_ERROR_MEMORY;
-  pk_lay_plan plan = {reach_for(request->options->accuracy), request->mirror, true};
+  picket_status status = f.values && f.span_error ? lay_base(&f) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
-    status = pk_survey_lay(request->survey, &plan, &f.base);
+    status = run_family(&f, quantities, result);
   }
-  if (status == PICKET_OK) {
-    status = pk_corner_law(request->survey, &f.base, &f.law);
-    if (status == PICKET_OK) {
-      status = run_family(&f, quantities, result);
-    }
-    pk_cell_grid_clear(f.context, &f.base);
-  }
+  pk_cell_grid_clear(f.context, &f.base);
   pk_free(f.context, f.values);
   pk_free(f.context, f.span_error);
   return status;
