@@ -159,14 +159,10 @@ static void out_of_memory(void **state) {
 
 int main(void) {
   const struct CMUnitTest tests[] = {
-      cmocka_unit_test(edges),
-      cmocka_unit_test(edges_without_an_operating_band),
-      cmocka_unit_test(bands),
-      cmocka_unit_test(odd_labels_are_quoted),
-      cmocka_unit_test(slab),
-      cmocka_unit_test(index_points),
-      cmocka_unit_test(summary),
-      cmocka_unit_test(a_long_table_is_whole),
+      cmocka_unit_test(edges),         cmocka_unit_test(edges_without_an_operating_band),
+      cmocka_unit_test(bands),         cmocka_unit_test(odd_labels_are_quoted),
+      cmocka_unit_test(slab),          cmocka_unit_test(index_points),
+      cmocka_unit_test(summary),       cmocka_unit_test(a_long_table_is_whole),
       cmocka_unit_test(out_of_memory),
   };
   return cmocka_run_group_tests(tests, set_up, tear_down);
