@@ -405,6 +405,32 @@ static void partial_convergence_is_an_outcome(void **state) {
   laplacian_free(&a);
 }
 
+/* One restart of a small basis costs at most about two bases of applications, where the run to the
+ * end takes many more; what it hands out, if anything, is right to its own tolerance. */
+static void a_run_may_be_cut_short(void **state) {
+  (void)state;
+  enum { N = 400, BASIS = 4 };
+  laplacian a = laplacian_create(N, 1, false, 0.0, 0.0);
+  inverse op = inverse_of(context, &a, PK_REAL);
+  pk_eigen_request request = {.n = N, .wanted = 1, .basis = BASIS, .tolerance = 1e-14, .seed = 7};
+  double value, vector[N];
+  int found = 0, whole = 0, cut = 0;
+  assert_int_equal(
+      pk_eigen_symmetric(context, &request, apply_real, &op, &value, vector, &found, &whole),
+      PICKET_OK);
+  assert_int_equal(found, 1);
+  assert_near(1.0 / value / dirichlet_level(1, N), 1.0, TIGHT);
+  request.restarts = 1;
+  assert_int_equal(
+      pk_eigen_symmetric(context, &request, apply_real, &op, &value, vector, &found, &cut),
+      PICKET_OK);
+  assert_int_equal(found, 0);
+  assert_true(cut <= 2 * BASIS);
+  assert_true(whole > cut);
+  pk_factor_free(op.factor);
+  laplacian_free(&a);
+}
+
 int main(void) {
   const struct CMUnitTest tests[] = {
       cmocka_unit_test(laplacian_levels_by_shift_inversion),
@@ -417,6 +443,7 @@ int main(void) {
       cmocka_unit_test(every_allocation_fails_once),
       cmocka_unit_test(threads_do_not_disturb_each_other),
       cmocka_unit_test(partial_convergence_is_an_outcome),
+      cmocka_unit_test(a_run_may_be_cut_short),
   };
   return cmocka_run_group_tests(tests, setup, teardown);
 }

@@ -1,0 +1,20 @@
+#!/bin/sh
+# Builds the benchmarks in a folder of their own and prints one line of JSON per comparison.
+#   sh benchmarks/run.sh [BUILD_FOLDER]      build/benchmarks if none is given
+set -eu
+here=$(cd "$(dirname "$0")/.." && pwd)
+build=${1:-$here/build/benchmarks}
+
+# Stated, not inherited: a debug or sanitizer build would compare other programs.
+cmake -S "$here" -B "$build" -DCMAKE_BUILD_TYPE=Release -DPICKET_SANITIZE= -DPICKET_COVERAGE=OFF \
+  -DPICKET_TESTS=OFF >"$build.log" 2>&1 || { cat "$build.log" >&2; exit 1; }
+cmake --build "$build" --target benchmarks -j 2 >>"$build.log" 2>&1 || { cat "$build.log" >&2; exit 1; }
+
+# Threads of BLAS that wait for work count as CPU time.
+export OPENBLAS_NUM_THREADS=1
+"$build/benchmark_point"
+if /usr/bin/python3 -c 'import scipy' 2>/dev/null; then
+  /usr/bin/python3 "$here/benchmarks/compare_scipy.py" "$build/benchmark_peer"
+else
+  echo "benchmarks: no SciPy (package python3-scipy), its comparison is left out" >&2
+fi
