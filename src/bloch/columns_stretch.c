@@ -25,7 +25,7 @@ static const double NOTHING = 1e-100;
 /* Diagonals [n] of a tridiagonal matrix and what its inverse is made of. */
 typedef struct tridiagonal {
   int n;
-  double complex *l, *d, *u;              /* of the matrix, l and u [n - 1] */
+  double complex *l, *d, *u;              /* of the matrix; the last of l and u is 0 */
   double complex *above, *below, *centre; /* δ, η, R_ii */
   double complex *run;                    /* a part of a column of R */
 } tridiagonal;
@@ -51,22 +51,25 @@ static void add_strip(tridiagonal *t, double factor, pk_strip strip) {
   }
 }
 
-static double complex nonzero(double complex pivot, double complex d) {
-  return cabs(pivot) > DBL_MIN ? pivot : DBL_EPSILON * (cabs(d) + DBL_MIN / DBL_EPSILON);
+/* Pivots that vanish become as small as rounding could have left them; the size of a row is not 0.
+ */
+static double complex nonzero(const tridiagonal *t, int i, double complex pivot) {
+  double size = cabs(t->d[i]) + (i > 0 ? cabs(t->u[i - 1]) : 0) + cabs(t->u[i]);
+  return cabs(pivot) > DBL_EPSILON * DBL_EPSILON * size ? pivot : DBL_EPSILON * size;
 }
 
 static void factor(tridiagonal *t) {
   int n = t->n;
-  t->above[0] = nonzero(t->d[0], t->d[0]);
+  t->above[0] = nonzero(t, 0, t->d[0]);
   for (int i = 1; i < n; i++) {
-    t->above[i] = nonzero(t->d[i] - t->l[i - 1] * t->u[i - 1] / t->above[i - 1], t->d[i]);
+    t->above[i] = nonzero(t, i, t->d[i] - t->l[i - 1] * t->u[i - 1] / t->above[i - 1]);
   }
-  t->below[n - 1] = nonzero(t->d[n - 1], t->d[n - 1]);
+  t->below[n - 1] = nonzero(t, n - 1, t->d[n - 1]);
   for (int i = n - 2; i >= 0; i--) {
-    t->below[i] = nonzero(t->d[i] - t->u[i] * t->l[i] / t->below[i + 1], t->d[i]);
+    t->below[i] = nonzero(t, i, t->d[i] - t->u[i] * t->l[i] / t->below[i + 1]);
   }
   for (int i = 0; i < n; i++) {
-    t->centre[i] = 1 / nonzero(t->above[i] + t->below[i] - t->d[i], t->d[i]);
+    t->centre[i] = 1 / nonzero(t, i, t->above[i] + t->below[i] - t->d[i]);
   }
 }
 
