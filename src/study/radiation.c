@@ -57,20 +57,20 @@ picket_status pk_radiation_take(picket_context *context, const pk_operator *op,
   pk_power_window window = pk_power_window_of(op);
   picket_status status = PICKET_OK;
   for (int side = 0; survey->open && side < 2; side++) {
-    double free = request->k0 * pk_survey_side_index(survey, side, request->k0);
+    double in_side = request->k0 * pk_survey_side_index(survey, side, request->k0);
     for (int m = -FARTHEST_ORDER; status == PICKET_OK && m <= FARTHEST_ORDER; m++) {
       double complex km = k + 2 * PI * m / request->pitch_um;
-      if (fabs(creal(km)) >= free) {
+      if (fabs(creal(km)) >= in_side) {
         continue;
       }
       int line = side ? window.high : window.low;
       double complex a = harmonic_on(op, line, km, request->pitch_um, wave->right);
-      double across = sqrt(free * free - creal(km) * creal(km));
-      double permittivity = survey->polarization == PK_HY ? free * free : 1;
+      double across = sqrt(in_side * in_side - creal(km) * creal(km));
+      double permittivity = survey->polarization == PK_HY ? in_side * in_side : 1;
       pk_radiation row = {.mode = mode, .power = across * creal(a * conj(a)) / permittivity};
       row.wave.order = m;
       row.wave.side = side ? PICKET_SIDE_HIGH : PICKET_SIDE_LOW;
-      row.wave.angle_rad = asin(creal(km) / free);
+      row.wave.angle_rad = asin(creal(km) / in_side);
       status = add_row(context, table, &row);
     }
   }

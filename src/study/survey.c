@@ -129,12 +129,12 @@ double pk_survey_light_line(const pk_survey *survey) {
 /* The smallest lateral wavenumber of the harmonics that radiate into a side, 1/µm; 0 if none does.
  */
 static double slowest_outgoing(const pk_survey *survey, int side, double k, double k0) {
-  double free = k0 * pk_survey_side_index(survey, side, k0);
+  double in_side = k0 * pk_survey_side_index(survey, side, k0);
   double step = 2 * PI / survey->problem->cell.pitch_um, slowest = 0;
   for (int m = -RADIATED_ORDERS; m <= RADIATED_ORDERS; m++) {
     double along = k + m * step;
-    if (fabs(along) < free) {
-      double across = sqrt(free * free - along * along);
+    if (fabs(along) < in_side) {
+      double across = sqrt(in_side * in_side - along * along);
       slowest = slowest == 0 ? across : fmin(slowest, across);
     }
   }
@@ -143,11 +143,11 @@ static double slowest_outgoing(const pk_survey *survey, int side, double k, doub
 
 /* The smallest |k_m| among the harmonics that do not radiate into a side: it reaches farthest. */
 static double slowest_evanescent(const pk_survey *survey, int side, double k, double k0) {
-  double free = k0 * pk_survey_side_index(survey, side, k0);
+  double in_side = k0 * pk_survey_side_index(survey, side, k0);
   double step = 2 * PI / survey->problem->cell.pitch_um, slowest = INFINITY;
   for (int m = -RADIATED_ORDERS; m <= RADIATED_ORDERS; m++) {
     double along = fabs(k + m * step);
-    slowest = along >= free ? fmin(slowest, along) : slowest;
+    slowest = along >= in_side ? fmin(slowest, along) : slowest;
   }
   return slowest;
 }
@@ -155,10 +155,10 @@ static double slowest_evanescent(const pk_survey *survey, int side, double k, do
 void pk_survey_absorb(pk_survey *survey, double k0) {
   survey->outer_step_um = 0;
   for (int side = 0; survey->open && side < 2; side++) {
-    double free = k0 * pk_survey_side_index(survey, side, k0);
-    survey->layer[side] = (pk_layer){2 * LAYER_RADIANS / free, LOOK_STRENGTH};
-    survey->decay_um[side] = LOOK_DECAYS / free;
-    double step = STEP_RADIANS / free;
+    double in_side = k0 * pk_survey_side_index(survey, side, k0);
+    survey->layer[side] = (pk_layer){2 * LAYER_RADIANS / in_side, LOOK_STRENGTH};
+    survey->decay_um[side] = LOOK_DECAYS / in_side;
+    double step = STEP_RADIANS / in_side;
     survey->outer_step_um = survey->outer_step_um == 0 ? step : fmin(survey->outer_step_um, step);
   }
 }
@@ -173,14 +173,14 @@ void pk_survey_open_sides(pk_survey *survey, double k, double k0, double accurac
     if (across == 0) {
       continue;
     }
-    double free = k0 * pk_survey_side_index(survey, side, k0);
-    across = fmax(across, GRAZING * free);
+    double in_side = k0 * pk_survey_side_index(survey, side, k0);
+    across = fmax(across, GRAZING * in_side);
     double thickness = LAYER_RADIANS / across;
     /* Once through the layer and back: exp(-2 across strength thickness / 3). */
     double strength = 1.5 * log(100 / accuracy) / LAYER_RADIANS;
     survey->layer[side] = (pk_layer){thickness, strength};
-    survey->decay_um[side] = fmin(survey->decay_um[side], MOST_DECAYS / free);
-    double step = fmin(thickness / LAYER_STEPS, STEP_RADIANS / free);
+    survey->decay_um[side] = fmin(survey->decay_um[side], MOST_DECAYS / in_side);
+    double step = fmin(thickness / LAYER_STEPS, STEP_RADIANS / in_side);
     survey->outer_step_um = survey->outer_step_um == 0 ? step : fmin(survey->outer_step_um, step);
     pk_log(survey->problem->context, PICKET_LOG_DETAIL,
            "side %s: absorbing layer of %.3g um, strength %.3g, for outgoing waves of %.3g /um",
