@@ -3,13 +3,20 @@
 
 #include <math.h>
 
-/* Scattered values (curved interfaces): calibrated on the exact square lattice of rods, both
- * polarizations, all bands below the fifth: the largest error was below the largest misfit or half
- * the last step; twice that is kept. */
-static const double SCATTER_SAFETY = 2;
+/* Scattered values (interfaces that cut the cells): the step from the finest grid to the value, the
+ * largest misfit times this, and the share of the law, which stands for what vanishes from both by
+ * chance. Calibrated on 332 values for either polarization: square lattices of rods in air and of
+ * holes, permittivities 12:1, 8.9:1, 5.8:1 and 1.9:1, radii 0.15 to 0.45 of the pitch, four lowest
+ * bands at two or four wavenumbers, against exact frequencies from cylindrical waves, on the
+ * members 2, 3, 4, 6 to 8, 12, 16, 20. None lay outside its bar (worst 0.76 of it for ey, 0.93 for
+ * hy, where walls between holes are three cells thick). Without the share 1 and 22 did: a
+ * first-order term of hy, small against the second-order one on coarse grids, is nearly invisible
+ * to the misfit. */
+static const double SCATTER_MISFIT = 3;
 
-/* Rounding of an eigenvalue: residuals of 1e-12 and sums over 1e5 terms. */
-static const double ROUNDING = 2e-12;
+/* Rounding of an eigenvalue: about 1e-16 times the square of the steps in a wavelength. Largest
+ * seen: 7e-12, on a stack of twenty pitches to a wavelength. */
+static const double ROUNDING = 2e-11;
 
 /* Solves the small dense system by elimination with row exchange; size at most PK_GRIDS. */
 static double solve_first(int n, double a[PK_GRIDS][PK_GRIDS], double *b) {
@@ -92,7 +99,8 @@ static picket_quantity at_corners(const pk_error_law *law, int count, const int 
   return q;
 }
 
-static picket_quantity scattered(int count, const int *m, const double *values) {
+static picket_quantity scattered(const pk_error_law *law, int count, const int *m,
+                                 const double *values) {
   double n = count, sx = 0, sy = 0, sxx = 0, sxy = 0;
   for (int i = 0; i < count; i++) {
     double x = 1.0 / ((double)m[i] * m[i]);
@@ -107,8 +115,9 @@ static picket_quantity scattered(int count, const int *m, const double *values) 
   for (int i = 0; i < count; i++) {
     misfit = fmax(misfit, fabs(values[i] - best - slope / ((double)m[i] * m[i])));
   }
-  double step = 0.5 * fabs(values[count - 1] - best);
-  return (picket_quantity){best, SCATTER_SAFETY * fmax(misfit, step), 0};
+  double bar = fabs(values[count - 1] - best) + SCATTER_MISFIT * misfit;
+  bar += law->share * pow(m[count - 1], -law->share_order) * fabs(best);
+  return (picket_quantity){best, bar, 0};
 }
 
 picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
@@ -120,7 +129,7 @@ picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
   }
   picket_quantity q = law->corners  ? at_corners(law, count, m, values)
                       : law->smooth ? smooth(law, count, m, values)
-                                    : scattered(count, m, values);
+                                    : scattered(law, count, m, values);
   if (law->no_bar) {
     q.uncertainty = NAN;
     q.note = law->no_bar;

@@ -15,8 +15,10 @@ enum { PK_GRIDS = 6, PK_EXPONENTS = 5 };
 typedef struct pk_error_law {
   int count; /* exponents that are known, rising */
   double exponent[PK_EXPONENTS];
-  int smooth;         /* 1: interfaces lie on grid lines and the law holds; 0: interfaces cut
-                         the cells and the values scatter about it */
+  int smooth;   /* 1: interfaces lie on grid lines and the law holds; 0: interfaces cut
+                   the cells and the values scatter about it */
+  double share; /* scattered: relative error share·m^-share_order that no fit may show */
+  double share_order;
   int corners;        /* 1: smooth, and the second exponent is 4 - 2α of the strongest corner */
   const char *no_bar; /* why no bar can be vouched for, or null; static text */
 } pk_error_law;
@@ -30,8 +32,9 @@ double pk_extrapolated(const pk_error_law *law, int count, const int *m, const d
  * last exponent left out, and without the coarsest grid, and never below rounding.
  * Corners (three or four grids; exponents 2, 4 - 2α, 4): also without the finest of four grids, and
  * never below a share of what the extrapolation adds to the finest grid, see CORNER_SHARE_THREE.
- * Scattered values: least squares with h² on all grids; the bar is SCATTER_SAFETY times the largest
- * misfit or step. A NaN among the values gives NaN. */
+ * Scattered values: least squares with h² on all grids; the bar is the step from the finest grid to
+ * the value, SCATTER_MISFIT times the largest misfit, and the law's share. A NaN among the values
+ * gives NaN. */
 picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
                                const double *values);
 

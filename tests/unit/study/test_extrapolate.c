@@ -98,6 +98,21 @@ static void scattered_values_are_fitted(void **state) {
   }
 }
 
+/* Values on a clean line leave the step to the finest grid and the share of the law. */
+static void the_share_of_the_law_is_added(void **state) {
+  (void)state;
+  pk_error_law law = {.count = 2, .exponent = {2, 4}, .smooth = 0};
+  double values[4];
+  for (int i = 0; i < 4; i++) {
+    values[i] = 2 + 0.3 / (M[i] * M[i]);
+  }
+  double last = M[3], bare = pk_extrapolate(&law, 4, M, values).uncertainty;
+  assert_near(bare, 0.3 / (last * last), 1e-12);
+  law.share = 1e-2;
+  law.share_order = 1;
+  assert_near(pk_extrapolate(&law, 4, M, values).uncertainty - bare, 2e-2 / last, 1e-12);
+}
+
 /* Shifting and scaling the values shifts and scales the answer. */
 static void the_answer_is_linear_in_the_values(void **state) {
   (void)state;
@@ -143,6 +158,7 @@ int main(void) {
       cmocka_unit_test(bars_cover_terms_beyond_the_law),
       cmocka_unit_test(bars_never_fall_below_rounding),
       cmocka_unit_test(scattered_values_are_fitted),
+      cmocka_unit_test(the_share_of_the_law_is_added),
       cmocka_unit_test(the_answer_is_linear_in_the_values),
       cmocka_unit_test(missing_values_give_nothing),
       cmocka_unit_test(a_law_that_cannot_be_vouched_for_has_no_bar),
