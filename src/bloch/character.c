@@ -21,8 +21,8 @@ static const double NODE_LEVEL = 0.12;
 static const double BOUNDARY = 1e-6;
 static const double BOUNDARY_PART = 1e-3;
 
-static void harmonic_shape(const pk_operator *op, double complex k, const double complex *u,
-                           double complex *shape) {
+void pk_harmonic_shape(const pk_operator *op, double complex k, const double complex *u,
+                       double complex *shape) {
   int nu = pk_operator_lines(op, PK_U), nv = pk_operator_lines(op, PK_V);
   memset(shape, 0, (size_t)nv * sizeof *shape);
   for (int iu = 0; iu < nu; iu++) {
@@ -102,7 +102,7 @@ static void find_main_harmonic(const pk_operator *op, const pk_character_request
                                pk_character *c) {
   double best = -1, step = 2 * PI / request->pitch_um;
   for (int m = -FARTHEST_HARMONIC; m <= FARTHEST_HARMONIC; m++) {
-    harmonic_shape(op, folded + m * step, wave->right, shape);
+    pk_harmonic_shape(op, folded + m * step, wave->right, shape);
     double size = norm_between(op, shape, request->structure[0], request->structure[1]);
     /* In a stop band +k and -k weigh the same: the positive one is meant. */
     bool same = size > best * (1 - 1e-3) && size < best * (1 + 1e-3);
@@ -112,7 +112,7 @@ static void find_main_harmonic(const pk_operator *op, const pk_character_request
       c->k = folded + m * step;
     }
   }
-  harmonic_shape(op, c->k, wave->right, shape);
+  pk_harmonic_shape(op, c->k, wave->right, shape);
   c->nodes = count_nodes(op, shape, request->structure);
 }
 

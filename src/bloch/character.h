@@ -28,6 +28,11 @@ picket_status pk_character_of(picket_context *context, const pk_operator *op,
                               const pk_character_request *request, const pk_wave *wave,
                               pk_character *out);
 
+/* The harmonic with wavenumber k of a field u over the lateral lines, times the pitch: shape [lines
+ * of v] = ∫ u exp(-ikz) dz. */
+void pk_harmonic_shape(const pk_operator *op, double complex k, const double complex *u,
+                       double complex *shape);
+
 /* Im k of a wave is taken for zero below this part of k0: rounding and residual of a lossless wave.
  */
 #define PK_LOSSLESS 1e-9

@@ -4,6 +4,7 @@
 #define PK_STUDY_FOLLOW_H
 
 #include "bloch/character.h"
+#include "study/profile.h"
 
 typedef struct pk_followed {
   int order;
@@ -12,6 +13,7 @@ typedef struct pk_followed {
   double complex *field; /* [nu*nv] on the last grid */
   int nu, nv;
   double *u, *v;           /* its lines */
+  pk_profile profile;      /* of the last grid of an index study */
   double dispersion_error; /* of the frequency difference, ps/(nm km) */
 } pk_followed;
 

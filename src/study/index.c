@@ -143,8 +143,12 @@ static picket_status follow(index_study *s, pk_level *level, int i, double *v) {
     if (status == PICKET_OK) {
       status = measure(s, level, i, &wave, v);
     }
+    pk_character_request request = pk_look_request(&s->look);
     if (status == PICKET_OK) {
-      pk_character_request request = pk_look_request(&s->look);
+      status =
+          pk_profile_take(context, level->op, &request, f->character.k, wave.right, &f->profile);
+    }
+    if (status == PICKET_OK) {
       status = pk_radiation_take(context, level->op, &request, &s->look.survey, &wave,
                                  f->character.k, f->order, &s->radiation);
     }
@@ -279,7 +283,8 @@ static double allowed_of(const pk_converge_request *request, const picket_quanti
   int mode = i / VALUES;
   switch (i % VALUES) {
     case V_SQUARE: return pk_branch_allowed(&s->branch[mode], q[i].value, accuracy);
-    case V_PRODUCT: return accuracy * fabs(q[i].value);
+    case V_PRODUCT: /* inside a stop band there is no group index to ask for */
+      return s->look.mode[mode].character.at_boundary ? INFINITY : accuracy * fabs(q[i].value);
     case V_SQUARE_IM:
       return is_lossless(s, &s->look.mode[mode]) || s->look.mode[mode].character.at_boundary
                  ? INFINITY
@@ -289,11 +294,13 @@ static double allowed_of(const pk_converge_request *request, const picket_quanti
 }
 
 static picket_status converge_modes(index_study *s, const picket_options *options,
-                                    picket_index_point *point, picket_result *result) {
+                                    picket_index_point *point, pk_profile **profile,
+                                    picket_result *result) {
   picket_context *context = s->look.problem->context;
   picket_quantity *q = PK_NEW(context, s->look.count * VALUES, picket_quantity);
   picket_bloch_mode *modes = PK_NEW(context, s->look.count, picket_bloch_mode);
-  picket_status status = q && modes ? PICKET_OK : PICKET_ERROR_MEMORY;
+  pk_profile *profiles = PK_NEW(context, s->look.count, pk_profile);
+  picket_status status = q && modes && profiles ? PICKET_OK : PICKET_ERROR_MEMORY;
   point->modes = modes;
   if (status == PICKET_OK) {
     pk_converge_request request = {
@@ -309,16 +316,23 @@ static picket_status converge_modes(index_study *s, const picket_options *option
   for (int i = 0; status == PICKET_OK && i < s->look.count; i++) {
     status = fill_mode(s, i, q + i * VALUES, &modes[i]);
     point->mode_count = i + 1;
+    profiles[i] = s->look.mode[i].profile;
   }
   pk_free(context, q);
-  return status;
+  if (status != PICKET_OK) {
+    pk_free(context, profiles);
+    return status;
+  }
+  *profile = profiles;
+  return PICKET_OK;
 }
 
 static const char NOTE_NO_MODE[] = "the cell has no Bloch mode at this wavelength";
 
 picket_status pk_index_point(const pk_problem *problem, pk_polarization polarization,
                              double wavelength_um, const picket_options *options,
-                             picket_index_point *point, picket_result *result) {
+                             picket_index_point *point, pk_profile **profile,
+                             picket_result *result) {
   index_study s = {0};
   int wanted = options->count > 0 ? (int)options->count : 1;
   point->wavelength_um = wavelength_um;
@@ -336,7 +350,7 @@ picket_status pk_index_point(const pk_problem *problem, pk_polarization polariza
     for (int i = 0; i < s.look.count; i++) {
       s.branch[i] = pk_branch_of(s.look.mode[i].character.k, problem->cell.pitch_um);
     }
-    status = converge_modes(&s, options, point, result);
+    status = converge_modes(&s, options, point, profile, result);
   }
   index_clear(problem->context, &s);
   return status;

@@ -47,11 +47,11 @@ static picket_status solve(void *user, int piece, pk_record *answer) {
   if (status == PICKET_OK) {
     double wavelength = s->problem->light.wavelength_um[piece % s->wavelengths];
     status = pk_index_point(s->problem, s->polarization[piece / s->wavelengths], wavelength,
-                            s->options, &p.point, scratch);
+                            s->options, &p.point, &p.profile, scratch);
     p.point.wavelength_um = wavelength;
   }
   if (is_of_the_point(status)) {
-    pk_index_point_clear(context, &p.point);
+    pk_sweep_point_clear(context, &p);
     p.status = status;
     p.point.note = picket_context_message(context);
     status = PICKET_OK;
@@ -62,7 +62,7 @@ static picket_status solve(void *user, int piece, pk_record *answer) {
     pk_sweep_point_write(&p, answer);
     pk_message_clear(context);
   }
-  pk_index_point_clear(context, &p.point);
+  pk_sweep_point_clear(context, &p);
   pk_result_free(scratch);
   return status;
 }
@@ -220,17 +220,20 @@ static picket_status judge(sweep *s) {
 
 /* Moves the points to the result and follows the modes through them. */
 static picket_status put_together(sweep *s) {
-  picket_status status = PICKET_OK;
+  pk_profile **profile = PK_NEW(s->problem->context, s->wavelengths, pk_profile *);
+  picket_status status = profile ? PICKET_OK : PICKET_ERROR_MEMORY;
   for (int a = 0; a < s->result->count && status == PICKET_OK; a++) {
     picket_index_point *points = (picket_index_point *)s->result->index[a].points;
     for (int i = 0; i < s->wavelengths; i++) {
       pk_sweep_point *p = &s->point[a * s->wavelengths + i];
       points[i] = p->point;
+      profile[i] = p->profile;
       p->point.modes = NULL;
       p->point.mode_count = 0;
     }
-    status = pk_trace(s->problem->context, s->wavelengths, points);
+    status = pk_trace(s->problem->context, s->wavelengths, points, profile);
   }
+  pk_free(s->problem->context, profile);
   return status;
 }
 
@@ -291,7 +294,7 @@ static picket_status run(sweep *s, const char *journal, uint64_t document, bool 
 
 static void sweep_clear(sweep *s) {
   for (int i = 0; s->point && i < s->count; i++) {
-    pk_index_point_clear(s->problem->context, &s->point[i].point);
+    pk_sweep_point_clear(s->problem->context, &s->point[i]);
   }
   pk_free(s->problem->context, s->point);
   pk_free(s->problem->context, s->done);

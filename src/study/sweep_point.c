@@ -1,5 +1,5 @@
 /* See sweep_point.h. The line: status, wavelength, estimate, note, shortfall, number of modes; of
- * each mode its order, regime, quantities and radiated orders. */
+ * each mode its order, regime, quantities, radiated orders and profile. */
 #include "study/sweep_point.h"
 
 #include <stddef.h>
@@ -42,6 +42,14 @@ static void write_mode(const picket_bloch_mode *mode, pk_record *record) {
   }
 }
 
+static void write_profile(const pk_profile *profile, pk_record *record) {
+  pk_record_whole(record, profile->known);
+  for (int p = 0; p < PK_PROFILE_PLACES && profile->known; p++) {
+    pk_record_whole(record, profile->real[p]);
+    pk_record_whole(record, profile->imaginary[p]);
+  }
+}
+
 void pk_sweep_point_write(const pk_sweep_point *point, pk_record *record) {
   pk_record_whole(record, (int)point->status);
   pk_record_number(record, point->point.wavelength_um);
@@ -51,6 +59,7 @@ void pk_sweep_point_write(const pk_sweep_point *point, pk_record *record) {
   pk_record_whole(record, point->point.mode_count);
   for (int i = 0; i < point->point.mode_count; i++) {
     write_mode(&point->point.modes[i], record);
+    write_profile(&point->profile[i], record);
   }
 }
 
@@ -98,15 +107,30 @@ static picket_status read_mode(picket_result *result, pk_record_reader *reader,
   return good ? read_radiated(result, reader, mode) : PICKET_ERROR_MEMORY;
 }
 
+static void read_profile(pk_record_reader *reader, pk_profile *profile) {
+  profile->known = pk_record_read_whole(reader, 0, 1);
+  for (int p = 0; p < PK_PROFILE_PLACES && profile->known; p++) {
+    profile->real[p] = pk_record_read_whole(reader, -PK_PROFILE_UNIT, PK_PROFILE_UNIT);
+    profile->imaginary[p] = pk_record_read_whole(reader, -PK_PROFILE_UNIT, PK_PROFILE_UNIT);
+  }
+}
+
 static picket_status read_modes(picket_result *result, pk_record_reader *reader,
-                                picket_index_point *point) {
+                                pk_sweep_point *point) {
   int count = pk_record_read_whole(reader, 0, MOST_MODES);
-  picket_bloch_mode *modes = count > 0 ? PK_NEW(result->context, count, picket_bloch_mode) : NULL;
-  picket_status status = modes || count == 0 ? PICKET_OK : PICKET_ERROR_MEMORY;
-  point->modes = modes;
+  if (count == 0) {
+    return PICKET_OK;
+  }
+  picket_bloch_mode *modes = PK_NEW(result->context, count, picket_bloch_mode);
+  point->point.modes = modes;
+  point->profile = PK_NEW(result->context, count, pk_profile);
+  picket_status status = modes && point->profile ? PICKET_OK : PICKET_ERROR_MEMORY;
   for (int i = 0; i < count && status == PICKET_OK && reader->good; i++) {
-    point->mode_count = i + 1;
+    point->point.mode_count = i + 1;
     status = read_mode(result, reader, &modes[i]);
+    if (status == PICKET_OK) {
+      read_profile(reader, &point->profile[i]);
+    }
   }
   return status;
 }
@@ -119,15 +143,21 @@ picket_status pk_sweep_point_read(picket_result *result, const char *line, pk_sw
   p.point.wavelength_um = pk_record_read_number(&reader);
   p.point.estimate = pk_record_read_number(&reader);
   bool good = read_text(result, &reader, &p.point.note) && read_text(result, &reader, &p.shortfall);
-  picket_status status = good ? read_modes(result, &reader, &p.point) : PICKET_ERROR_MEMORY;
+  picket_status status = good ? read_modes(result, &reader, &p) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK && !pk_record_read_end(&reader)) {
     status = pk_fail(result->context, PICKET_ERROR_INTERNAL,
                      "a line that should hold a point of a sweep does not");
   }
   if (status != PICKET_OK) {
-    pk_index_point_clear(result->context, &p.point);
+    pk_sweep_point_clear(result->context, &p);
     return status;
   }
   *out = p;
   return PICKET_OK;
+}
+
+void pk_sweep_point_clear(picket_context *context, pk_sweep_point *point) {
+  pk_index_point_clear(context, &point->point);
+  pk_free(context, point->profile);
+  point->profile = NULL;
 }

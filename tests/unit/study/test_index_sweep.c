@@ -276,7 +276,13 @@ static void a_point_survives_its_line(void **state) {
   }
   modes[0].radiated = waves;
   modes[0].radiated_count = 2;
-  pk_sweep_point before = {.point = {1.55, 2, modes, 2.5, "a note", 0}, .shortfall = "far\noff"};
+  pk_profile profile[2] = {{.known = true}, {.known = false}};
+  for (int p = 0; p < PK_PROFILE_PLACES; p++) {
+    profile[0].real[p] = p % 2 ? PK_PROFILE_UNIT - p : -PK_PROFILE_UNIT;
+    profile[0].imaginary[p] = 3 * p;
+  }
+  pk_sweep_point before = {
+      .point = {1.55, 2, modes, 2.5, "a note", 0}, .shortfall = "far\noff", .profile = profile};
   pk_record record = {.context = context}, again = {.context = context};
   pk_sweep_point_write(&before, &record);
   pk_sweep_point after;
@@ -291,7 +297,10 @@ static void a_point_survives_its_line(void **state) {
   }
   assert_true(after.point.modes[0].radiated[1].angle_rad == 0.75);
   assert_string_equal(after.shortfall, "far\noff");
-  pk_index_point_clear(context, &after.point);
+  assert_memory_equal(after.profile[0].real, profile[0].real, sizeof profile[0].real);
+  assert_memory_equal(after.profile[0].imaginary, profile[0].imaginary, sizeof profile[0].real);
+  assert_true(after.profile[0].known && !after.profile[1].known);
+  pk_sweep_point_clear(context, &after);
   /* Cut off anywhere it is not a point. */
   for (size_t cut = 0; cut < record.used; cut++) {
     char kept = record.text[cut];
@@ -299,7 +308,7 @@ static void a_point_survives_its_line(void **state) {
     picket_status status = pk_sweep_point_read(result, record.text, &after);
     if (status == PICKET_OK) { /* inside the last number, which is then another number */
       assert_true(cut > record.used - 4);
-      pk_index_point_clear(context, &after.point);
+      pk_sweep_point_clear(context, &after);
     }
     record.text[cut] = kept;
   }
