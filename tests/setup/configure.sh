@@ -24,8 +24,8 @@ made_by() {
   for library in openblas yaml-0.1 jansson; do
     printf '%s %s\n' "$library" "$(pkg-config --modversion "$library" 2>/dev/null || echo missing)"
   done
-  dpkg-query -W -f '${Package} ${Version}\n' libsuitesparse-dev libarpack2-dev libcmocka-dev clang \
-    2>/dev/null || true
+  dpkg-query -W -f '${Package} ${Version}\n' libsuitesparse-dev libarpack2-dev libhdf5-dev \
+    libcmocka-dev clang 2>/dev/null || true
 }
 
 now=$(made_by)
