@@ -11,6 +11,7 @@ typedef enum option_kind {
   OPTION_JSON,
   OPTION_CSV,
   OPTION_RESUME,
+  OPTION_FIELDS,
   OPTION_SET,
   OPTION_QUIET,
   OPTION_VERBOSE,
@@ -31,7 +32,7 @@ static const option OPTIONS[] = {
     {"set", OPTION_SET, "KEY=VALUE"}, {"resume", OPTION_RESUME, "a file name"},
     {"quiet", OPTION_QUIET, NULL},    {"verbose", OPTION_VERBOSE, NULL},
     {"help", OPTION_HELP, NULL},      {"version", OPTION_VERSION, NULL},
-    {"figure", OPTION_LATER, NULL},   {"fields", OPTION_LATER, NULL},
+    {"figure", OPTION_LATER, NULL},   {"fields", OPTION_FIELDS, "a file name"},
 };
 enum { OPTION_COUNT = sizeof OPTIONS / sizeof OPTIONS[0], NAME_LENGTH = 40 };
 
@@ -118,6 +119,7 @@ static int apply(pk_arguments *a, const option *o, const char *value) {
                          picket_version());
     case OPTION_CSV: return set_file(&a->csv, o->name, value);
     case OPTION_RESUME: return set_file(&a->resume, o->name, value);
+    case OPTION_FIELDS: return set_file(&a->fields, o->name, value);
   }
   return PK_EXIT_DONE;
 }
@@ -188,6 +190,10 @@ static int check_whole(const pk_arguments *a) {
   }
   if (a->resume && a->command->find != picket_index_find) {
     return pk_complain(PK_EXIT_WRONG, "--resume is for picket index; picket %s keeps no journal",
+                       a->command->name);
+  }
+  if (a->fields && a->command->find != picket_index_find) {
+    return pk_complain(PK_EXIT_WRONG, "--fields is for picket index; picket %s has no mode fields",
                        a->command->name);
   }
   if (a->quiet && a->verbose) {

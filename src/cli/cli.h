@@ -29,6 +29,7 @@ typedef struct pk_arguments {
   bool json, quiet, verbose, help, version;
   const char *csv;    /* or null */
   const char *resume; /* a journal, or null */
+  const char *fields; /* an HDF5 file of mode fields, or null */
   picket_options options;
   int set_count;
   const char **sets; /* [set_count] KEY=VALUE, borrowed from argv; the array is owned */

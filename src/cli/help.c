@@ -16,6 +16,7 @@ static void print_options(void) {
       "  --json           one JSON document on standard output, nothing else\n"
       "  --csv FILE       the table of the result, comma-separated\n"
       "  --resume FILE    index: keep finished points in FILE, and take up what is in it\n"
+      "  --fields FILE    index: the fields of the modes, as an HDF5 file\n"
       "  --quiet          the answer only\n"
       "  --verbose        grids and solver settings on standard error\n"
       "  --version        which version this is\n"

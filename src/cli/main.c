@@ -100,6 +100,16 @@ static int ask_and_deliver(const pk_arguments *a, picket_context *context, picke
   return status;
 }
 
+/* Mode fields, on a grid of their own; before the answer, for a file that cannot be written is to
+ * show before the work. */
+static int write_fields(const pk_arguments *a, picket_context *context, picket_problem *problem) {
+  picket_status written = picket_fields_write(problem, &a->options, a->fields);
+  pk_session_quiet();
+  return written == PICKET_OK
+             ? PK_EXIT_DONE
+             : pk_complain(pk_exit_of(written), "%s", picket_context_message(context));
+}
+
 static int answer(const pk_arguments *a, picket_context *context) {
   picket_problem *problem = NULL;
   pk_csv_file *csv = NULL;
@@ -107,8 +117,14 @@ static int answer(const pk_arguments *a, picket_context *context) {
   if (status == PK_EXIT_DONE && a->csv) {
     status = pk_csv_open(a->csv, &csv);
   }
-  if (status == PK_EXIT_DONE) {
-    status = ask_and_deliver(a, context, problem, csv);
+  if (status == PK_EXIT_DONE && a->fields) {
+    status = write_fields(a, context, problem);
+  }
+  if (status == PK_EXIT_DONE || status == PK_EXIT_SHORT) { /* short: there may be indices still */
+    int answered = ask_and_deliver(a, context, problem, csv);
+    status = status == PK_EXIT_DONE ? answered : status;
+  } else {
+    pk_csv_drop(csv);
   }
   picket_problem_free(problem);
   return status;
