@@ -40,6 +40,16 @@ static picket_quantity missing(const char *note) {
   return (picket_quantity){NAN, NAN, note};
 }
 
+/* The decay inside a band comes from how far apart its edges are, so rounding of the edges (2e-11,
+ * extrapolate.c) weighs the more the narrower it is. */
+static void add_rounding(const picket_quantity *q, picket_quantity *attenuation) {
+  double width = fabs(q[LONG_UM].value - q[SHORT_UM].value);
+  double rounding = 2e-11 * q[LONG_UM].value / width * attenuation->value;
+  if (isfinite(rounding) && isfinite(attenuation->uncertainty)) {
+    attenuation->uncertainty = fmax(attenuation->uncertainty, rounding);
+  }
+}
+
 static void fill_band(const pk_stop_band *found, const picket_quantity *q, picket_stop_band *band) {
   band->order = found->order;
   band->long_um =
@@ -48,6 +58,7 @@ static void fill_band(const pk_stop_band *found, const picket_quantity *q, picke
       isnan(q[SHORT_UM].value) ? missing(pk_edge_note(found->edge[1].state)) : q[SHORT_UM];
   band->attenuation_db_per_pitch =
       isnan(q[ATTENUATION_DB].value) ? missing(NOTE_NO_ATTENUATION) : q[ATTENUATION_DB];
+  add_rounding(q, &band->attenuation_db_per_pitch);
   band->long_confined = found->edge[0].state != PK_EDGE_RADIATES;
   band->short_confined = found->edge[1].state != PK_EDGE_RADIATES;
 }
