@@ -70,10 +70,10 @@ typedef struct ruler {
   double from, to, inner, step, outer_step;
   int count;
   double lines[4];
-  double growth; /* 0: 0.2 */
 } ruler;
 
-static inline void lay_ruler(picket_context *context, const ruler *r, pk_axis *out) {
+static inline void lay_growing(picket_context *context, const ruler *r, double growth,
+                               pk_axis *out) {
   pk_axis_wish wish = {.low = r->low,
                        .high = r->high,
                        .from = r->from,
@@ -84,9 +84,13 @@ static inline void lay_ruler(picket_context *context, const ruler *r, pk_axis *o
                        .inner_from = -r->inner,
                        .inner_to = r->inner,
                        .outer_step = r->outer_step,
-                       .growth = r->growth > 0 ? r->growth : 0.2,
+                       .growth = growth,
                        .least_intervals = 1};
   assert_int_equal(pk_axis_lay(context, &wish, out), PICKET_OK);
+}
+
+static inline void lay_ruler(picket_context *context, const ruler *r, pk_axis *out) {
+  lay_growing(context, r, 0.2, out);
 }
 
 /* Member m, loaded. */

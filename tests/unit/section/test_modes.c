@@ -117,11 +117,11 @@ static plane quarter_wire(pk_end at_x, pk_end at_y, double reach) {
   const double complex index[PLANE_MEDIA] = {1.4440, 3.4757, 1};
   plane p = plane_of(index, 0);
   plane_rect(&p, 1, 0, 0, 0.45, 0.22);
-  lay_ruler(p.context,
-            &(ruler){at_x, PK_END_ZERO, 0, 0.225 + reach, 0.225, 0.08, 0.25, 1, {0.225}, 0.3},
-            &p.x);
-  lay_ruler(p.context,
-            &(ruler){at_y, PK_END_ZERO, 0, 0.11 + reach, 0.11, 0.08, 0.25, 1, {0.11}, 0.3}, &p.y);
+  lay_growing(p.context,
+              &(ruler){at_x, PK_END_ZERO, 0, 0.225 + reach, 0.225, 0.08, 0.25, 1, {0.225}}, 0.3,
+              &p.x);
+  lay_growing(p.context, &(ruler){at_y, PK_END_ZERO, 0, 0.11 + reach, 0.11, 0.08, 0.25, 1, {0.11}},
+              0.3, &p.y);
   return p;
 }
 
