@@ -113,7 +113,8 @@ PICKET_EXPORT void picket_field_free(picket_field *field);
  *   path  file name; the file appears when it is whole, in the place of one of that name
  * PICKET_ERROR_OUTPUT if it cannot be written, known before the work begins as far as possible;
  * PICKET_ERROR_INPUT without a cell or wavelengths; else as picket_field_find, if no field at all
- * could be had. No file is left behind by a failure. */
+ * could be had. No file is left behind by a failure. Cost: as picket_field_find for each wavelength
+ * and polarization; the file is put together in memory, 64 bytes for each node of each mode. */
 PICKET_EXPORT picket_status picket_fields_write(picket_problem *problem,
                                                 const picket_options *options, const char *path);
 

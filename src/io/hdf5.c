@@ -7,8 +7,10 @@
  *   /hy/1550nm/mode0/permittivity, z_um [nz], x_um [nx]
  *
  * Complex numbers are compounds {r, i} of doubles, which Python reads as complex. Numbers are
- * little endian and no times are kept, so the same fields give the same bytes. HDF5 has memory of
- * its own; its state is one for the process, so one lock lets one thread in at a time. */
+ * little endian and no times are kept, so the same fields give the same bytes. HDF5 puts the file
+ * together in its own memory and the bytes are written here: a file of its own that cannot be
+ * finished, on a full disk, it keeps half closed and crashes on at the end of the process (seen
+ * with 1.10). Its state is one for the process, so one lock lets one thread in at a time. */
 #define _XOPEN_SOURCE 700 /* realpath */
 #include <errno.h>
 #include <fcntl.h>
@@ -28,7 +30,7 @@
 #include "io/number.h"
 #include "io/write.h"
 
-enum { NAME_BYTES = 64, TRIES = 100 };
+enum { NAME_BYTES = 64, TRIES = 100, GROWTH = 1 << 20 /* of the file in memory, bytes */ };
 static const double TWO_PI = 6.283185307179586477;
 
 static const char WHAT[] =
@@ -52,7 +54,8 @@ static const char UNIT_PEAK[] =
 struct pk_field_file {
   picket_context *context; /* borrowed */
   hid_t file, complex_type;
-  bool made; /* there is a temporary file */
+  int descriptor; /* of the temporary file; -1: none */
+  bool made;      /* there is a temporary file */
   char name[PATH_MAX], temporary[PATH_MAX];
 };
 
@@ -286,10 +289,9 @@ static picket_status make_temporary(pk_field_file *file) {
       errno = ENAMETOOLONG;
       break;
     }
-    int descriptor = open(file->temporary, O_RDWR | O_CREAT | O_EXCL | O_CLOEXEC, 0666);
-    if (descriptor >= 0) {
+    file->descriptor = open(file->temporary, O_WRONLY | O_CREAT | O_EXCL | O_CLOEXEC, 0666);
+    if (file->descriptor >= 0) {
       file->made = true;
-      close(descriptor);
       return PICKET_OK;
     }
     if (errno != EEXIST) {
@@ -301,8 +303,12 @@ static picket_status make_temporary(pk_field_file *file) {
 
 static picket_status start(pk_field_file *file, const char *name) {
   quiet before = enter();
+  hid_t driver = H5Pcreate(H5P_FILE_ACCESS);
   file->complex_type = complex_of(H5T_IEEE_F64LE);
-  file->file = H5Fcreate(file->temporary, H5F_ACC_TRUNC, H5P_DEFAULT, H5P_DEFAULT);
+  if (H5Pset_fapl_core(driver, GROWTH, false) >= 0) {
+    file->file = H5Fcreate(file->temporary, H5F_ACC_TRUNC, H5P_DEFAULT, driver);
+  }
+  H5Pclose(driver);
   bool good =
       file->complex_type >= 0 && file->file >= 0 && put_text(file->file, "description", WHAT) &&
       put_text(file->file, "conventions", CONVENTIONS) && put_text(file->file, "name", name) &&
@@ -317,7 +323,7 @@ picket_status pk_field_file_open(picket_context *context, const char *path, cons
   if (!file) {
     return PICKET_ERROR_MEMORY;
   }
-  *file = (pk_field_file){.context = context, .file = -1, .complex_type = -1};
+  *file = (pk_field_file){.context = context, .file = -1, .complex_type = -1, .descriptor = -1};
   picket_status status = find_name(file, path);
   if (status == PICKET_OK) {
     status = make_temporary(file);
@@ -333,20 +339,64 @@ picket_status pk_field_file_open(picket_context *context, const char *path, cons
   return PICKET_OK;
 }
 
-/* True if everything is on its way to the disk. */
-static bool shut(pk_field_file *file) {
+/* The whole file as bytes, in the context's memory. */
+static picket_status take_image(pk_field_file *file, unsigned char **out, size_t *count) {
   quiet before = enter();
-  bool good = file->complex_type < 0 || H5Tclose(file->complex_type) >= 0;
-  good = (file->file < 0 || H5Fclose(file->file) >= 0) && good;
-  file->file = file->complex_type = -1;
+  ssize_t size =
+      H5Fflush(file->file, H5F_SCOPE_GLOBAL) < 0 ? -1 : H5Fget_file_image(file->file, NULL, 0);
+  unsigned char *bytes = size > 0 ? PK_NEW(file->context, size, unsigned char) : NULL;
+  bool good = bytes && H5Fget_file_image(file->file, bytes, (size_t)size) == size;
   leave(before);
-  return good;
+  if (good) {
+    *out = bytes;
+    *count = (size_t)size;
+    return PICKET_OK;
+  }
+  picket_status status =
+      size > 0 && !bytes ? PICKET_ERROR_MEMORY : unwritable(file->context, file->name);
+  pk_free(file->context, bytes);
+  return status;
+}
+
+static bool write_all(int descriptor, const unsigned char *bytes, size_t count) {
+  while (count > 0) {
+    ssize_t written = write(descriptor, bytes, count);
+    if (written < 0 && errno == EINTR) {
+      continue;
+    }
+    if (written <= 0) {
+      errno = written < 0 ? errno : ENOSPC;
+      return false;
+    }
+    bytes += written;
+    count -= (size_t)written;
+  }
+  return true;
+}
+
+static picket_status put_on_disk(pk_field_file *file) {
+  unsigned char *bytes = NULL;
+  size_t count = 0;
+  picket_status status = take_image(file, &bytes, &count);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  bool good = write_all(file->descriptor, bytes, count);
+  if (good) {
+    int descriptor = file->descriptor;
+    file->descriptor = -1;
+    good = close(descriptor) == 0 && rename(file->temporary, file->name) == 0;
+  }
+  file->made = !good;
+  if (!good) {
+    status = unwritable(file->context, file->name);
+  }
+  pk_free(file->context, bytes);
+  return status;
 }
 
 picket_status pk_field_file_finish(pk_field_file *file) {
-  bool good = shut(file) && rename(file->temporary, file->name) == 0;
-  picket_status status = good ? PICKET_OK : unwritable(file->context, file->name);
-  file->made = !good;
+  picket_status status = put_on_disk(file);
   pk_field_file_drop(file);
   return status;
 }
@@ -355,7 +405,17 @@ void pk_field_file_drop(pk_field_file *file) {
   if (!file) {
     return;
   }
-  (void)shut(file);
+  quiet before = enter();
+  if (file->complex_type >= 0) {
+    H5Tclose(file->complex_type);
+  }
+  if (file->file >= 0) {
+    H5Fclose(file->file);
+  }
+  leave(before);
+  if (file->descriptor >= 0) {
+    close(file->descriptor);
+  }
   if (file->made) {
     unlink(file->temporary);
   }
