@@ -13,9 +13,9 @@
 #include "base/context.h"
 
 typedef struct pk_pattern {
-  int64_t n;         /* rows and columns */
-  int64_t *start;    /* [n + 1] */
-  int64_t *row;      /* [start[n]] rising in each column */
+  int64_t n;      /* rows and columns */
+  int64_t *start; /* [n + 1] */
+  int64_t *row;   /* [start[n]] rising in each column */
 } pk_pattern;
 
 /* y = A x for values on a pattern, [start[n]] each. x and y do not overlap. */
@@ -33,10 +33,10 @@ typedef struct pk_factor pk_factor;
 
 /* What a factorisation cost: shown in the log and used by benchmarks. */
 typedef struct pk_factor_facts {
-  int64_t entries;         /* in L + U */
+  int64_t entries; /* in L + U */
   double flops;
   double peak_bytes;
-  const char *ordering;    /* the one really used */
+  const char *ordering; /* the one really used */
   double symbolic_seconds, numeric_seconds;
 } pk_factor_facts;
 
@@ -53,7 +53,8 @@ picket_status pk_factor_complex(pk_factor *factor, const double complex *values)
 
 /* x = A⁻¹ b, no refinement (residuals are checked where eigenpairs are). x may equal b: no. */
 picket_status pk_factor_solve_real(pk_factor *factor, const double *b, double *x);
-picket_status pk_factor_solve_complex(pk_factor *factor, const double complex *b, double complex *x);
+picket_status pk_factor_solve_complex(pk_factor *factor, const double complex *b,
+                                      double complex *x);
 /* x = A⁻ᵀ b (plain transpose). */
 picket_status pk_factor_solve_transposed_complex(pk_factor *factor, const double complex *b,
                                                  double complex *x);

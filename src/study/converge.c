@@ -30,6 +30,9 @@ static const double WORTHWHILE = 0.7;
 static const double SPAN_PART = 0.3;
 enum { WIDENINGS = 3 };
 
+static const char NOTE_COARSE[] =
+    "the grids that are allowed are too coarse for an error bar: allow more unknowns";
+
 /* Open sides end where the field has fallen to a tenth of the accuracy in power, and one more decay
  * length. */
 static double reach_for(double accuracy) {
@@ -174,13 +177,20 @@ static double worst_of(const family *f, const picket_quantity *quantities) {
   return worst;
 }
 
+/* A `worst` of NaN: there are no bars. */
 static picket_status mark_partial(const family *f, double worst, picket_result *result) {
   char text[256];
-  snprintf(text, sizeof text,
-           "%s: the largest uncertainty is %.2g of its value, %.1g was asked; allow more unknowns "
-           "(now %.0f) or ask for less",
-           f->request->phase, worst * f->request->options->accuracy, f->request->options->accuracy,
-           f->request->options->unknowns);
+  if (isnan(worst)) {
+    snprintf(text, sizeof text, "%s: %s (now %.0f)", f->request->phase, NOTE_COARSE,
+             f->request->options->unknowns);
+  } else {
+    snprintf(
+        text, sizeof text,
+        "%s: the largest uncertainty is %.2g of its value, %.1g was asked; allow more unknowns "
+        "(now %.0f) or ask for less",
+        f->request->phase, worst * f->request->options->accuracy, f->request->options->accuracy,
+        f->request->options->unknowns);
+  }
   result->complete = false;
   pk_free(f->context, result->shortfall);
   result->shortfall = pk_text_copy(f->context, text);
@@ -243,9 +253,18 @@ static void choose_members(family *f, int attempt) {
   f->count = f->m[MOST_GRIDS - 1] > 0 ? MOST_GRIDS : MOST_GRIDS - 1;
 }
 
-static picket_status check_size(const family *f) {
-  double unknowns = pk_level_unknowns(&f->base, f->m[f->count - 1]);
+/* A first family that is over the limit of unknowns gives way to a coarser one, whose values are a
+ * hint without a bar; if that is over the limit too, there is nothing to give. */
+static picket_status fit_first(family *f) {
+  static const int coarse[3] = {1, 2, 3};
   double most = f->request->options->unknowns;
+  if (pk_level_unknowns(&f->base, f->m[f->count - 1]) <= most) {
+    return PICKET_OK;
+  }
+  f->m = coarse;
+  f->count = 3;
+  f->law.no_bar = NOTE_COARSE;
+  double unknowns = pk_level_unknowns(&f->base, f->m[f->count - 1]);
   if (unknowns > most) {
     return pk_fail(f->context, PICKET_ERROR_NUMERIC,
                    "%s: the coarsest family of grids needs %.0f unknowns, %.0f are allowed: allow "
@@ -282,13 +301,16 @@ static picket_status refine(family *f, picket_quantity *quantities, double *wors
 
 static picket_status run_family(family *f, picket_quantity *quantities, picket_result *result) {
   choose_members(f, 0);
-  picket_status status = check_size(f);
+  picket_status status = fit_first(f);
   if (status == PICKET_OK) {
     status = first_attempt(f, quantities);
   }
   double worst = status == PICKET_OK ? worst_of(f, quantities) : 0;
   if (status == PICKET_OK) {
     status = refine(f, quantities, &worst);
+  }
+  if (status == PICKET_OK && f->law.no_bar == NOTE_COARSE) {
+    return mark_partial(f, NAN, result);
   }
   return status == PICKET_OK && worst > 1 ? mark_partial(f, worst, result) : status;
 }

@@ -21,7 +21,7 @@ class Partial(tool.ToolTest):
     ROW = tool.MATERIALS.format(name='row') + '''light: {wavelength_nm: 1550, polarization: ey}
 cell: {pitch_nm: 200, cladding: oxide, shapes: [{rect: {fill: core, length_nm: 100, width_nm: 220, at_nm: [0, 0]}}]}
 '''
-    SCARCE = ('--accuracy=1e-8', '--unknowns=1000')
+    SCARCE = ('--accuracy=1e-8', '--unknowns=8000')
 
     def test_printed_and_marked(self):
         path = self.write(self.ROW)

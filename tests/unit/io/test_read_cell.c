@@ -86,9 +86,10 @@ static void understands_every_side(void **state) {
       {START "lateral: uniform, "
              "shapes: [{stripe: {fill: si, across: z, from_nm: 0, to_nm: 100}}]}\n",
        PK_LATERAL_UNIFORM, 0, INFINITY, 0},
+      /* The span of a stack is the unit of k_x. */
       {START "lateral: uniform, lateral_span_nm: 600, "
              "shapes: [{stripe: {fill: si, across: z, from_nm: 0, to_nm: 100}}]}\n",
-       PK_LATERAL_UNIFORM, 0, INFINITY, 0},
+       PK_LATERAL_UNIFORM, 0.6, INFINITY, 0},
   };
   picket_context *context = plain_context();
   for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
