@@ -10,21 +10,8 @@
 
 enum { MOST_ORDER = 199 };
 
-static const char *const NAMES[] = {"Ex", "Ey", "Ez", "Hx", "Hy", "Hz"};
-
 static bool is_component(picket_component which) {
   return (int)which >= PICKET_COMPONENT_EX && (int)which <= PICKET_COMPONENT_HZ;
-}
-
-const char *picket_component_name(picket_component which) {
-  return is_component(which) ? NAMES[which] : NULL;
-}
-
-const char *picket_component_unit(picket_component which) {
-  if (!is_component(which)) {
-    return NULL;
-  }
-  return which <= PICKET_COMPONENT_EZ ? "V/m" : "A/m";
 }
 
 static picket_status prepare(picket_problem *problem, const picket_options *options,
