@@ -192,6 +192,44 @@ static void write_slab(sheet *s, const picket_result *result) {
   }
 }
 
+static void write_modes_point(sheet *s, const picket_modes_point *point) {
+  for (int m = 0; m < point->mode_count; m++) {
+    const picket_section_mode *mode = &point->modes[m];
+    put_number(s, PK_NM_OF_UM * point->wavelength_um);
+    put_number(s, mode->order);
+    put_quantity(s, mode->index, 1);
+    put_quantity(s, mode->group_index, 1);
+    put_quantity(s, mode->loss_db_per_cm, 1);
+    put_number(s, mode->ex_share);
+    put_quantity(s, mode->effective_area_um2, 1);
+    put_number(s, mode->nodes_x);
+    put_number(s, mode->nodes_y);
+    end_row(s);
+  }
+}
+
+static void write_modes(sheet *s, const picket_result *result) {
+  static const char *const header[] = {"wavelength_nm",
+                                       "order",
+                                       "index",
+                                       "index_uncertainty",
+                                       "group_index",
+                                       "group_index_uncertainty",
+                                       "loss_db_per_cm",
+                                       "loss_uncertainty_db_per_cm",
+                                       "ex_share",
+                                       "effective_area_um2",
+                                       "effective_area_uncertainty_um2",
+                                       "nodes_x",
+                                       "nodes_y",
+                                       NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int p = 0; p < result->modes->point_count; p++) {
+    write_modes_point(s, &result->modes->points[p]);
+  }
+}
+
 /* Columns of an index row besides polarization, wavelength, order and what follows the regime. */
 static const picket_quantity *index_quantity(const picket_bloch_mode *mode, int i) {
   const picket_quantity *const all[] = {&mode->bloch_index,
@@ -282,9 +320,9 @@ static void write_summary(sheet *s, const picket_result *result) {
 
 picket_status pk_csv_write(const picket_result *result, char **out) {
   static void (*const writers[])(sheet *, const picket_result *) = {
-      [PK_RESULT_EDGES] = write_edges,     [PK_RESULT_BANDS] = write_bands,
-      [PK_RESULT_SLAB] = write_slab,       [PK_RESULT_INDEX] = write_index,
-      [PK_RESULT_SUMMARY] = write_summary,
+      [PK_RESULT_EDGES] = write_edges, [PK_RESULT_BANDS] = write_bands,
+      [PK_RESULT_SLAB] = write_slab,   [PK_RESULT_INDEX] = write_index,
+      [PK_RESULT_MODES] = write_modes, [PK_RESULT_SUMMARY] = write_summary,
   };
   sheet s = {.context = result->context, .status = PICKET_OK, .fresh = true};
   writers[result->kind](&s, result);

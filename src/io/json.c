@@ -171,6 +171,49 @@ static json_t *slab_answer(const void *user, int i) {
   return finish(object, good);
 }
 
+/* ---- modes ---- */
+
+static json_t *confinement(const picket_section_mode *mode) {
+  json_t *object = json_object();
+  bool good = object != NULL;
+  for (int i = 0; good && i < mode->material_count; i++) {
+    good = put(object, mode->confinement[i].material, number(mode->confinement[i].share));
+  }
+  return finish(object, good);
+}
+
+static json_t *section_mode(const void *user, int i) {
+  const picket_section_mode *mode = (const picket_section_mode *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "order", json_integer(mode->order)) &&
+              put(object, "index", quantity(mode->index, 1)) &&
+              put(object, "group_index", quantity(mode->group_index, 1)) &&
+              put(object, "loss_db_per_cm", quantity(mode->loss_db_per_cm, 1)) &&
+              put(object, "ex_share", number(mode->ex_share)) &&
+              put(object, "polarization", text(mode->ex_share > 0.5 ? "te-like" : "tm-like")) &&
+              put(object, "effective_area_um2", quantity(mode->effective_area_um2, 1)) &&
+              put(object, "nodes_x", json_integer(mode->nodes_x)) &&
+              put(object, "nodes_y", json_integer(mode->nodes_y)) &&
+              put(object, "confinement", confinement(mode));
+  return finish(object, good);
+}
+
+static json_t *modes_point(const void *user, int i) {
+  const picket_modes_point *point = (const picket_modes_point *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "wavelength_nm", number(PK_NM_OF_UM * point->wavelength_um)) &&
+              put(object, "modes", array(point->mode_count, section_mode, point->modes)) &&
+              (!point->note || put(object, "note", text(point->note)));
+  return finish(object, good);
+}
+
+static json_t *modes_answer(const void *user, int i) {
+  const picket_modes_answer *answer = ((const picket_result *)user)->modes + i;
+  json_t *object = json_object();
+  bool good = put(object, "points", array(answer->point_count, modes_point, answer->points));
+  return finish(object, good);
+}
+
 /* ---- index ---- */
 
 static json_t *radiated_order(const void *user, int i) {
@@ -241,9 +284,9 @@ typedef struct writer {
 } writer;
 
 static const writer WRITER[] = {
-    [PK_RESULT_EDGES] = {"edges", edges_answer},   [PK_RESULT_BANDS] = {"bands", bands_answer},
-    [PK_RESULT_SLAB] = {"slab", slab_answer},      [PK_RESULT_INDEX] = {"index", index_answer},
-    [PK_RESULT_SUMMARY] = {"check", summary_item},
+    [PK_RESULT_EDGES] = {"edges", edges_answer}, [PK_RESULT_BANDS] = {"bands", bands_answer},
+    [PK_RESULT_SLAB] = {"slab", slab_answer},    [PK_RESULT_INDEX] = {"index", index_answer},
+    [PK_RESULT_MODES] = {"modes", modes_answer}, [PK_RESULT_SUMMARY] = {"check", summary_item},
 };
 
 static json_t *document(const picket_result *result) {

@@ -78,6 +78,7 @@ picket_status pk_read_light(pk_reader *reader, const pk_node *node);
 picket_status pk_read_materials(pk_reader *reader);
 picket_status pk_read_slab(pk_reader *reader, const pk_node *node);
 picket_status pk_read_cell(pk_reader *reader, const pk_node *node);
+picket_status pk_read_section(pk_reader *reader, const pk_node *node);
 picket_status pk_read_path(pk_reader *reader, const pk_node *node);
 
 /* The number of the material that a value names. */

@@ -21,8 +21,9 @@ enum {
   KEY_CELL,
   KEY_PATH,
   KEY_SLAB,
+  KEY_SECTION,
   KEY_LATER, /* blocks of the format that no command reads yet: any content is let through */
-  KEY_COUNT = KEY_LATER + 6
+  KEY_COUNT = KEY_LATER + 5
 };
 static const pk_key keys[KEY_COUNT] = {
     [KEY_FORMAT] = {"format", false},
@@ -33,8 +34,8 @@ static const pk_key keys[KEY_COUNT] = {
     [KEY_CELL] = {"cell", false},
     [KEY_PATH] = {"path", false},
     [KEY_SLAB] = {"slab", false},
-    [KEY_LATER] = {"section", false},
-    {"channel", false},
+    [KEY_SECTION] = {"section", false},
+    [KEY_LATER] = {"channel", false},
     {"aim", false},
     {"tolerance", false},
     {"taper", false},
@@ -89,6 +90,9 @@ static picket_status read_blocks(pk_reader *reader, const pk_node *const *values
   }
   if (status == PICKET_OK && values[KEY_SLAB]) {
     status = pk_read_slab(reader, values[KEY_SLAB]);
+  }
+  if (status == PICKET_OK && values[KEY_SECTION]) {
+    status = pk_read_section(reader, values[KEY_SECTION]);
   }
   return status;
 }

@@ -18,6 +18,8 @@ void pk_problem_free(pk_problem *problem) {
   pk_free(context, problem->path.point);
   pk_free(context, (void *)problem->slab.recipe.film_material);
   pk_free(context, (void *)problem->slab.recipe.film_thickness_um);
+  pk_geometry_free(problem->section.geometry);
+  pk_free(context, problem->section.used);
   pk_free(context, problem);
   pk_context_release(context);
 }

@@ -13,9 +13,9 @@
 typedef struct pk_light {
   bool given;
   pk_place place;
-  int count;            /* wavelengths, rising */
+  int count; /* wavelengths, rising */
   double *wavelength_um;
-  bool wanted[2];       /* [PK_EY], [PK_HY] */
+  bool wanted[2]; /* [PK_EY], [PK_HY] */
 } pk_light;
 
 typedef struct pk_path_point {
@@ -32,9 +32,19 @@ typedef struct pk_path {
 typedef struct pk_slab_block {
   bool given;
   pk_place place;
-  pk_slab_recipe recipe;  /* arrays owned by the block; `order` unused */
-  bool wanted[2];         /* [PK_SLAB_TE], [PK_SLAB_TM] */
+  pk_slab_recipe recipe; /* arrays owned by the block; `order` unused */
+  bool wanted[2];        /* [PK_SLAB_TE], [PK_SLAB_TM] */
 } pk_slab_block;
+
+/* A section: its painted plane (u = x, v = y), whose media are numbers of the materials. */
+typedef struct pk_section_block {
+  bool given;
+  pk_place place;
+  pk_geometry *geometry;
+  bool *used;                   /* [materials] named by the block */
+  double span_um[2];            /* width and height of the window around (0, 0); 0: not given */
+  double low_um[2], high_um[2]; /* extent of the shapes with ends; low above high: none */
+} pk_section_block;
 
 typedef struct pk_problem {
   picket_context *context; /* held */
@@ -48,6 +58,7 @@ typedef struct pk_problem {
   double smallest_um; /* of the shapes in the file, for advice */
   pk_path path;
   pk_slab_block slab;
+  pk_section_block section;
 } pk_problem;
 
 /* Accepts null and half-built problems. */

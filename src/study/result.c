@@ -79,6 +79,18 @@ static void free_slab(picket_context *context, int count, picket_slab_answer *an
   pk_free(context, answers);
 }
 
+static void free_modes(picket_context *context, picket_modes_answer *answer) {
+  picket_modes_point *points = answer ? (picket_modes_point *)answer->points : NULL;
+  for (int p = 0; points && p < answer->point_count; p++) {
+    for (int m = 0; m < points[p].mode_count; m++) {
+      pk_free(context, (void *)points[p].modes[m].confinement);
+    }
+    pk_free(context, (void *)points[p].modes);
+  }
+  pk_free(context, points);
+  pk_free(context, answer);
+}
+
 static void free_index(picket_context *context, int count, picket_index_answer *answers) {
   for (int i = 0; answers && i < count; i++) {
     picket_index_point *points = (picket_index_point *)answers[i].points;
@@ -126,6 +138,7 @@ void pk_result_free(picket_result *result) {
   free_edges(context, result->count, result->edges);
   free_bands(context, result->count, result->bands);
   free_slab(context, result->count, result->slab);
+  free_modes(context, result->modes);
   free_index(context, result->count, result->index);
   free_derivatives(result);
   free_summary(result);

@@ -7,6 +7,7 @@
 #include <picket/derivative.h>
 #include <picket/edges.h>
 #include <picket/index.h>
+#include <picket/modes.h>
 #include <picket/slab.h>
 
 #include "base/context.h"
@@ -15,6 +16,7 @@ typedef enum pk_result_kind {
   PK_RESULT_EDGES,
   PK_RESULT_BANDS,
   PK_RESULT_SLAB,
+  PK_RESULT_MODES,
   PK_RESULT_INDEX,
   PK_RESULT_EDGE_DERIVATIVES,
   PK_RESULT_INDEX_DERIVATIVES,
@@ -40,6 +42,7 @@ struct picket_result {
   picket_edges_answer *edges; /* arrays inside the answers are owned by the result */
   picket_bands_answer *bands;
   picket_slab_answer *slab;
+  picket_modes_answer *modes;
   picket_index_answer *index;
   picket_edge_derivatives *edge_derivatives;
   picket_index_derivatives *index_derivatives;

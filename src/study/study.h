@@ -15,6 +15,8 @@ picket_status pk_study_bands(const pk_problem *problem, const picket_options *op
                              picket_result **out);
 picket_status pk_study_slab(const pk_problem *problem, const picket_options *options,
                             picket_result **out);
+picket_status pk_study_modes(const pk_problem *problem, const picket_options *options,
+                             picket_result **out);
 picket_status pk_study_index(const pk_problem *problem, const picket_options *options,
                              picket_result **out);
 

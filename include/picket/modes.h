@@ -1,0 +1,72 @@
+/* Full-vector modes of a section: a plane (x across, y up) that does not vary along z. */
+#ifndef PICKET_MODES_H
+#define PICKET_MODES_H
+
+#include <picket/options.h>
+#include <picket/problem.h>
+#include <picket/result.h>
+
+#ifdef __cplusplus
+extern "C" {
+#endif
+
+/* Share of the electric energy ∫ε|E|² of a mode that is in a material. */
+typedef struct picket_confinement {
+  const char *material; /* its name; borrowed from the result */
+  double share;         /* 0 to 1; the shares of a mode add up to 1 */
+} picket_confinement;
+
+typedef struct picket_section_mode {
+  int order;                          /* by falling index, from 0 */
+  picket_quantity index;              /* Re β/k0 */
+  picket_quantity group_index;        /* dβ/dk0, material dispersion included */
+  picket_quantity loss_db_per_cm;     /* of power, from Im β: absorption and leakage */
+  picket_quantity effective_area_um2; /* (∫S_z dA)² / ∫S_z² dA */
+  double ex_share; /* of the transverse electric energy ∫ε(|E_x|² + |E_y|²), that along x; 1 is a
+                      te-like mode of a flat guide, 0 a tm-like one. From the finest grid, as are
+                      the numbers below */
+  int nodes_x, nodes_y; /* zeros of the stronger of E_x and E_y along x and y */
+  int material_count;
+  const picket_confinement *confinement; /* borrowed from the result */
+} picket_section_mode;
+
+typedef struct picket_modes_point {
+  double wavelength_um;
+  int mode_count;
+  const picket_section_mode *modes; /* by falling index; borrowed from the result */
+  const char *note;                 /* why there is no mode; null otherwise */
+} picket_modes_point;
+
+typedef struct picket_modes_answer {
+  int point_count;
+  const picket_modes_point *points; /* borrowed from the result */
+} picket_modes_answer;
+
+/* Guided modes of the problem's `section` at each wavelength of its `light`: the first
+ * `options->count` by index, all of them (up to 20) if that is 0. Mirror planes are used where the
+ * section has them. The window is chosen from how fast the modes decay unless the section gives
+ * one, whose border is then an electric wall.
+ *
+ * `index` and `group_index` are refined until their bars are below options->accuracy. Modes above
+ * the highest index that a wave can have far out are guided. If there is none because a side (a
+ * substrate) has a higher index than the guide's modes, the modes of the guide without that side
+ * are followed into it: they leak, and loss_db_per_cm says how much.
+ *
+ * PICKET_ERROR_INPUT without section or wavelengths, PICKET_ERROR_RANGE outside a material's range,
+ * PICKET_ERROR_NUMERIC, PICKET_ERROR_MEMORY, PICKET_ERROR_STOPPED. Cost per wavelength: three grids
+ * for each family of modes (four families for two mirror planes), on each one factorisation. */
+PICKET_EXPORT picket_status picket_modes_find(picket_problem *problem,
+                                              const picket_options *options, picket_result **out);
+
+/* 1 for a result of picket_modes_find; 0 for another kind of result. */
+PICKET_EXPORT int picket_modes_count(const picket_result *result);
+
+/* PICKET_ERROR_ARGUMENT if i or the kind of result is wrong; `out` is then untouched. */
+PICKET_EXPORT picket_status picket_modes_get(const picket_result *result, int i,
+                                             picket_modes_answer *out);
+
+#ifdef __cplusplus
+}
+#endif
+
+#endif

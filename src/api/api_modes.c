@@ -1,0 +1,20 @@
+/* See picket/modes.h. */
+#include "api/border.h"
+#include "study/study.h"
+
+picket_status picket_modes_find(picket_problem *problem, const picket_options *options,
+                                picket_result **out) {
+  return pk_border_study(problem, options, out, pk_study_modes);
+}
+
+int picket_modes_count(const picket_result *result) {
+  return pk_border_count(result, PK_RESULT_MODES);
+}
+
+picket_status picket_modes_get(const picket_result *result, int i, picket_modes_answer *out) {
+  if (i < 0 || i >= picket_modes_count(result) || !out) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  *out = result->modes[i];
+  return PICKET_OK;
+}

@@ -1,0 +1,174 @@
+/* The modes of a section at the wavelengths of a problem.
+ *
+ * At each wavelength: a first look on the base grid counts the guided modes of every family (even
+ * or odd at the mirror planes) and says how far they reach; then each family is solved on exactly
+ * proportional grids, extrapolated and given bars, until those are below the accuracy asked. */
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include "base/memory.h"
+#include "study/section_family.h"
+#include "study/study.h"
+
+enum { MOST_MODES = 20, FAMILIES = 4 };
+
+static const char NO_MODE[] = "the section guides no mode at this wavelength";
+
+typedef struct work {
+  const pk_problem *problem;
+  const picket_options *options;
+  picket_result *result;
+  pk_section_survey survey;
+  int most; /* modes wanted */
+  int count;
+  pk_section_family family[FAMILIES];
+} work;
+
+static void list_families(work *w) {
+  static const pk_end planes[2] = {PK_END_ZERO, PK_END_FREE};
+  int along_x = w->survey.mirror[0] ? 2 : 1, along_y = w->survey.mirror[1] ? 2 : 1;
+  w->count = 0;
+  for (int i = 0; i < along_x; i++) {
+    for (int j = 0; j < along_y; j++) {
+      w->family[w->count++] =
+          (pk_section_family){.survey = &w->survey, .plane = {planes[i], planes[j]}};
+    }
+  }
+}
+
+/* Of all families together the `most` modes of highest index are kept. */
+static void keep_highest(work *w) {
+  for (;;) {
+    int total = 0, weakest = -1;
+    for (int f = 0; f < w->count; f++) {
+      total += w->family[f].count;
+      if (w->family[f].count > 0 &&
+          (weakest < 0 || w->family[f].lowest[w->family[f].count - 1] <
+                              w->family[weakest].lowest[w->family[weakest].count - 1])) {
+        weakest = f;
+      }
+    }
+    if (total <= w->most) {
+      return;
+    }
+    w->family[weakest].count--;
+  }
+}
+
+static picket_status look(work *w, int *total) {
+  picket_status status = PICKET_OK;
+  *total = 0;
+  list_families(w);
+  for (int f = 0; status == PICKET_OK && f < w->count; f++) {
+    status = pk_section_family_look(&w->family[f], w->most);
+    *total += w->family[f].count;
+  }
+  return status;
+}
+
+static int compare_modes(const void *a, const void *b) {
+  double x = ((const picket_section_mode *)a)->index.value;
+  double y = ((const picket_section_mode *)b)->index.value;
+  return (x < y) - (x > y);
+}
+
+/* All families' modes in one list. */
+static picket_status fill_modes(work *w, int total, picket_modes_point *point) {
+  picket_section_mode *modes = PK_NEW(w->problem->context, total, picket_section_mode);
+  if (!modes) {
+    return PICKET_ERROR_MEMORY;
+  }
+  point->modes = modes;
+  picket_status status = PICKET_OK;
+  for (int f = 0; status == PICKET_OK && f < w->count; f++) {
+    if (w->family[f].count > 0) {
+      status = pk_section_family_converge(&w->family[f], w->options, w->result,
+                                          modes + point->mode_count);
+      point->mode_count += status == PICKET_OK ? w->family[f].count : 0;
+    }
+  }
+  qsort(modes, (size_t)point->mode_count, sizeof *modes, compare_modes);
+  for (int i = 0; i < point->mode_count; i++) {
+    modes[i].order = i;
+  }
+  return status;
+}
+
+static picket_status fill_point(work *w, double wavelength_um, picket_modes_point *point) {
+  point->wavelength_um = wavelength_um;
+  picket_status status = pk_section_survey_take(w->problem, wavelength_um, &w->survey);
+  int total = 0;
+  if (status == PICKET_OK) {
+    status = look(w, &total);
+  }
+  bool leaky = false;
+  if (status == PICKET_OK && total == 0) {
+    status = pk_section_survey_set_apart(&w->survey, &leaky);
+    if (status == PICKET_OK && leaky) {
+      status = look(w, &total);
+    }
+  }
+  if (status == PICKET_OK && total == 0) {
+    point->note = NO_MODE;
+  } else if (status == PICKET_OK) {
+    keep_highest(w);
+    status = fill_modes(w, total, point);
+  }
+  pk_section_survey_clear(&w->survey);
+  return status;
+}
+
+static picket_status fill(work *w) {
+  picket_context *context = w->problem->context;
+  const pk_light *light = &w->problem->light;
+  w->result->modes = PK_NEW(context, 1, picket_modes_answer);
+  picket_modes_point *points =
+      w->result->modes ? PK_NEW(context, light->count, picket_modes_point) : NULL;
+  if (!points) {
+    return PICKET_ERROR_MEMORY;
+  }
+  w->result->count = 1;
+  w->result->modes->points = points;
+  w->result->modes->point_count = light->count;
+  picket_status status = PICKET_OK;
+  for (int i = 0; status == PICKET_OK && i < light->count; i++) {
+    status = pk_progress(context, "modes of the section", (double)i / light->count);
+    if (status == PICKET_OK) {
+      status = fill_point(w, light->wavelength_um[i], &points[i]);
+    }
+  }
+  return status;
+}
+
+static picket_status check(const pk_problem *problem) {
+  if (!problem->section.given) {
+    return pk_fail(problem->context, PICKET_ERROR_INPUT,
+                   "the problem has no \"section\", which is what the modes are asked of");
+  }
+  if (problem->light.count == 0) {
+    return pk_fail_at(problem->context, PICKET_ERROR_INPUT, problem->section.place,
+                      "the modes of a section need \"light.wavelength_nm\", which is not given");
+  }
+  return PICKET_OK;
+}
+
+picket_status pk_study_modes(const pk_problem *problem, const picket_options *options,
+                             picket_result **out) {
+  work w = {.problem = problem, .options = options};
+  w.most = options->count > 0 ? (int)options->count : MOST_MODES;
+  picket_status status = check(problem);
+  if (status == PICKET_OK) {
+    status = pk_result_create(problem->context, PK_RESULT_MODES, problem->name, options->accuracy,
+                              &w.result);
+  }
+  if (status == PICKET_OK) {
+    status = fill(&w);
+  }
+  if (status != PICKET_OK) {
+    pk_result_free(w.result);
+    return status;
+  }
+  *out = w.result;
+  return PICKET_OK;
+}
