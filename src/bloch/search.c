@@ -13,9 +13,9 @@ enum { MOST_WAVES = 80 }; /* looked at closely; those that change least come fir
  * (measured 0.00 to 0.1; modes 0.4 to 1.0). */
 static const double LEAST_INSIDE = 0.2;
 
-/* Sensitivity to the layers above which a wave is one of theirs: leaky modes measured 1e-6 to 1e-4,
- * layer waves above 1e-2. */
-static const double MOST_LAYER_SHARE = 2e-3;
+/* Sensitivity to the layers above which a wave is one of theirs: layer waves measured above 2e-2,
+ * bound modes that reach into the layers up to 1e-2; see PK_LAYER_SHARE_SURE. */
+static const double MOST_LAYER_SHARE = 2e-2;
 
 /* Im k/k0 above which the sign of the decay tells forward from backward; below, the layers of a
  * first look may blur it, and the power flow tells. */
@@ -84,13 +84,6 @@ static void insert(pk_found_wave *list, int *count, int capacity, picket_context
   list[at] = *wave;
 }
 
-static void number(int count, pk_found_wave *found) {
-  for (int i = 0; i < count; i++) {
-    int least = i > 0 ? found[i - 1].order + 1 : 0;
-    found[i].order = found[i].character.nodes > least ? found[i].character.nodes : least;
-  }
-}
-
 typedef struct hunt {
   picket_context *context;
   pk_solver *solver;
@@ -149,7 +142,6 @@ picket_status pk_wave_search(pk_solver *solver, const pk_character_request *requ
     pk_found_waves_clear(h.context, h.count, found);
     return status;
   }
-  number(h.count, found);
   *count = h.count;
   return PICKET_OK;
 }

@@ -54,12 +54,18 @@ picket_status pk_look_open(pk_look *look, const pk_cell_grid *base, int m, pk_le
   return PICKET_OK;
 }
 
+/* Waves looked at beyond those wanted, as some may not be modes. */
+enum { SPARE = 4 };
+
+/* Distance of the layers in decay lengths of a wave that reaches them: what it owes them falls by
+ * exp(-6). */
+static const double DOUBT_DECAYS = 3;
+
 static picket_status keep_found(pk_look *look, const pk_level *level, int count,
                                 const pk_found_wave *found) {
   picket_status status = PICKET_OK;
   for (int i = 0; status == PICKET_OK && i < count; i++) {
     pk_followed *f = &look->mode[i];
-    f->order = found[i].order;
     f->character = found[i].character;
     status = pk_follow_remember(look->problem->context, level->op, &found[i].wave, f);
     look->count = i + 1;
@@ -74,12 +80,12 @@ static picket_status look_on(pk_look *look, const pk_cell_grid *base, int wanted
   if (status != PICKET_OK) {
     return status;
   }
-  pk_found_wave *found = PK_NEW(context, wanted, pk_found_wave);
-  int count = 0;
+  int most = wanted + SPARE, count = 0;
+  pk_found_wave *found = PK_NEW(context, most, pk_found_wave);
   status = found ? PICKET_OK : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
     pk_character_request request = pk_look_request(look);
-    status = pk_wave_search(level.solver, &request, wanted, found, &count);
+    status = pk_wave_search(level.solver, &request, most, found, &count);
   }
   if (status == PICKET_OK) {
     status = keep_found(look, &level, count, found);
@@ -87,6 +93,80 @@ static picket_status look_on(pk_look *look, const pk_cell_grid *base, int wanted
   pk_found_waves_clear(context, found ? count : 0, found);
   pk_free(context, found);
   pk_level_close(&level);
+  return status;
+}
+
+/* On a grid: true if a wave in doubt is still there and hardly depends on the layers. */
+static picket_status prove_on(pk_look *look, const pk_cell_grid *base, pk_followed *mode,
+                              bool *bound) {
+  picket_context *context = look->problem->context;
+  pk_level level;
+  pk_wave wave = {0};
+  pk_character character;
+  bool same = false;
+  picket_status status = pk_look_open(look, base, 2, &level);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  status = pk_look_follow(look, &level, mode, &wave, &character, &same);
+  *bound = status == PICKET_OK && same && character.layer_share < PK_LAYER_SHARE_SURE;
+  if (*bound) {
+    mode->character = character;
+    status = pk_follow_remember(context, level.op, &wave, mode);
+  } else if (status == PICKET_ERROR_NUMERIC) {
+    pk_message_clear(context);
+    status = PICKET_OK;
+  }
+  pk_wave_clear(context, &wave);
+  pk_level_close(&level);
+  return status;
+}
+
+/* Whether a wave that reaches the layers is a mode: they are moved out as far as it reaches. */
+static picket_status prove(pk_look *look, pk_followed *mode, double accuracy, bool *bound) {
+  const pk_survey kept = look->survey;
+  pk_survey own = kept;
+  pk_survey_open_sides(&own, creal(mode->character.k), look->k0, accuracy);
+  for (int side = 0; side < 2; side++) {
+    if (own.layer[side].thickness == 0) {
+      look->survey.decay_um[side] = fmax(kept.decay_um[side], DOUBT_DECAYS * own.decay_um[side]);
+    }
+  }
+  pk_cell_grid base;
+  pk_lay_plan plan = {.reach = 1, .mirror = false, .zero_walls = true};
+  picket_status status = pk_survey_lay(&look->survey, &plan, &base);
+  if (status == PICKET_OK) {
+    status = prove_on(look, &base, mode, bound);
+    pk_cell_grid_clear(look->problem->context, &base);
+  }
+  look->survey = kept;
+  pk_log(look->problem->context, PICKET_LOG_DETAIL, "wave n = %.6f reaches the layers: %s",
+         creal(mode->character.k) / look->k0, *bound ? "a mode" : "left out");
+  return status;
+}
+
+/* Leaves out what is no mode, and what was not asked for; gives orders: nodes, raised where two
+ * modes have the same number. */
+static picket_status settle(pk_look *look, int wanted, double accuracy) {
+  picket_status status = PICKET_OK;
+  int kept = 0, found = look->count;
+  for (int i = 0; i < found; i++) {
+    pk_followed *f = &look->mode[i];
+    bool bound = f->character.layer_share < PK_LAYER_SHARE_SURE;
+    if (status == PICKET_OK && !bound && kept < wanted) {
+      status = prove(look, f, accuracy, &bound);
+    }
+    if (status != PICKET_OK || !bound || kept == wanted) {
+      pk_follow_forget(look->problem->context, f);
+      continue;
+    }
+    int least = kept > 0 ? look->mode[kept - 1].order + 1 : 0;
+    f->order = f->character.nodes > least ? f->character.nodes : least;
+    pk_followed moved = *f;
+    *f = (pk_followed){0};
+    look->mode[kept++] = moved;
+  }
+  look->count = kept;
   return status;
 }
 
@@ -113,7 +193,7 @@ static void prepare_sides(pk_look *look, double accuracy) {
   look->survey = worst;
 }
 
-static picket_status first_look(pk_look *look, int wanted) {
+static picket_status first_look(pk_look *look, int wanted, double accuracy) {
   pk_cell_grid base;
   pk_lay_plan plan = {.reach = 1, .mirror = false, .zero_walls = true};
   pk_survey_absorb(&look->survey, look->k0);
@@ -121,6 +201,9 @@ static picket_status first_look(pk_look *look, int wanted) {
   if (status == PICKET_OK) {
     status = look_on(look, &base, wanted);
     pk_cell_grid_clear(look->problem->context, &base);
+  }
+  if (status == PICKET_OK) {
+    status = settle(look, wanted, accuracy);
   }
   return status;
 }
@@ -137,8 +220,8 @@ picket_status pk_look_take(const pk_problem *problem, pk_polarization polarizati
   }
   picket_status status = pk_survey_take(problem, polarization, &look.survey);
   if (status == PICKET_OK) {
-    look.mode = PK_NEW(problem->context, wanted, pk_followed);
-    status = look.mode ? first_look(&look, wanted) : PICKET_ERROR_MEMORY;
+    look.mode = PK_NEW(problem->context, wanted + SPARE, pk_followed);
+    status = look.mode ? first_look(&look, wanted, accuracy) : PICKET_ERROR_MEMORY;
   }
   if (status != PICKET_OK) {
     pk_look_clear(&look);

@@ -67,10 +67,10 @@ picket_status pk_radiation_take(picket_context *context, const pk_operator *op,
       double complex a = harmonic_on(op, line, km, request->pitch_um, wave->right);
       double across = sqrt(in_side * in_side - creal(km) * creal(km));
       double permittivity = survey->polarization == PK_HY ? in_side * in_side : 1;
-      pk_radiation row = {.mode = mode, .power = across * creal(a * conj(a)) / permittivity};
+      pk_radiation row = {
+          .mode = mode, .power = across * creal(a * conj(a)) / permittivity, .in_side = in_side};
       row.wave.order = m;
       row.wave.side = side ? PICKET_SIDE_HIGH : PICKET_SIDE_LOW;
-      row.wave.angle_rad = asin(creal(km) / in_side);
       status = add_row(context, table, &row);
     }
   }
@@ -95,7 +95,7 @@ bool pk_radiation_has_grating_order(const pk_radiation_table *table, int mode) {
 }
 
 picket_status pk_radiation_fill(picket_context *context, const pk_radiation_table *table, int mode,
-                                picket_bloch_mode *answer) {
+                                double k, double pitch_um, picket_bloch_mode *answer) {
   picket_radiated_order *orders =
       PK_NEW(context, pk_radiation_count(table, mode), picket_radiated_order);
   if (!orders) {
@@ -108,7 +108,11 @@ picket_status pk_radiation_fill(picket_context *context, const pk_radiation_tabl
   }
   for (int i = 0; i < table->count; i++) {
     if (table->row[i].mode == mode) {
-      orders[count] = table->row[i].wave;
+      const pk_radiation *row = &table->row[i];
+      double sine = (k + 2 * PI * row->wave.order / pitch_um) / row->in_side;
+      orders[count] = row->wave;
+      /* An order that only just radiates on the last grid may not do so any more at this k. */
+      orders[count].angle_rad = asin(fmax(-1, fmin(1, sine)));
       orders[count++].share = total > 0 ? table->row[i].power / total : 0;
     }
   }

@@ -16,6 +16,7 @@ typedef struct pk_radiation {
   int mode; /* its order */
   picket_radiated_order wave;
   double power;
+  double in_side; /* wavenumber of the side, 1/µm */
 } pk_radiation;
 
 /* Radiated orders of every mode of a point. */
@@ -32,9 +33,10 @@ picket_status pk_radiation_take(picket_context *context, const pk_operator *op,
 int pk_radiation_count(const pk_radiation_table *table, int mode);
 /* True if an order besides the mode's own (m = 0) radiates. */
 bool pk_radiation_has_grating_order(const pk_radiation_table *table, int mode);
-/* The orders of a mode in its answer, with shares. */
+/* The orders of a mode in its answer, with shares, and with the angles of the wavenumber k (its
+ * real part, extrapolated). */
 picket_status pk_radiation_fill(picket_context *context, const pk_radiation_table *table, int mode,
-                                picket_bloch_mode *answer);
+                                double k, double pitch_um, picket_bloch_mode *answer);
 void pk_radiation_clear(picket_context *context, pk_radiation_table *table);
 
 #endif
