@@ -179,6 +179,44 @@ static void write_slab_point(sheet *s, const picket_slab_answer *answer,
   }
 }
 
+static void write_edge_derivatives(sheet *s, const picket_result *result) {
+  static const char *const header[] = {"polarization",
+                                       "order",
+                                       "short_nm_per_unit",
+                                       "short_uncertainty_nm_per_unit",
+                                       "long_nm_per_unit",
+                                       "long_uncertainty_nm_per_unit",
+                                       NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int i = 0; i < result->count; i++) {
+    const picket_edge_derivatives *answer = &result->edge_derivatives[i];
+    for (int b = 0; b < answer->band_count; b++) {
+      put_text(s, pk_word_polarization(answer->polarization));
+      put_number(s, answer->bands[b].order);
+      put_quantity(s, answer->bands[b].short_um, PK_NM_OF_UM);
+      put_quantity(s, answer->bands[b].long_um, PK_NM_OF_UM);
+      end_row(s);
+    }
+  }
+}
+
+static void write_index_derivatives(sheet *s, const picket_result *result) {
+  static const char *const header[] = {"polarization", "wavelength_nm", "bloch_index_per_unit",
+                                       "bloch_index_uncertainty_per_unit", NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int i = 0; i < result->count; i++) {
+    const picket_index_derivatives *answer = &result->index_derivatives[i];
+    for (int p = 0; p < answer->point_count; p++) {
+      put_text(s, pk_word_polarization(answer->polarization));
+      put_number(s, PK_NM_OF_UM * answer->points[p].wavelength_um);
+      put_quantity(s, answer->points[p].bloch_index, 1);
+      end_row(s);
+    }
+  }
+}
+
 static void write_slab(sheet *s, const picket_result *result) {
   static const char *const header[] = {
       "polarization", "wavelength_nm",           "order", "index", "index_uncertainty",
@@ -320,9 +358,14 @@ static void write_summary(sheet *s, const picket_result *result) {
 
 picket_status pk_csv_write(const picket_result *result, char **out) {
   static void (*const writers[])(sheet *, const picket_result *) = {
-      [PK_RESULT_EDGES] = write_edges, [PK_RESULT_BANDS] = write_bands,
-      [PK_RESULT_SLAB] = write_slab,   [PK_RESULT_INDEX] = write_index,
-      [PK_RESULT_MODES] = write_modes, [PK_RESULT_SUMMARY] = write_summary,
+      [PK_RESULT_EDGES] = write_edges,
+      [PK_RESULT_BANDS] = write_bands,
+      [PK_RESULT_SLAB] = write_slab,
+      [PK_RESULT_INDEX] = write_index,
+      [PK_RESULT_MODES] = write_modes,
+      [PK_RESULT_SUMMARY] = write_summary,
+      [PK_RESULT_EDGE_DERIVATIVES] = write_edge_derivatives,
+      [PK_RESULT_INDEX_DERIVATIVES] = write_index_derivatives,
   };
   sheet s = {.context = result->context, .status = PICKET_OK, .fresh = true};
   writers[result->kind](&s, result);

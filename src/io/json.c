@@ -283,10 +283,49 @@ typedef struct writer {
   json_t *(*element)(const void *user, int i);
 } writer;
 
+/* Derivatives are per unit of the varied value, in nm for wavelengths like everything else here. */
+static json_t *edge_derivative(const void *user, int i) {
+  const picket_edge_derivative *band = (const picket_edge_derivative *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "order", json_integer(band->order)) &&
+              put(object, "short_nm_per_unit", quantity(band->short_um, PK_NM_OF_UM)) &&
+              put(object, "long_nm_per_unit", quantity(band->long_um, PK_NM_OF_UM));
+  return finish(object, good);
+}
+
+static json_t *edge_derivatives(const void *user, int i) {
+  const picket_edge_derivatives *answer = ((const picket_result *)user)->edge_derivatives + i;
+  json_t *object = json_object();
+  bool good = put(object, "polarization", text(pk_word_polarization(answer->polarization))) &&
+              put(object, "stop_bands", array(answer->band_count, edge_derivative, answer->bands));
+  return finish(object, good);
+}
+
+static json_t *index_derivative(const void *user, int i) {
+  const picket_index_derivative *point = (const picket_index_derivative *)user + i;
+  json_t *object = json_object();
+  bool good = put(object, "wavelength_nm", number(PK_NM_OF_UM * point->wavelength_um)) &&
+              put(object, "bloch_index_per_unit", quantity(point->bloch_index, 1));
+  return finish(object, good);
+}
+
+static json_t *index_derivatives(const void *user, int i) {
+  const picket_index_derivatives *answer = ((const picket_result *)user)->index_derivatives + i;
+  json_t *object = json_object();
+  bool good = put(object, "polarization", text(pk_word_polarization(answer->polarization))) &&
+              put(object, "points", array(answer->point_count, index_derivative, answer->points));
+  return finish(object, good);
+}
+
 static const writer WRITER[] = {
-    [PK_RESULT_EDGES] = {"edges", edges_answer}, [PK_RESULT_BANDS] = {"bands", bands_answer},
-    [PK_RESULT_SLAB] = {"slab", slab_answer},    [PK_RESULT_INDEX] = {"index", index_answer},
-    [PK_RESULT_MODES] = {"modes", modes_answer}, [PK_RESULT_SUMMARY] = {"check", summary_item},
+    [PK_RESULT_EDGES] = {"edges", edges_answer},
+    [PK_RESULT_BANDS] = {"bands", bands_answer},
+    [PK_RESULT_SLAB] = {"slab", slab_answer},
+    [PK_RESULT_INDEX] = {"index", index_answer},
+    [PK_RESULT_MODES] = {"modes", modes_answer},
+    [PK_RESULT_SUMMARY] = {"check", summary_item},
+    [PK_RESULT_EDGE_DERIVATIVES] = {"edge derivatives", edge_derivatives},
+    [PK_RESULT_INDEX_DERIVATIVES] = {"index derivatives", index_derivatives},
 };
 
 static json_t *document(const picket_result *result) {
