@@ -14,11 +14,13 @@ static const char GOOD[] =
     "light: {wavelength_nm: [1500, 1550]}\n"
     "cell: {pitch_nm: 200, cladding: oxide, lateral: uniform, shapes: [{stripe: {fill: core, "
     "across: z, from_nm: -50, to_nm: 50}}]}\n"
-    "slab: {substrate: oxide, films: [{fill: core, thickness_nm: 220}], cover: oxide}\n";
+    "slab: {substrate: oxide, films: [{fill: core, thickness_nm: 220}], cover: oxide}\n"
+    "section: {cladding: oxide, span_nm: [600, 400], shapes: [{rect: {fill: core, width_nm: 300, "
+    "height_nm: 200}}]}\n";
 
 typedef picket_status (*find)(picket_problem *, const picket_options *, picket_result **);
 static const find finds[] = {picket_edges_find, picket_bands_find, picket_slab_find,
-                             picket_index_find};
+                             picket_index_find, picket_modes_find};
 enum { FINDS = sizeof finds / sizeof *finds };
 
 static picket_context *context;

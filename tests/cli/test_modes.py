@@ -1,0 +1,83 @@
+"""picket modes: full-vector modes of a section, as text, JSON and CSV."""
+
+import csv
+import json
+import unittest
+
+import tool
+
+WIRE = tool.MATERIALS.format(name=json.dumps('wire')) + '''light: {wavelength_nm: 1550}
+section:
+  cladding: oxide
+  shapes:
+    - rect: {fill: core, width_nm: 450, height_nm: 220, at_nm: [0, 110]}
+'''
+
+# One medium between electric walls, whose modes are known in closed form.
+FILLED = tool.MATERIALS.format(name=json.dumps('metal box')) + '''light: {wavelength_nm: [900, 1000]}
+section:
+  cladding: oxide
+  span_nm: [1000, 600]
+  shapes:
+    - rect: {fill: oxide, width_nm: 500, height_nm: 300}
+'''
+
+
+class Modes(tool.ToolTest):
+    def ask(self, text, *words, status=0):
+        done = self.run_tool('modes', '--json', self.write(text), *words, status=status)
+        document = tool.document(done.stdout, 'modes')
+        answer, = document['results']
+        return document, answer['points']
+
+    def test_a_wire(self):
+        path, table = self.write(WIRE), self.folder / 'modes.csv'
+        done = self.run_tool('modes', '--count', '2', '--accuracy', '1e-3', '--csv', str(table), path)
+        self.assertIn('te-like, 0 0', done.stdout)
+        self.assertIn('tm-like, 0 0', done.stdout)
+        self.assertIn('% in core', done.stdout)
+        _, (point,) = self.ask(WIRE, '--count', '2', '--accuracy', '1e-3')
+        te, tm = point['modes']
+        self.assertEqual([te['order'], tm['order']], [0, 1])
+        self.assertEqual([te['polarization'], tm['polarization']], ['te-like', 'tm-like'])
+        self.assertGreater(te['ex_share'], 0.98)
+        self.assertLess(tm['ex_share'], 0.06)
+        for mode in (te, tm):
+            self.assertEqual(mode['loss_db_per_cm'], {'value': 0, 'uncertainty': 0})
+            self.assertAlmostEqual(sum(mode['confinement'].values()), 1, delta=1e-6)
+            # Light that is slowed by geometry: the group index of a wire lies above its index.
+            self.assertGreater(mode['group_index']['value'], mode['index']['value'])
+        self.assertGreater(te['confinement']['core'], tm['confinement']['core'])
+        rows = list(csv.DictReader(table.read_text(encoding='utf-8').splitlines()))
+        self.assertEqual([float(row['index']) for row in rows], [te['index']['value'], tm['index']['value']])
+
+    def test_a_box_of_metal(self):
+        _, points = self.ask(FILLED, '--count', '3')
+        for point, wavelength in zip(points, (0.9, 1.0)):
+            known = [(1.444**2 - (p * wavelength / 2)**2 - (q * wavelength / 1.2)**2)**0.5
+                     for p, q in ((1, 0), (0, 1), (1, 1))]
+            for mode, index in zip(point['modes'], known):
+                self.assertAlmostEqual(mode['index']['value'], index, delta=mode['index']['uncertainty'])
+                # β dβ = ε k0 dk0 in a guide filled with one medium.
+                self.assertAlmostEqual(mode['group_index']['value'], 1.444**2 / index,
+                                       delta=mode['group_index']['uncertainty'])
+            self.assertEqual(len(point['modes']), 3)
+
+    def test_a_section_that_guides_nothing(self):
+        document, (point,) = self.ask(WIRE.replace('fill: core', 'fill: oxide'))
+        self.assertEqual(point['modes'], [])
+        self.assertIn('guides no mode', point['note'])
+        self.assertTrue(document['complete'])
+
+    def test_what_is_missing_is_said(self):
+        self.assert_refused('modes', self.write(tool.film()), says=['section'])
+        text = WIRE.replace('light: {wavelength_nm: 1550}\n', '')
+        self.assert_refused('modes', self.write(text), says=['light.wavelength_nm'])
+
+    def test_outside_the_range_of_a_material(self):
+        text = WIRE.replace('fill: core', 'fill: silicon').replace('1550', '400')
+        self.assert_refused('modes', self.write(text), says=['silicon', '400'])
+
+
+if __name__ == '__main__':
+    unittest.main()

@@ -1,0 +1,73 @@
+/* section: a plane across a guide. */
+#include "reading.h"
+#include "unit/near.h"
+
+static const bad_text bad_section[] = {
+    REFUSED("3:10", "section has no \"shapes\"", MATERIALS "section: {cladding: oxide}\n"),
+    REFUSED("3:10", "section has no \"cladding\"",
+            MATERIALS "section: {shapes: [{disc: {fill: si, diameter_nm: 100}}]}\n"),
+    REFUSED("3:36", "section.shapes has 0 elements",
+            MATERIALS "section: {cladding: oxide, shapes: []}\n"),
+    REFUSED("3:79", "section.shapes.0.rect.height_nm is 0, must be above 0",
+            MATERIALS "section: {cladding: oxide, shapes: [{rect: {fill: si, width_nm: 1, "
+                      "height_nm: 0}}]}\n"),
+    REFUSED("3:45", "unknown key \"length_nm\"",
+            MATERIALS "section: {cladding: oxide, shapes: [{rect: {length_nm: 1}}]}\n"),
+    REFUSED("3:65", "section.shapes.0.stripe.across is \"z\", must be one of: x, y",
+            MATERIALS "section: {cladding: oxide, shapes: [{stripe: {fill: si, across: z, from_nm: "
+                      "0, to_nm: 1}}]}\n"),
+    REFUSED("3:10", "section holds stripes only",
+            MATERIALS "section: {cladding: oxide, shapes: [{stripe: {fill: si, across: y, from_nm: "
+                      "0, to_nm: 1}}]}\n"),
+    REFUSED("3:43", "section.span_nm.1 is 0, must be above 0",
+            MATERIALS "section: {cladding: oxide, span_nm: [100, 0], shapes: [{disc: {fill: si, "
+                      "diameter_nm: 100}}]}\n"),
+};
+
+static void refuses_bad_sections(void **state) {
+  (void)state;
+  CHECK_ALL_REFUSED(bad_section);
+}
+
+static void understands_a_section(void **state) {
+  (void)state;
+  picket_context *context = plain_context();
+  pk_document *document = NULL;
+  pk_problem *p = sound(context,
+                        MATERIALS
+                        "section:\n"
+                        "  cladding: oxide\n"
+                        "  span_nm: [4000, 3000]\n"
+                        "  shapes:\n"
+                        "    - stripe: {fill: si, across: y, from_nm: -.inf, to_nm: "
+                        "-2000}\n"
+                        "    - rect: {fill: si, width_nm: 450, height_nm: 220, at_nm: "
+                        "[10, 110]}\n"
+                        "    - polygon: {fill: oxide, corners_nm: [[0, 0], [50, 0], [0, "
+                        "400]]}\n"
+                        "    - disc: {fill: si, diameter_nm: 100, at_nm: [-300, 0]}\n",
+                        &document);
+  assert_true(p->section.given);
+  assert_near(p->section.span_um[0], 4, 1e-12);
+  assert_near(p->section.span_um[1], 3, 1e-12);
+  assert_near(p->section.low_um[0], -0.35, 1e-12);
+  assert_near(p->section.high_um[0], 0.235, 1e-12);
+  assert_near(p->section.low_um[1], -0.05, 1e-12);
+  assert_near(p->section.high_um[1], 0.4, 1e-12);
+  assert_true(p->section.used[0] && p->section.used[1]);
+  assert_int_equal(pk_geometry_medium_at(p->section.geometry, 0.1, 0.1), 1);
+  assert_int_equal(pk_geometry_medium_at(p->section.geometry, 0.01, 0.01), 0);
+  assert_int_equal(pk_geometry_medium_at(p->section.geometry, 5, -30), 1);
+  assert_int_equal(pk_geometry_medium_at(p->section.geometry, 5, 30), 0);
+  pk_problem_free(p);
+  pk_document_free(document);
+  picket_context_free(context);
+}
+
+int main(void) {
+  const struct CMUnitTest tests[] = {
+      cmocka_unit_test(refuses_bad_sections),
+      cmocka_unit_test(understands_a_section),
+  };
+  return cmocka_run_group_tests(tests, NULL, NULL);
+}
