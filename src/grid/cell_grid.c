@@ -93,6 +93,10 @@ static void open_ends(const pk_cell *cell, const pk_cell_grid_wish *wish, int co
   }
   axis->from = low - wish->reach[0] * wish->decay_um[0] - wish->layer[0].thickness;
   axis->to = high + wish->reach[1] * wish->decay_um[1] + wish->layer[1].thickness;
+  if (cell->span_um > 0) { /* asked for in the file */
+    axis->from = -0.5 * cell->span_um - wish->layer[0].thickness;
+    axis->to = 0.5 * cell->span_um + wish->layer[1].thickness;
+  }
   double outer = fmin(wish->decay_um[0], wish->decay_um[1]) / STEPS_PER_DECAY;
   if (wish->outer_step_um > 0) {
     outer = fmin(outer, wish->outer_step_um);
