@@ -90,7 +90,9 @@ static picket_status sample_grids(family *f, int attempt) {
 }
 
 /* Walls where the slope vanishes move a value the other way than walls where the field does, by the
- * same amount to first order: half the difference is the error of either. */
+ * same amount to first order, so that half the difference is the error of either. The whole is
+ * taken, for terms of second order and the coarse grid it is measured on: among random cells errors
+ * of 1.2 times the half were found. */
 static picket_status sample_span_error(family *f) {
   const pk_survey *survey = f->request->survey;
   int quantities = f->request->count;
@@ -109,7 +111,7 @@ static picket_status sample_span_error(family *f) {
   status = f->request->sample(f->request->user, &base, f->m[0], f->span_error);
   pk_cell_grid_clear(f->context, &base);
   for (int i = 0; i < quantities; i++) {
-    f->span_error[i] = 0.5 * fabs(f->span_error[i] - values_of(f, f->m[0])[i]);
+    f->span_error[i] = fabs(f->span_error[i] - values_of(f, f->m[0])[i]);
   }
   return status;
 }

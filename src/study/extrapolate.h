@@ -29,7 +29,8 @@ double pk_extrapolated(const pk_error_law *law, int count, const int *m, const d
 
 /* Value and bar from `count` grids (2 to PK_GRIDS), m rising.
  * Smooth law: the value takes every grid; the bar is the largest difference to the values with the
- * last exponent left out, and without the coarsest grid, and never below rounding.
+ * last exponent left out, and without the coarsest grid, and never below rounding or, with two
+ * exponents, a share of what the extrapolation adds to the finest grid, see SMOOTH_SHARE.
  * Corners (three or four grids; exponents 2, 4 - 2α, 4): also without the finest of four grids, and
  * never below a share of what the extrapolation adds to the finest grid, see CORNER_SHARE_THREE.
  * Scattered values: least squares with h² on all grids; the bar is the step from the finest grid to
