@@ -43,11 +43,12 @@ typedef struct picket_index_derivatives {
 
 /* Derivatives of the stop-band edges with respect to the number at a dotted path of the problem,
  * e.g. "cell.pitch_nm", "cell.shapes.0.width_nm", "materials.resin.constant.index",
- * "temperature_c". path     must name a single finite number of the document options  null for the
- * defaults; count as in picket_edges_find PICKET_ERROR_INPUT if the path names no number or moving
- * the value a little makes the problem wrong; PICKET_ERROR_UNSUPPORTED where interfaces meet or
- * part, so that there is no derivative. Cost: as picket_edges_find on whole cells, plus two
- * assemblies per grid. */
+ * "temperature_c".
+ *   path     must name a single finite number that the document states
+ *   options  null for the defaults; count as in picket_edges_find
+ * PICKET_ERROR_INPUT if the path names no number or moving the value by a thousandth makes the
+ * problem wrong; PICKET_ERROR_UNSUPPORTED where interfaces meet or part, so that there is no
+ * derivative. Cost: as picket_edges_find on whole cells, plus four assemblies per grid. */
 PICKET_EXPORT picket_status picket_edge_derivatives_find(picket_problem *problem, const char *path,
                                                          const picket_options *options,
                                                          picket_result **out);

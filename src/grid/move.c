@@ -11,6 +11,25 @@ typedef struct marks {
   double *from, *to;
 } marks;
 
+/* A small move of a value leaves the distances between interfaces nearly as they were. Where one
+ * doubles or halves, two interfaces are about to meet, or have passed each other: sorted lines
+ * cannot tell. */
+static const double MOST_STRETCH = 2;
+
+static picket_status check_order(picket_context *context, int count, const double *from,
+                                 const double *to) {
+  for (int i = 0; i + 1 < count; i++) {
+    double before = from[i + 1] - from[i], after = to[i + 1] - to[i];
+    if (after > MOST_STRETCH * before || before > MOST_STRETCH * after) {
+      return pk_fail(context, PICKET_ERROR_UNSUPPORTED,
+                     "interfaces %g um apart meet or part at this value: there is no derivative "
+                     "here",
+                     before);
+    }
+  }
+  return PICKET_OK;
+}
+
 static picket_status take_lines(picket_context *context, const pk_cell *from, const pk_cell *to,
                                 pk_axis_name axis, marks *m) {
   double *a = NULL, *b = NULL;
@@ -27,6 +46,9 @@ static picket_status take_lines(picket_context *context, const pk_cell *from, co
     m->from = PK_NEW(context, count_a + 2, double);
     m->to = PK_NEW(context, count_a + 2, double);
     status = m->from && m->to ? PICKET_OK : PICKET_ERROR_MEMORY;
+  }
+  if (status == PICKET_OK) {
+    status = check_order(context, count_a, a, b);
   }
   for (int i = 0; status == PICKET_OK && i < count_a; i++) {
     m->from[m->count] = a[i];

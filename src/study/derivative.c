@@ -1,8 +1,9 @@
 /* See derivative.h.
  *
  * From lᵀ T(p, k0, ξ) r = 0 to first order (H. Hellmann 1937, R. P. Feynman, Phys. Rev. 56, 340
- * (1939)): at a fixed phase      dk0/dp   = -lᵀ(∂T/∂p)r / lᵀ(∂T/∂k0)r at a fixed frequency  dlnξ/dp
- * = -lᵀ(∂T/∂p)r / lᵀ(ξ ∂T/∂ξ)r,  k = (2πm - i ln ξ)/Λ. */
+ * (1939)):
+ *   at a fixed phase      dk0/dp = -lᵀ(∂T/∂p)r / lᵀ(∂T/∂k0)r,
+ *   at a fixed frequency  d ln ξ/dp = -lᵀ(∂T/∂p)r / lᵀ(ξ ∂T/∂ξ)r,   k = (2πm - i ln ξ)/Λ. */
 #include "study/derivative.h"
 
 #include <math.h>
@@ -50,13 +51,13 @@ static picket_status edge_slope(pk_level *level, pk_slope *slope, int order,
     status = pk_media_frequency_form(&level->media, level->op, phase, resonance.k0, left,
                                      resonance.field, &by_frequency);
   }
-  double k0[2] = {resonance.k0, resonance.k0};
+  double k0 = resonance.k0, held[PK_NEIGHBOURS] = {k0, k0, k0, k0};
   if (status == PICKET_OK) {
-    status = pk_slope_form(slope, phase, k0, left, resonance.field, &by_value);
+    status = pk_slope_form(slope, level, phase, k0, held, left, resonance.field, &by_value);
   }
   if (status == PICKET_OK) {
     double dk0 = -creal(by_value) / creal(by_frequency);
-    *value = -2 * PI / (resonance.k0 * resonance.k0) * dk0;
+    *value = -2 * PI / (k0 * k0) * dk0;
   }
   pk_free(context, left);
   pk_resonance_clear(context, &resonance);
@@ -180,7 +181,7 @@ picket_status pk_study_edge_derivatives(const pk_variation *variation,
 typedef struct index_slopes {
   const pk_variation *variation;
   pk_look look;
-  double k0[2]; /* of the neighbours: the wavelength itself may be the value */
+  double k0[PK_NEIGHBOURS]; /* the wavelength itself may be the value */
 } index_slopes;
 
 /* dn_B/dp of the wave of a mode on a grid. */
@@ -188,14 +189,18 @@ static picket_status index_slope(index_slopes *s, pk_level *level, pk_slope *slo
                                  const pk_wave *wave, double complex k, double *value) {
   pk_phase phase = {wave->xi, 1, 0};
   double complex by_value;
-  picket_status status = pk_slope_form(slope, phase, s->k0, wave->left, wave->right, &by_value);
+  picket_status status =
+      pk_slope_form(slope, level, phase, s->look.k0, s->k0, wave->left, wave->right, &by_value);
   if (status != PICKET_OK) {
     return status;
   }
   const pk_variation *v = s->variation;
   double pitch = v->problem->cell.pitch_um;
-  double pitch_slope = (v->plus->cell.pitch_um - v->minus->cell.pitch_um) / (2 * v->step);
-  double k0_slope = (s->k0[1] - s->k0[0]) / (2 * v->step);
+  double pitches[PK_NEIGHBOURS];
+  for (int i = 0; i < PK_NEIGHBOURS; i++) {
+    pitches[i] = v->neighbour[i]->cell.pitch_um;
+  }
+  double pitch_slope = pk_variation_slope(v, pitches), k0_slope = pk_variation_slope(v, s->k0);
   double complex turn = pk_operator_phase_form(level->op, phase, 1, 0, wave->left, wave->right);
   double complex k_slope = I * by_value / turn / pitch - k * pitch_slope / pitch;
   *value = creal(k_slope) / s->look.k0 - creal(k) * k0_slope / (s->look.k0 * s->look.k0);
@@ -241,8 +246,9 @@ static picket_status index_of(const pk_variation *variation, pk_polarization pol
   const pk_problem *problem = variation->problem;
   index_slopes s = {.variation = variation};
   point->wavelength_um = problem->light.wavelength_um[i];
-  s.k0[0] = 2 * PI / variation->minus->light.wavelength_um[i];
-  s.k0[1] = 2 * PI / variation->plus->light.wavelength_um[i];
+  for (int n = 0; n < PK_NEIGHBOURS; n++) {
+    s.k0[n] = 2 * PI / variation->neighbour[n]->light.wavelength_um[i];
+  }
   picket_status status =
       pk_look_take(problem, polarization, point->wavelength_um, 1, options->accuracy, &s.look);
   if (status != PICKET_OK) {
@@ -282,12 +288,18 @@ static picket_status all_points(const pk_variation *variation, pk_polarization p
   return status;
 }
 
+static bool same_wavelength_count(const pk_variation *variation) {
+  bool same = true;
+  for (int i = 0; i < PK_NEIGHBOURS; i++) {
+    same = same && variation->neighbour[i]->light.count == variation->problem->light.count;
+  }
+  return same;
+}
+
 picket_status pk_study_index_derivatives(const pk_variation *variation,
                                          const picket_options *options, picket_result **out) {
   const pk_problem *problem = variation->problem;
-  if (!problem->has_cell || problem->light.count == 0 ||
-      variation->plus->light.count != problem->light.count ||
-      variation->minus->light.count != problem->light.count) {
+  if (!problem->has_cell || problem->light.count == 0 || !same_wavelength_count(variation)) {
     return pk_fail(problem->context, PICKET_ERROR_INPUT,
                    "the problem has no cell or no wavelengths: a Bloch index needs both");
   }

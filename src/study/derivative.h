@@ -7,9 +7,11 @@
 #include "study/problem.h"
 #include "study/result.h"
 
-/* A problem and its two neighbours: the same but for one value, `step` below and above. */
+/* A problem and its neighbours: the same but for one value, moved by -2, -1, 1 and 2 steps. */
+enum { PK_NEIGHBOURS = 4 };
 typedef struct pk_variation {
-  const pk_problem *problem, *minus, *plus;
+  const pk_problem *problem;
+  const pk_problem *neighbour[PK_NEIGHBOURS];
   double step;
 } pk_variation;
 
