@@ -5,7 +5,7 @@
 #include "unit/cells.h"
 #include "unit/short_memory.h"
 
-enum { NU = 12, NV = 15, CELLS = 10 };
+enum { NU = 12, NV = 15, CELLS = 50 };
 
 static pk_wave wave_near(test_cell *c, pk_phase phase, double k0, double complex guess) {
   pk_wave wave = {0};
@@ -33,8 +33,8 @@ static double left_residual(const test_cell *c, pk_phase phase, double k0, const
   return sqrt(size / weight) / (k0 * k0);
 }
 
-/* Ten random cells, both polarizations: the lowest two bands at a k inside the zone, then ξ at
- * those frequencies from a guess that is off by 2 %. */
+/* Fifty random cells, both polarizations: the lowest two bands at a k inside the zone, then ξ at
+ * those frequencies from a guess that is off by 0.2 % (other waves are farther). */
 static void both_routes_agree_on_random_cells(void **state) {
   (void)state;
   uint64_t seed = 2022;
@@ -50,7 +50,7 @@ static void both_routes_agree_on_random_cells(void **state) {
       pk_phase phase = pk_phase_at(&c.cell, kz, kx);
       for (int band = 0; band < 2; band++) {
         double k0 = sqrt(lambda[band]);
-        pk_wave wave = wave_near(&c, phase, k0, phase.xi * (1 + 0.02 * I));
+        pk_wave wave = wave_near(&c, phase, k0, phase.xi * (1 + 0.002 * I));
         assert_near(cabs(wave.xi - phase.xi), 0, 1e-10);
         assert_true(left_residual(&c, phase, k0, &wave) < PK_RESIDUAL_LIMIT);
         pk_wave_clear(c.context, &wave);
