@@ -72,6 +72,7 @@ typedef struct pk_reader {
   const char *folder;       /* of the problem file, for tables */
   const pk_node *materials; /* the block, or null */
   pk_problem *problem;      /* being filled */
+  bool layered;             /* layered materials may stand here */
 } pk_reader;
 
 picket_status pk_read_light(pk_reader *reader, const pk_node *node);
@@ -92,6 +93,8 @@ enum { PK_STACK_SUBSTRATE, PK_STACK_FILMS, PK_STACK_COVER, PK_STACK_KEYS };
  * arrays are then the caller's. */
 picket_status pk_read_stack(const pk_reader *reader, const pk_node *const *values,
                             pk_slab_recipe *recipe);
+/* Films of a list alone. */
+picket_status pk_read_films(const pk_reader *reader, const pk_node *list, pk_slab_recipe *recipe);
 void pk_slab_recipe_clear(picket_context *context, pk_slab_recipe *recipe);
 
 /* Paints the shapes of a list into the geometry of the cell. */

@@ -18,9 +18,17 @@ enum {
 };
 static const double LARGEST_INDEX = 100.0; /* well above any optical medium */
 
-enum { KIND_CATALOGUE, KIND_CONSTANT, KIND_SELLMEIER, KIND_TABLE, KIND_SLAB, KIND_COUNT };
-static const char *const kinds[KIND_COUNT] = {"catalogue", "constant", "sellmeier", "table",
-                                              "slab"};
+enum {
+  KIND_CATALOGUE,
+  KIND_CONSTANT,
+  KIND_SELLMEIER,
+  KIND_TABLE,
+  KIND_SLAB,
+  KIND_LAYERED,
+  KIND_COUNT
+};
+static const char *const kinds[KIND_COUNT] = {"catalogue", "constant", "sellmeier",
+                                              "table",     "slab",     "layered"};
 
 enum { CONSTANT_INDEX, CONSTANT_EXTINCTION, CONSTANT_DN_DT, CONSTANT_COUNT };
 static const pk_key constant_keys[CONSTANT_COUNT] = {
@@ -46,6 +54,9 @@ static const pk_key slab_keys[SLAB_COUNT] = {
     [SLAB_POLARIZATION] = {"polarization", true},
     [SLAB_ORDER] = {"order", false},
 };
+
+enum { LAYERED_FILMS, LAYERED_COUNT };
+static const pk_key layered_keys[LAYERED_COUNT] = {[LAYERED_FILMS] = {"films", true}};
 
 picket_status pk_read_material_name(const pk_reader *reader, const pk_node *node,
                                     const char **out) {
@@ -78,7 +89,14 @@ picket_status pk_read_material(const pk_reader *reader, const pk_node *node, int
   const char *name = NULL;
   picket_status status = pk_read_material_name(reader, node, &name);
   if (status == PICKET_OK) {
-    *out = pk_materials_find(reader->problem->materials, name);
+    int found = pk_materials_find(reader->problem->materials, name);
+    if (found >= 0 && !reader->layered &&
+        pk_materials_is_layered(reader->problem->materials, found)) {
+      return pk_fail_at(reader->context, PICKET_ERROR_INPUT, node->place,
+                        "%s is \"%s\", which is layered: only a section can hold it",
+                        pk_node_path(node).text, pk_text_shown(name).text);
+    }
+    *out = found;
   }
   return status;
 }
@@ -178,6 +196,22 @@ static picket_status add_table(const pk_reader *reader, const entry *e) {
   return status;
 }
 
+static picket_status add_layered(const pk_reader *reader, const entry *e) {
+  const pk_node *values[LAYERED_COUNT];
+  pk_slab_recipe recipe = {0};
+  picket_status status =
+      pk_read_block(reader->context, e->value, layered_keys, LAYERED_COUNT, values);
+  if (status == PICKET_OK) {
+    status = pk_read_films(reader, values[LAYERED_FILMS], &recipe);
+  }
+  if (status == PICKET_OK) {
+    status = pk_materials_add_layered(reader->problem->materials, e->value->place, e->name->key,
+                                      &recipe);
+  }
+  pk_slab_recipe_clear(reader->context, &recipe);
+  return status;
+}
+
 static picket_status add_slab(const pk_reader *reader, const entry *e) {
   static const char *const words[] = {"te", "tm"};
   picket_context *context = reader->context;
@@ -228,13 +262,14 @@ static picket_status try_material(const pk_reader *reader, const pk_node *name, 
   static picket_status (*const add[KIND_COUNT])(const pk_reader *, const entry *) = {
       [KIND_CATALOGUE] = add_catalogue, [KIND_CONSTANT] = add_constant,
       [KIND_SELLMEIER] = add_sellmeier, [KIND_TABLE] = add_table,
-      [KIND_SLAB] = add_slab,
+      [KIND_SLAB] = add_slab,           [KIND_LAYERED] = add_layered,
   };
   entry e = {name, NULL};
   int kind = 0;
   picket_status status = pk_read_kind(reader->context, name, kinds, KIND_COUNT, &kind, &e.value);
   *added = false;
-  if (status == PICKET_OK && (kind != KIND_SLAB || is_ready(reader, e.value))) {
+  if (status == PICKET_OK &&
+      ((kind != KIND_SLAB && kind != KIND_LAYERED) || is_ready(reader, e.value))) {
     status = add[kind](reader, &e);
     *added = status == PICKET_OK;
   }

@@ -116,7 +116,7 @@ picket_status pk_problem_read(picket_context *context, const pk_document *docume
   problem->temperature_c = 20.0; /* the reference temperature of index data */
   problem->light.wanted[PK_EY] = problem->light.wanted[PK_HY] = true;
   problem->smallest_um = INFINITY;
-  pk_reader reader = {context, pk_document_folder(document), values[KEY_MATERIALS], problem};
+  pk_reader reader = {context, pk_document_folder(document), values[KEY_MATERIALS], problem, false};
   status = read_blocks(&reader, values);
   if (status != PICKET_OK) {
     pk_problem_free(problem);

@@ -264,6 +264,7 @@ static picket_status check_extent(const painter *p, const pk_node *node) {
 picket_status pk_read_section(pk_reader *reader, const pk_node *node) {
   pk_section_block *section = &reader->problem->section;
   painter p = {reader, reader->context, section};
+  reader->layered = true;
   const pk_node *values[KEY_COUNT];
   int cladding = 0;
   picket_status status = pk_read_block(reader->context, node, keys, KEY_COUNT, values);
@@ -282,6 +283,7 @@ picket_status pk_read_section(pk_reader *reader, const pk_node *node) {
   if (status == PICKET_OK) {
     status = check_extent(&p, node);
   }
+  reader->layered = false;
   section->given = status == PICKET_OK;
   section->place = node->place;
   return status;

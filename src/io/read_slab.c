@@ -44,17 +44,9 @@ void pk_slab_recipe_clear(picket_context *context, pk_slab_recipe *recipe) {
   recipe->film_count = 0;
 }
 
-picket_status pk_read_stack(const pk_reader *reader, const pk_node *const *values,
-                            pk_slab_recipe *recipe) {
+picket_status pk_read_films(const pk_reader *reader, const pk_node *films, pk_slab_recipe *recipe) {
   picket_context *context = reader->context;
-  const pk_node *films = values[PK_STACK_FILMS];
-  picket_status status = pk_read_material(reader, values[PK_STACK_SUBSTRATE], &recipe->substrate);
-  if (status == PICKET_OK) {
-    status = pk_read_material(reader, values[PK_STACK_COVER], &recipe->cover);
-  }
-  if (status == PICKET_OK) {
-    status = pk_read_list(context, films, 1, MOST_FILMS, "films");
-  }
+  picket_status status = pk_read_list(context, films, 1, MOST_FILMS, "films");
   if (status != PICKET_OK) {
     return status;
   }
@@ -72,6 +64,15 @@ picket_status pk_read_stack(const pk_reader *reader, const pk_node *const *value
     pk_slab_recipe_clear(context, recipe);
   }
   return status;
+}
+
+picket_status pk_read_stack(const pk_reader *reader, const pk_node *const *values,
+                            pk_slab_recipe *recipe) {
+  picket_status status = pk_read_material(reader, values[PK_STACK_SUBSTRATE], &recipe->substrate);
+  if (status == PICKET_OK) {
+    status = pk_read_material(reader, values[PK_STACK_COVER], &recipe->cover);
+  }
+  return status == PICKET_OK ? pk_read_films(reader, values[PK_STACK_FILMS], recipe) : status;
 }
 
 picket_status pk_read_slab(pk_reader *reader, const pk_node *node) {

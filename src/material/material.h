@@ -6,6 +6,7 @@
 #define PK_MATERIAL_MATERIAL_H
 
 #include <complex.h>
+#include <stdbool.h>
 
 #include "base/context.h"
 #include "slab/slab.h"
@@ -79,6 +80,19 @@ typedef struct pk_slab_recipe {
 } pk_slab_recipe;
 picket_status pk_materials_add_slab(pk_materials *materials, pk_place place, const char *name,
                                     const pk_slab_recipe *recipe);
+
+/* A stack of layers across z, repeated without end, as one anisotropic material by second-order
+ * homogenisation (Rytov 1956): the segmented core of a section. `films` of the recipe are the
+ * layers of one period; its other entries do not matter. Layers are numbers of materials of this
+ * set that were added before and are not layered themselves. */
+picket_status pk_materials_add_layered(pk_materials *materials, pk_place place, const char *name,
+                                       const pk_slab_recipe *recipe);
+bool pk_materials_is_layered(const pk_materials *materials, int material);
+
+/* xx, yy and zz entries of a material: three equal ones unless it is layered. As pk_materials_at,
+ * which gives the xx entry. */
+picket_status pk_materials_tensor_at(const pk_materials *materials, int material,
+                                     double wavelength_um, double temperature_c, pk_medium out[3]);
 
 /* The material at a vacuum wavelength and a temperature.
  * PICKET_ERROR_RANGE outside its range, PICKET_ERROR_NO_MODE for a cut-off slab; the message names

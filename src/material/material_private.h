@@ -30,7 +30,8 @@ typedef enum pk_model {
   PK_MODEL_SELLMEIER,
   PK_MODEL_TABLE,
   PK_MODEL_CATALOGUE,
-  PK_MODEL_SLAB
+  PK_MODEL_SLAB,
+  PK_MODEL_LAYERED
 } pk_model;
 
 typedef struct pk_material {
@@ -46,7 +47,7 @@ typedef struct pk_material {
   pk_sellmeier sellmeier;
   pk_table table;
   int entry;             /* of the catalogue */
-  pk_slab_recipe recipe; /* its arrays are owned */
+  pk_slab_recipe recipe; /* its arrays are owned; of a layered material films are layers */
 } pk_material;
 
 struct pk_materials {
@@ -82,5 +83,9 @@ picket_status pk_table_at(const pk_materials *materials, const pk_material *item
 void pk_catalogue_at(int entry, double wavelength_um, double temperature_c, pk_medium *out);
 picket_status pk_slab_material_at(const pk_materials *materials, const pk_material *item,
                                   double wavelength_um, double temperature_c, pk_medium *out);
+
+/* xx, yy and zz of a layered material. */
+picket_status pk_layered_material_at(const pk_materials *materials, const pk_material *item,
+                                     double wavelength_um, double temperature_c, pk_medium out[3]);
 
 #endif

@@ -192,6 +192,28 @@ static picket_status check_range(const pk_materials *materials, const pk_materia
   return PICKET_OK;
 }
 
+bool pk_materials_is_layered(const pk_materials *materials, int material) {
+  return item_of(materials, material)->model == PK_MODEL_LAYERED;
+}
+
+picket_status pk_materials_tensor_at(const pk_materials *materials, int material,
+                                     double wavelength_um, double temperature_c, pk_medium out[3]) {
+  const pk_material *item = item_of(materials, material);
+  if (item->model == PK_MODEL_LAYERED) {
+    picket_status status = check_range(materials, item, wavelength_um, temperature_c);
+    return status == PICKET_OK
+               ? pk_layered_material_at(materials, item, wavelength_um, temperature_c, out)
+               : status;
+  }
+  pk_medium medium;
+  picket_status status =
+      pk_materials_at(materials, material, wavelength_um, temperature_c, &medium);
+  for (int c = 0; status == PICKET_OK && c < 3; c++) {
+    out[c] = medium;
+  }
+  return status;
+}
+
 picket_status pk_materials_at(const pk_materials *materials, int material, double wavelength_um,
                               double temperature_c, pk_medium *out) {
   const pk_material *item = item_of(materials, material);
@@ -208,6 +230,12 @@ picket_status pk_materials_at(const pk_materials *materials, int material, doubl
       return PICKET_OK;
     case PK_MODEL_SLAB:
       return pk_slab_material_at(materials, item, wavelength_um, temperature_c, out);
+    case PK_MODEL_LAYERED: {
+      pk_medium tensor[3];
+      status = pk_layered_material_at(materials, item, wavelength_um, temperature_c, tensor);
+      *out = status == PICKET_OK ? tensor[0] : *out;
+      return status;
+    }
   }
   return pk_fail(materials->context, PICKET_ERROR_INTERNAL, "material model %d is unknown",
                  (int)item->model);

@@ -74,38 +74,71 @@ static picket_status inherit(pk_materials *materials, pk_material *item) {
   return PICKET_OK;
 }
 
-picket_status pk_materials_add_slab(pk_materials *materials, pk_place place, const char *name,
-                                    const pk_slab_recipe *recipe) {
+/* A material that keeps a copy of a recipe; brief and source are left to the caller. */
+static picket_status begin(pk_materials *materials, pk_place place, const char *name,
+                           const pk_slab_recipe *recipe, pk_material *item) {
   picket_context *context = materials->context;
   picket_status status = check(materials, place, name, recipe);
-  if (status != PICKET_OK) {
-    return status;
+  if (status == PICKET_OK) {
+    status = pk_material_begin(materials, place, name, item);
   }
-  pk_material item;
-  status = pk_material_begin(materials, place, name, &item);
   if (status != PICKET_OK) {
     return status;
   }
   size_t films = (size_t)recipe->film_count;
-  item.model = PK_MODEL_SLAB;
-  item.recipe = *recipe;
-  item.recipe.film_material = pk_copy(context, recipe->film_material, films, sizeof(int));
-  item.recipe.film_thickness_um = NULL;
-  if (item.recipe.film_material) {
-    item.recipe.film_thickness_um =
+  item->recipe = *recipe;
+  item->recipe.film_material = pk_copy(context, recipe->film_material, films, sizeof(int));
+  item->recipe.film_thickness_um = NULL;
+  if (item->recipe.film_material) {
+    item->recipe.film_thickness_um =
         pk_copy(context, recipe->film_thickness_um, films, sizeof(double));
   }
-  status = item.recipe.film_thickness_um ? inherit(materials, &item) : PICKET_ERROR_MEMORY;
+  status = item->recipe.film_thickness_um ? inherit(materials, item) : PICKET_ERROR_MEMORY;
   if (status != PICKET_OK) {
-    pk_material_clear(context, &item);
+    pk_material_clear(context, item);
+  }
+  return status;
+}
+
+picket_status pk_materials_add_slab(pk_materials *materials, pk_place place, const char *name,
+                                    const pk_slab_recipe *recipe) {
+  pk_material item;
+  picket_status status = begin(materials, place, name, recipe, &item);
+  if (status != PICKET_OK) {
     return status;
   }
+  item.model = PK_MODEL_SLAB;
   snprintf(item.brief, sizeof item.brief, "slab, %s order %d",
            recipe->polarization == PK_SLAB_TE ? "te" : "tm", recipe->order);
   snprintf(item.source, sizeof item.source,
            "effective index of a slab of %d film%s, %s order %d; thermal expansion left out",
            recipe->film_count, recipe->film_count == 1 ? "" : "s",
            recipe->polarization == PK_SLAB_TE ? "te" : "tm", recipe->order);
+  return pk_materials_append(materials, &item);
+}
+
+picket_status pk_materials_add_layered(pk_materials *materials, pk_place place, const char *name,
+                                       const pk_slab_recipe *recipe) {
+  pk_slab_recipe layers = *recipe;
+  layers.order = 0;
+  if (layers.film_count > 0) { /* nothing lies outside: `inherit` looks at both ends all the same */
+    layers.substrate = layers.cover = layers.film_material[0];
+  }
+  pk_material item;
+  picket_status status = begin(materials, place, name, &layers, &item);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  item.model = PK_MODEL_LAYERED;
+  double period = 0;
+  for (int i = 0; i < layers.film_count; i++) {
+    period += layers.film_thickness_um[i];
+  }
+  snprintf(item.brief, sizeof item.brief, "layered");
+  snprintf(item.source, sizeof item.source,
+           "%d layers across z, %g nm a period, homogenised to second order (Rytov 1956): an "
+           "estimate; the entry along the layers",
+           layers.film_count, 1e3 * period);
   return pk_materials_append(materials, &item);
 }
 

@@ -53,20 +53,23 @@ static picket_status take_media(pk_section_survey *s, double wavelength_um) {
     return PICKET_ERROR_MEMORY;
   }
   for (int m = 0; m < s->media; m++) {
-    pk_medium at = {.permittivity = 1};
+    pk_medium at[3] = {{.permittivity = 1}, {.permittivity = 1}, {.permittivity = 1}};
     picket_status status = PICKET_OK;
     if (problem->section.used[m]) {
-      status = pk_materials_at(problem->materials, m, wavelength_um, problem->temperature_c, &at);
-      s->top = fmax(s->top, creal(csqrt(at.permittivity)));
+      status =
+          pk_materials_tensor_at(problem->materials, m, wavelength_um, problem->temperature_c, at);
+      for (int c = 0; c < 3; c++) {
+        s->top = fmax(s->top, creal(csqrt(at[c].permittivity)));
+      }
     }
     if (status != PICKET_OK) {
       return status;
     }
     for (int c = 0; c < 3; c++) {
-      s->permittivity[c * s->media + m] = at.permittivity;
-      s->slope[c * s->media + m] = at.slope;
+      s->permittivity[c * s->media + m] = at[c].permittivity;
+      s->slope[c * s->media + m] = at[c].slope;
     }
-    s->dispersive = s->dispersive || at.slope != 0;
+    s->dispersive = s->dispersive || at[0].slope != 0;
   }
   return PICKET_OK;
 }

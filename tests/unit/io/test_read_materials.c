@@ -9,7 +9,7 @@ static const bad_text bad_materials[] = {
     REFUSED("2:12", "materials must be a block of names", FORMAT "materials: [a]\n"),
     REFUSED("3:6",
             "materials.a is a value, must be a block of keys (catalogue, constant, sellmeier, "
-            "table, slab)",
+            "table, slab, layered)",
             FORMAT "materials:\n"
                    "  a: glass\n"),
     REFUSED("3:6", "materials.a has 0 kinds, must have exactly one of: catalogue",

@@ -29,6 +29,34 @@ static void refuses_bad_sections(void **state) {
   CHECK_ALL_REFUSED(bad_section);
 }
 
+#define LAYERED                                                                             \
+  FORMAT                                                                                    \
+  "materials: {oxide: {constant: {index: 1.45}}, core: {constant: {index: 3.5}}, "          \
+  "teeth: {layered: {films: [{fill: core, thickness_nm: 100}, {fill: oxide, thickness_nm: " \
+  "9}]}}}\n"
+
+/* A layered material has its place in a section and nowhere else. */
+static void understands_layers(void **state) {
+  (void)state;
+  picket_context *context = plain_context();
+  pk_document *document = NULL;
+  pk_problem *p = sound(context,
+                        LAYERED
+                        "section: {cladding: oxide, shapes: [{disc: {fill: teeth, "
+                        "diameter_nm: 100}}]}\n",
+                        &document);
+  assert_true(pk_materials_is_layered(p->materials, 2));
+  pk_problem_free(p);
+  pk_document_free(document);
+  static const bad_text row =
+      REFUSED("3:83", "cell.shapes.0.stripe.fill is \"teeth\", which is layered: only a section",
+              LAYERED
+              "cell: {pitch_nm: 200, cladding: oxide, lateral: uniform, shapes: [{stripe: {fill: "
+              "teeth, across: z, from_nm: -50, to_nm: 50}}]}\n");
+  check_refused(&row);
+  picket_context_free(context);
+}
+
 static void understands_a_section(void **state) {
   (void)state;
   picket_context *context = plain_context();
@@ -68,6 +96,7 @@ int main(void) {
   const struct CMUnitTest tests[] = {
       cmocka_unit_test(refuses_bad_sections),
       cmocka_unit_test(understands_a_section),
+      cmocka_unit_test(understands_layers),
   };
   return cmocka_run_group_tests(tests, NULL, NULL);
 }

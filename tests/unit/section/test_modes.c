@@ -64,6 +64,8 @@ static void magnetic_walls_are_dual(void **state) {
 
 static double slab_index(plane *p, pk_slab_polarization polarization, double wavelength) {
   pk_slab_film film = {pk_slab_isotropic(p->permittivity[1], 0), 0.22};
+  film.medium.normal = p->permittivity[PLANE_MEDIA + 1];
+  film.medium.along = p->permittivity[2 * PLANE_MEDIA + 1];
   pk_slab slab = {pk_slab_isotropic(p->permittivity[0], 0), 1, &film,
                   pk_slab_isotropic(p->permittivity[2], 0)};
   pk_slab_mode mode;
@@ -75,11 +77,12 @@ static double slab_index(plane *p, pk_slab_polarization polarization, double wav
 
 /* Stripes across y that do not change along a periodic x are a film stack. TE and TM sit in one
  * spectrum here; walls are far enough for 1e-10. */
-static void stripes_are_a_slab(void **state) {
-  (void)state;
+static void check_stripes(double yy, double zz) {
   const double complex index[PLANE_MEDIA] = {1.444, 3.4757, 1.0};
   const double k0 = 2 * PI / 1.55;
   plane p = plane_of(index, 0.1);
+  p.permittivity[PLANE_MEDIA + 1] *= yy;
+  p.permittivity[2 * PLANE_MEDIA + 1] *= zz;
   plane_stripe(&p, 1, 0, 0.22);
   plane_stripe(&p, 2, 0.22, INFINITY);
   lay_ruler(p.context,
@@ -110,6 +113,12 @@ static void stripes_are_a_slab(void **state) {
     assert_near(q.value, slab_index(&p, t == 0 ? PK_SLAB_TE : PK_SLAB_TM, 1.55), 1e-8);
   }
   plane_close(&p);
+}
+
+static void stripes_are_a_slab(void **state) {
+  (void)state;
+  check_stripes(1, 1);
+  check_stripes(1.2, 0.6); /* an anisotropic film: te sees xx, tm yy and zz */
 }
 
 /* A quarter of the wire of 450 × 220 nm, mirror planes at both axes. */
