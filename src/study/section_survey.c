@@ -12,9 +12,17 @@
 static const double PI = 3.141592653589793238;
 static const double QUARTER_TURN = 1.57079632679489661923;
 
-/* Steps of the base grid: members 2 to 4 of the family resolve a wavelength in the densest medium
- * by 12 to 24 steps, which is where the error follows its law (wire of silicon: bars of 2e-5). */
+/* Steps of the base grid per shortest wavelength that a guided mode can have across, 2π/(k0 √(n² -
+ * n_cut²)): members 2 to 4 of the family have 12 to 24 steps in it, which is where the error
+ * follows its law (wire of silicon: bars of 2e-5). */
 static const double STEPS_PER_WAVELENGTH = 6;
+/* Curved and oblique shapes are resolved themselves. */
+static const double STEPS_PER_SHAPE = 8;
+
+/* Share of scattered values (extrapolate.h), times (r - 1)/(r + 1) with r the contrast: rods of
+ * glass and silicon (r = 2.25 and 5.8) needed up to 1e-3. */
+static const double SHARE = 2e-3;
+
 static const double STEPS_PER_DECAY = 1.5;
 static const double GROWTH = 0.3;
 
@@ -27,6 +35,9 @@ static const double LONGEST_DECAY = 2;
 static const double LAYER_RADIANS = 4, STEP_RADIANS = 0.5, ROOM_RADIANS = 2;
 
 static const double FAR_X_UM = 49.99, FAR_Y_UM = 60;
+
+/* Lines closer than this are one: the tolerance of coordinates in a section (io/read_section.c). */
+static const double SAME_UM = 2e-7;
 
 /* A corner so weak is not told from none: 4 - 2α is 2. */
 static const double WEAK = 1e-3;
@@ -239,14 +250,37 @@ static double decay_of(const pk_section_survey *s, int side, double index) {
   return 1 / (s->k0 * sqrt(fmax(square, least * least)));
 }
 
-static int keep_inside(double from, double to, int count, double *line) {
+static int insert(double value, int count, double *line) {
+  int at = count;
+  while (at > 0 && line[at - 1] > value) {
+    line[at] = line[at - 1];
+    at--;
+  }
+  line[at] = value;
+  return count + 1;
+}
+
+/* Lines of a grid inside (from, to): those of the geometry, and the ends of the shapes, which
+ * curved and oblique ones do not have among them but where the fine steps end. [count + 2] is
+ * enough. */
+static int choose_lines(const pk_section_block *block, int axis, const pk_axis_wish *w, int count,
+                        const double *known, double *line) {
+  const double ends[2] = {block->low_um[axis], block->high_um[axis]};
   int kept = 0;
   for (int i = 0; i < count; i++) {
-    if (line[i] > from && line[i] < to) {
-      line[kept++] = line[i];
+    line[kept++] = known[i];
+  }
+  for (int e = 0; e < 2; e++) {
+    kept = isfinite(ends[e]) ? insert(ends[e], kept, line) : kept;
+  }
+  int inside = 0;
+  for (int i = 0; i < kept; i++) {
+    bool repeated = inside > 0 && line[i] - line[inside - 1] < SAME_UM;
+    if (line[i] > w->from && line[i] < w->to && !repeated) {
+      line[inside++] = line[i];
     }
   }
-  return kept;
+  return inside;
 }
 
 /* A side that modes leak into: a wall at its edge, or some of it and a layer. */
@@ -304,14 +338,26 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
     return status;
   }
   double wavelength = 2 * PI / s->k0;
-  pk_axis_wish w = {.step = wavelength / (STEPS_PER_WAVELENGTH * s->top),
-                    .outer_step = INFINITY, /* far out a mode varies with its decay only */
-                    .growth = GROWTH,
-                    .least_intervals = 1};
+  pk_axis_wish w = {
+      .step = wavelength / (STEPS_PER_WAVELENGTH * sqrt(s->top * s->top - s->cut * s->cut)),
+      .outer_step = INFINITY, /* far out a mode varies with its decay only */
+      .growth = GROWTH,
+      .least_intervals = 1};
+  const pk_section_block *block = &s->problem->section;
+  if (!pk_geometry_is_rectangular(block->geometry)) {
+    double size = fmin(block->high_um[0] - block->low_um[0], block->high_um[1] - block->low_um[1]);
+    w.step = fmin(w.step, size / STEPS_PER_SHAPE);
+  }
   place_ends(s, wish, axis, &w);
-  w.lines = line;
-  w.line_count = keep_inside(w.from, w.to, count, line);
-  status = pk_axis_lay(context, &w, out);
+  double *chosen = PK_NEW(context, count + 2, double);
+  if (chosen) {
+    w.lines = chosen;
+    w.line_count = choose_lines(&s->problem->section, axis, &w, count, line, chosen);
+    status = pk_axis_lay(context, &w, out);
+  } else {
+    status = PICKET_ERROR_MEMORY;
+  }
+  pk_free(context, chosen);
   pk_free(context, line);
   return status;
 }
@@ -353,6 +399,13 @@ picket_status pk_section_survey_law(const pk_section_survey *s, const pk_axis *x
   const pk_geometry *geometry = s->problem->section.geometry;
   pk_error_law law = {.count = 2, .exponent = {2, 4}, .smooth = 1};
   law.smooth = pk_geometry_is_rectangular(geometry) ? 1 : 0;
+  double least = s->top;
+  for (int m = 0; m < s->media; m++) {
+    least = s->problem->section.used[m] ? fmin(least, sqrt(cabs(s->permittivity[m]))) : least;
+  }
+  double ratio = least * least / (s->top * s->top);
+  law.share = law.smooth ? 0 : SHARE * (1 - ratio) / (1 + ratio);
+  law.share_order = 2;
   pk_corner_list list;
   picket_status status = pk_corner_list_take(s->problem->context, geometry, x, y, &list);
   if (status != PICKET_OK) {
