@@ -13,6 +13,9 @@ cmake --build "$build" --target benchmarks -j 2 >>"$build.log" 2>&1 || { cat "$b
 # Threads of BLAS that wait for work count as CPU time.
 export OPENBLAS_NUM_THREADS=1
 "$build/benchmark_point"
+"$build/benchmark_all_modes"
+cmake --build "$build" --target picket_tool -j 2 >>"$build.log" 2>&1 || { cat "$build.log" >&2; exit 1; }
+/usr/bin/python3 "$here/benchmarks/sweep_workers.py" "$build/picket" "$here/examples/bus_section.yaml"
 if /usr/bin/python3 -c 'import scipy' 2>/dev/null; then
   /usr/bin/python3 "$here/benchmarks/compare_scipy.py" "$build/benchmark_peer"
 else
