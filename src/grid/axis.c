@@ -54,7 +54,8 @@ static picket_status layout_marks(picket_context *context, const pk_axis_wish *w
 
 static double cap_between(const pk_axis_wish *wish, double a, double b) {
   bool inner = b > wish->inner_from && a < wish->inner_to;
-  return inner ? wish->step : wish->outer_step;
+  bool low = wish->low_step > 0 && b <= wish->inner_from;
+  return inner ? wish->step : low ? wish->low_step : wish->outer_step;
 }
 
 /* The spacing at each mark: not above the caps of its neighbours nor a share of their lengths, and

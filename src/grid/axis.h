@@ -46,6 +46,7 @@ typedef struct pk_axis_wish {
   double step;         /* largest spacing inside [inner_from, inner_to] */
   double inner_from, inner_to;
   double outer_step;   /* largest spacing elsewhere */
+  double low_step;     /* the same below inner_from; 0: as outer_step */
   double growth;       /* spacing may grow by this much per length, e.g. 0.2 */
   pk_layer layer[2];   /* inside [from, to], at its ends */
   int least_intervals; /* between neighbouring lines, at least 1 */

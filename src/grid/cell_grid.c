@@ -97,11 +97,10 @@ static void open_ends(const pk_cell *cell, const pk_cell_grid_wish *wish, int co
     axis->from = -0.5 * cell->span_um - wish->layer[0].thickness;
     axis->to = 0.5 * cell->span_um + wish->layer[1].thickness;
   }
-  double outer = fmin(wish->decay_um[0], wish->decay_um[1]) / STEPS_PER_DECAY;
-  if (wish->outer_step_um > 0) {
-    outer = fmin(outer, wish->outer_step_um);
-  }
-  axis->outer_step = fmax(axis->step, outer);
+  /* Each side as its own field wants: a mode may reach far into one and not into the other. */
+  double most = wish->outer_step_um > 0 ? wish->outer_step_um : INFINITY;
+  axis->low_step = fmax(axis->step, fmin(most, wish->decay_um[0] / STEPS_PER_DECAY));
+  axis->outer_step = fmax(axis->step, fmin(most, wish->decay_um[1] / STEPS_PER_DECAY));
 }
 
 /* Where the lateral axis starts and ends, and what its ends are. */

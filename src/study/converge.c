@@ -33,6 +33,9 @@ enum { WIDENINGS = 3 };
 static const char NOTE_COARSE[] =
     "the grids that are allowed are too coarse for an error bar: allow more unknowns";
 
+static const char NOTE_SIDES[] =
+    "the answer is lost when the open sides end in another way, so nothing bounds what they do";
+
 /* Open sides end where the field has fallen to a tenth of the accuracy in power, and one more decay
  * length. */
 static double reach_for(double accuracy) {
@@ -143,6 +146,9 @@ static void judge(const family *f, picket_quantity *quantities) {
     quantities[i] = pk_extrapolate(&f->law, f->count, f->m, column);
     if (isfinite(f->span_error[i])) {
       quantities[i].uncertainty += f->span_error[i];
+    } else if (isfinite(values_of(f, f->m[0])[i])) {
+      quantities[i].uncertainty = NAN;
+      quantities[i].note = NOTE_SIDES;
     }
   }
   log_table(f, quantities);
@@ -179,24 +185,24 @@ static double worst_of(const family *f, const picket_quantity *quantities) {
   return worst;
 }
 
-/* A `worst` of NaN: there are no bars. */
 static picket_status mark_partial(const family *f, double worst, picket_result *result) {
-  char text[256];
-  if (isnan(worst)) {
-    snprintf(text, sizeof text, "%s: %s (now %.0f)", f->request->phase, NOTE_COARSE,
-             f->request->options->unknowns);
-  } else {
-    snprintf(
-        text, sizeof text,
-        "%s: the largest uncertainty is %.2g of its value, %.1g was asked; allow more unknowns "
-        "(now %.0f) or ask for less",
-        f->request->phase, worst * f->request->options->accuracy, f->request->options->accuracy,
-        f->request->options->unknowns);
+  return pk_result_fall_short(
+      result,
+      "%s: the largest uncertainty is %.2g of its value, %.1g was asked; allow more unknowns "
+      "(now %.0f) or ask for less",
+      f->request->phase, worst * f->request->options->accuracy, f->request->options->accuracy,
+      f->request->options->unknowns);
+}
+
+/* Why a value that was asked for has no bar; null if all have one. */
+static const char *unvouched(const family *f, const picket_quantity *quantities) {
+  for (int i = 0; i < f->request->count; i++) {
+    if (isfinite(quantities[i].value) && isnan(quantities[i].uncertainty) &&
+        !isinf(allowed_of(f, quantities, i))) {
+      return quantities[i].note ? quantities[i].note : "no error bar can be vouched for";
+    }
   }
-  result->complete = false;
-  pk_free(f->context, result->shortfall);
-  result->shortfall = pk_text_copy(f->context, text);
-  return result->shortfall ? PICKET_OK : PICKET_ERROR_MEMORY;
+  return NULL;
 }
 
 static const int *members_of(const pk_error_law *law, int attempt) {
@@ -311,8 +317,9 @@ static picket_status run_family(family *f, picket_quantity *quantities, picket_r
   if (status == PICKET_OK) {
     status = refine(f, quantities, &worst);
   }
-  if (status == PICKET_OK && f->law.no_bar == NOTE_COARSE) {
-    return mark_partial(f, NAN, result);
+  const char *reason = status == PICKET_OK ? unvouched(f, quantities) : NULL;
+  if (reason) {
+    return pk_result_fall_short(result, "%s: %s", f->request->phase, reason);
   }
   return status == PICKET_OK && worst > 1 ? mark_partial(f, worst, result) : status;
 }

@@ -6,8 +6,12 @@
 
 #include "base/memory.h"
 #include "bloch/search.h"
+#include "study/estimate.h"
 
 static const double PI = 3.141592653589793238;
+
+/* In units of π/Λ. */
+static const double NEAR_BOUNDARY = 0.15;
 
 pk_character_request pk_look_request(const pk_look *look) {
   const pk_cell *cell = &look->problem->cell;
@@ -18,6 +22,7 @@ pk_character_request pk_look_request(const pk_look *look) {
   if (cell->lateral == PK_LATERAL_OPEN) {
     pk_geometry_extent(cell->geometry, PK_V, &request.structure[0], &request.structure[1]);
   }
+  request.least_inside = look->least_inside;
   return request;
 }
 
@@ -193,17 +198,47 @@ static void prepare_sides(pk_look *look, double accuracy) {
   look->survey = worst;
 }
 
-static picket_status first_look(pk_look *look, int wanted, double accuracy) {
+/* One look, and what of it is a mode. */
+static picket_status look_once(pk_look *look, int wanted, double accuracy) {
   pk_cell_grid base;
   pk_lay_plan plan = {.reach = 1, .mirror = false, .zero_walls = true};
-  pk_survey_absorb(&look->survey, look->k0);
   picket_status status = pk_survey_lay(&look->survey, &plan, &base);
   if (status == PICKET_OK) {
     status = look_on(look, &base, wanted);
     pk_cell_grid_clear(look->problem->context, &base);
   }
-  if (status == PICKET_OK) {
-    status = settle(look, wanted, accuracy);
+  return status == PICKET_OK ? settle(look, wanted, accuracy) : status;
+}
+
+/* A mode that is bound weakly has most of its energy far from the structure, where a first look has
+ * its layers. If the estimate says that there may be one, a second look takes the sides as far out
+ * as it would reach. */
+static picket_status look_far(pk_look *look, int wanted, double accuracy) {
+  double estimate = NAN, reach = 0;
+  picket_status status =
+      pk_estimated_index(look->problem, look->polarization, 2 * PI / look->k0, &estimate);
+  if (status != PICKET_OK || !look->survey.open || isnan(estimate)) {
+    return status;
+  }
+  for (int side = 0; side < 2; side++) {
+    if (estimate <= pk_survey_side_index(&look->survey, side, look->k0)) {
+      return PICKET_OK;
+    }
+    double decay = pk_survey_decay(&look->survey, side, estimate * look->k0, look->k0);
+    look->survey.decay_um[side] = DOUBT_DECAYS * decay;
+    reach += decay;
+  }
+  pk_character_request request = pk_look_request(look);
+  double width = 2 * (request.structure[1] - request.structure[0]);
+  look->least_inside = 0.3 * width / (width + reach);
+  return look_once(look, wanted, accuracy);
+}
+
+static picket_status first_look(pk_look *look, int wanted, double accuracy) {
+  pk_survey_absorb(&look->survey, look->k0);
+  picket_status status = look_once(look, wanted, accuracy);
+  if (status == PICKET_OK && look->count == 0) {
+    status = look_far(look, wanted, accuracy);
   }
   return status;
 }
@@ -242,10 +277,35 @@ void pk_look_clear(pk_look *look) {
   memset(look, 0, sizeof *look);
 }
 
-/* Inside a stop band both main harmonics weigh the same, and a grid may put the edge on the other
- * side of the wavelength: then the nodes must do. */
-static bool same_mode(const pk_character *a, const pk_character *b) {
-  return a->nodes == b->nodes && (a->harmonic == b->harmonic || a->at_boundary || b->at_boundary);
+/* Near a zone boundary and inside a stop band two main harmonics weigh the same, a wave and its
+ * reflection are neighbours, and a grid may put the edge on the other side of the wavelength: then
+ * the nodes must do. */
+static bool near_boundary(const pk_look *look, const pk_character *c) {
+  double half_turns = creal(c->k) * look->problem->cell.pitch_um / PI;
+  return c->at_boundary ||
+         (fabs(half_turns - round(half_turns)) < NEAR_BOUNDARY && round(half_turns) != 0);
+}
+
+static bool same_mode(const pk_look *look, const pk_character *a, const pk_character *b) {
+  return a->nodes == b->nodes &&
+         (a->harmonic == b->harmonic || (near_boundary(look, a) && near_boundary(look, b)));
+}
+
+/* Near its cut-off a mode has waves beside it that live between the walls and not in the guide:
+ * less of them is inside by this factor at least (measured 10 to 30; a grid with farther walls has
+ * taken up to 3 from a mode). And a wave that would radiate into a side where only a wall stands is
+ * one of them. */
+static const double LEAST_KEPT = 0.2;
+
+static bool is_of_the_walls(const pk_look *look, const pk_character *before,
+                            const pk_character *c) {
+  double folded = creal(c->k) - 2 * PI * c->harmonic / look->problem->cell.pitch_um;
+  bool found = c->inside < LEAST_KEPT * before->inside;
+  for (int side = 0; look->survey.open && side < 2; side++) {
+    double in_side = look->k0 * pk_survey_side_index(&look->survey, side, look->k0);
+    found = found || (look->survey.layer[side].thickness == 0 && fabs(folded) < in_side);
+  }
+  return found;
 }
 
 picket_status pk_look_follow(const pk_look *look, pk_level *level, const pk_followed *mode,
@@ -270,6 +330,6 @@ picket_status pk_look_follow(const pk_look *look, pk_level *level, const pk_foll
   }
   *wave = found;
   *character = c;
-  *same = same_mode(&mode->character, &c);
+  *same = same_mode(look, &mode->character, &c) && !is_of_the_walls(look, &mode->character, &c);
   return PICKET_OK;
 }
