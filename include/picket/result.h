@@ -28,8 +28,8 @@ typedef enum picket_regime {
 /* The word of a regime: "subwavelength", "stop-band", "radiating", "unknown". Static text. */
 PICKET_EXPORT const char *picket_regime_name(picket_regime regime);
 
-/* True if every number reached the accuracy asked for; false: the result is partial, its notes say
- * why. Numbers without a bar because none can be vouched for do not make a result partial. */
+/* True if every number that was asked for reached the accuracy asked for; false: the result is
+ * partial, its notes say why. A number whose bar cannot be vouched for makes a result partial. */
 PICKET_EXPORT bool picket_result_complete(const picket_result *result);
 
 /* One sentence on what is missing when the result is partial; "" otherwise. Borrowed. */

@@ -22,6 +22,7 @@ typedef struct pk_character_request {
   double pitch_um, k0;
   pk_phase phase;      /* its xi is taken from the wave */
   double structure[2]; /* lateral extent of the shapes */
+  double least_inside; /* see search.c; 0: the usual part */
 } pk_character_request;
 
 picket_status pk_character_of(picket_context *context, const pk_operator *op,

@@ -24,6 +24,10 @@ static const double SURE_DECAY = 1e-3;
 /* A wave whose phase hardly advances is below cut-off, not a mode. */
 static const double LEAST_INDEX = 0.05;
 
+static double least_inside(const pk_character_request *request) {
+  return request->least_inside > 0 ? request->least_inside : LEAST_INSIDE;
+}
+
 static bool column_is_inside(const pk_operator *op, const pk_character_request *request,
                              const double complex *column) {
   double half = 0.5 * (request->structure[1] - request->structure[0]);
@@ -38,14 +42,15 @@ static bool column_is_inside(const pk_operator *op, const pk_character_request *
     }
   }
   /* One column sees only a cut through the mode: ask half of what the whole must show. */
-  return inside > 0.5 * LEAST_INSIDE * all;
+  return inside > 0.5 * least_inside(request) * all;
 }
 
 static bool is_mode(const pk_character_request *request, const pk_character *c) {
   double decay = cimag(c->k) / request->k0;
   bool forward = fabs(decay) > SURE_DECAY ? decay > 0 : c->power.forward > 0;
   bool advances = fabs(creal(c->k)) > LEAST_INDEX * request->k0;
-  return forward && advances && c->inside > LEAST_INSIDE && c->layer_share < MOST_LAYER_SHARE;
+  return forward && advances && c->inside > least_inside(request) &&
+         c->layer_share < MOST_LAYER_SHARE;
 }
 
 static void log_wave(picket_context *context, const pk_character_request *request,

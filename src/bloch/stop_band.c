@@ -17,6 +17,9 @@ enum {
  * then right to about the square of this. */
 static const double STATIONARY = 1e-4;
 
+/* Edges closer than this in λ are one: a guide that does not vary along z, or a glide symmetry. */
+static const double CLOSED = 1e-7;
+
 static const double PI = 3.141592653589793238;
 
 /* A standing wave with less than this likeness to the fundamental family is not taken for an edge.
@@ -30,6 +33,7 @@ typedef struct finder {
   pk_media *media;
   const pk_stop_band_request *request;
   double complex *shape, *work; /* [nv] */
+  bool closed; /* the two edges of this order coincide: bands cross there, neither has an extreme */
 } finder;
 
 static pk_phase phase_of(int order) {
@@ -121,7 +125,7 @@ static picket_status move_inside(finder *f, int order, pk_edge_found *edge, bool
   const pk_stop_band_request *request = f->request;
   bool wanted = request->look_inside ||
                 (request->inside && request->inside[2 * (order - 1) + (maximum ? 0 : 1)]);
-  if (!wanted) {
+  if (!wanted || f->closed) {
     return PICKET_OK;
   }
   pk_extremum_request find = {request->pitch_um, request->lateral_shift, order, maximum};
@@ -284,6 +288,9 @@ static picket_status one_order(finder *f, int order, double k0_start, pk_stop_ba
     pk_family_shape(f->op, f->request->pitch_um, 1, modes[0].field, f->shape);
   }
   pick_pair(f, order, found, modes, pair);
+  f->closed =
+      pair[0] >= 0 && pair[1] >= 0 &&
+      creal(modes[pair[1]].lambda - modes[pair[0]].lambda) < CLOSED * creal(modes[pair[0]].lambda);
   for (int e = 0; e < 2 && status == PICKET_OK; e++) {
     if (pair[e] < 0) {
       band->edge[e].state = f->request->open ? PK_EDGE_RADIATES : PK_EDGE_LOST;

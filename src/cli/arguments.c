@@ -4,6 +4,7 @@
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
+#include <sys/stat.h>
 
 #include "cli/cli.h"
 
@@ -177,6 +178,13 @@ static int parse_word(pk_arguments *a, const char *word) {
   return PK_EXIT_DONE;
 }
 
+/* The problem file must not be overwritten by an answer. */
+static bool is_same_file(const char *a, const char *b) {
+  struct stat first, second;
+  return a && b && stat(a, &first) == 0 && stat(b, &second) == 0 && first.st_dev == second.st_dev &&
+         first.st_ino == second.st_ino;
+}
+
 static int check_whole(const pk_arguments *a) {
   if (a->help || a->version) {
     return PK_EXIT_DONE;
@@ -195,6 +203,10 @@ static int check_whole(const pk_arguments *a) {
   if (a->fields && a->command->find != picket_index_find) {
     return pk_complain(PK_EXIT_WRONG, "--fields is for picket index; picket %s has no mode fields",
                        a->command->name);
+  }
+  if (is_same_file(a->file, a->csv) || is_same_file(a->file, a->fields)) {
+    return pk_complain(PK_EXIT_WRONG, "%s is the problem file; name another file for the answer",
+                       a->file);
   }
   if (a->quiet && a->verbose) {
     return pk_complain(PK_EXIT_WRONG, "--quiet and --verbose cannot both be meant");

@@ -12,13 +12,25 @@ pk_branch pk_branch_of(double complex k, double pitch_um) {
   return branch;
 }
 
-double complex pk_branch_square(const pk_branch *branch, double complex k) {
+/* (k - K) Λ/π, without the whole turns by which spatial harmonics differ. */
+static double complex distance_of(const pk_branch *branch, double complex k) {
   double complex distance = k * branch->pitch_um / PI - branch->boundary;
+  return distance - 2 * round(0.5 * creal(distance));
+}
+
+double complex pk_branch_square(const pk_branch *branch, double complex k) {
+  double complex distance = distance_of(branch, k);
   return distance * distance;
 }
 
 double pk_branch_product(const pk_branch *branch, double complex k, double complex dk_dk0) {
-  return creal(dk_dk0 * (k * branch->pitch_um / PI - branch->boundary));
+  return creal(dk_dk0 * distance_of(branch, k));
+}
+
+void pk_branch_take_side(pk_branch *branch, double product) {
+  if (product != 0 && !isnan(product)) {
+    branch->side = product < 0 ? -1 : 1;
+  }
 }
 
 /* The root that belongs to the branch: below or above K outside the stop band, decaying inside it.

@@ -20,8 +20,13 @@ typedef struct pk_branch {
 /* The branch of a wavenumber (1/µm): the nearest boundary. */
 pk_branch pk_branch_of(double complex k, double pitch_um);
 
+/* The same for every spatial harmonic of a wave, and for its reflection. */
 double complex pk_branch_square(const pk_branch *branch, double complex k);
 double pk_branch_product(const pk_branch *branch, double complex k, double complex dk_dk0);
+
+/* The side of K on which the wave lies, from g: its sign is that of (k - K) dk/dk0, the same for a
+ * wave and for its reflection, so grids may disagree about which of the two they found. */
+void pk_branch_take_side(pk_branch *branch, double product);
 
 /* k from an extrapolated s: its real and imaginary parts with bars (the largest change over the
  * corners of the bars of s). */

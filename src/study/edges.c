@@ -59,8 +59,8 @@ static void fill_band(const pk_stop_band *found, const picket_quantity *q, picke
   band->attenuation_db_per_pitch =
       isnan(q[ATTENUATION_DB].value) ? missing(NOTE_NO_ATTENUATION) : q[ATTENUATION_DB];
   add_rounding(q, &band->attenuation_db_per_pitch);
-  band->long_confined = found->edge[0].state != PK_EDGE_RADIATES;
-  band->short_confined = found->edge[1].state != PK_EDGE_RADIATES;
+  band->long_confined = found->edge[0].state == PK_EDGE_FOUND;
+  band->short_confined = found->edge[1].state == PK_EDGE_FOUND;
 }
 
 /* Where the operating band stands. An edge that is missing because it radiates gives way to the
@@ -146,6 +146,49 @@ static picket_status edges_answer(pk_edge_family *s, const picket_options *optio
   return status;
 }
 
+/* The material whose known range ends nearest to where an edge was looked for. */
+static int limiting_material(const pk_problem *problem, double wavelength) {
+  int limiting = 0;
+  double worst = 0;
+  for (int m = 0; m < pk_materials_count(problem->materials); m++) {
+    pk_material_range range = pk_materials_range(problem->materials, m);
+    double beyond = fmax(range.shortest_um - wavelength, wavelength - range.longest_um);
+    if (m == 0 || beyond > worst) {
+      limiting = m;
+      worst = beyond;
+    }
+  }
+  return limiting;
+}
+
+/* The clearance hangs on long edges: one that lies where a material is not known is a number that
+ * was not obtained. A short edge beyond the range of a material has a note and no more. */
+static picket_status check_found(const pk_edge_family *s, picket_result *result) {
+  const pk_problem *problem = s->problem;
+  const char *name = s->polarization == PK_EY ? "ey" : "hy";
+  for (int i = 0; i < 2 * s->request.last_order; i++) {
+    const pk_edge_found *edge = &s->last[i / 2].edge[i % 2];
+    double wavelength = edge->k0 > 0 ? 2 * PI / edge->k0 : NAN;
+    if (edge->state == PK_EDGE_UNKNOWN_MATERIAL && i % 2 == 0) {
+      int m = limiting_material(problem, wavelength);
+      pk_material_range range = pk_materials_range(problem->materials, m);
+      return pk_result_fall_short(result,
+                                  "stop bands, %s: the long edge of order %d lies near %.0f nm, "
+                                  "but material \"%s\" is known "
+                                  "from %.0f to %.0f nm only",
+                                  name, i / 2 + 1, 1e3 * wavelength,
+                                  pk_materials_name(problem->materials, m), 1e3 * range.shortest_um,
+                                  1e3 * range.longest_um);
+    }
+    if (edge->state == PK_EDGE_LOST) {
+      return pk_result_fall_short(result,
+                                  "stop bands, %s: the %s edge of order %d was not recognised",
+                                  name, i % 2 ? "short" : "long", i / 2 + 1);
+    }
+  }
+  return PICKET_OK;
+}
+
 static picket_status one_polarization(const pk_problem *problem, pk_polarization polarization,
                                       const picket_options *options, picket_edges_answer *answer,
                                       picket_result *result) {
@@ -153,6 +196,9 @@ static picket_status one_polarization(const pk_problem *problem, pk_polarization
   picket_status status = pk_edge_family_open(problem, polarization, options, true, &family);
   if (status == PICKET_OK) {
     status = edges_answer(&family, options, answer, result);
+    if (status == PICKET_OK) {
+      status = check_found(&family, result);
+    }
     pk_edge_family_close(&family);
   }
   return status;

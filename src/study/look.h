@@ -14,8 +14,9 @@ typedef struct pk_look {
   double k0;        /* 1/µm */
   pk_survey survey; /* after the look: sides prepared for the mode that reaches farthest */
   int count;
-  pk_followed *mode; /* [count] by rising order */
-  bool lossless;     /* no medium absorbs; known once a grid was opened */
+  pk_followed *mode;   /* [count] by rising order */
+  double least_inside; /* part of the energy near the structure that a mode must have; 0: usual */
+  bool lossless;       /* no medium absorbs; known once a grid was opened */
 } pk_look;
 
 /* Finds up to `wanted` modes; none is an outcome. PICKET_ERROR_RANGE where a material is not known,

@@ -1,6 +1,9 @@
 /* See result.h. */
 #include "study/result.h"
 
+#include <stdarg.h>
+#include <stdio.h>
+
 #include <string.h>
 
 #include "base/memory.h"
@@ -48,6 +51,22 @@ const char *pk_result_text(picket_result *result, const char *text) {
     result->texts[result->text_count++] = copy;
   }
   return copy;
+}
+
+picket_status pk_result_fall_short(picket_result *result, const char *format, ...) {
+  char text[512];
+  va_list arguments;
+  va_start(arguments, format);
+  vsnprintf(text, sizeof text, format, arguments);
+  va_end(arguments);
+  char *copy = pk_text_copy(result->context, text);
+  if (!copy) {
+    return PICKET_ERROR_MEMORY;
+  }
+  pk_free(result->context, result->shortfall);
+  result->shortfall = copy;
+  result->complete = false;
+  return PICKET_OK;
 }
 
 static void free_edges(picket_context *context, int count, picket_edges_answer *answers) {

@@ -60,6 +60,10 @@ picket_status pk_result_create(picket_context *context, pk_result_kind kind, con
 /* The result's own copy of a text, made at its first use; null when memory is out. */
 const char *pk_result_text(picket_result *result, const char *text);
 
+/* Marks a result partial and says why; a later shortfall replaces an earlier one. */
+picket_status pk_result_fall_short(picket_result *result, const char *format, ...)
+    __attribute__((format(printf, 2, 3)));
+
 /* Accepts null and half-built results. */
 void pk_result_free(picket_result *result);
 
