@@ -23,8 +23,8 @@ double complex pk_branch_square(const pk_branch *branch, double complex k) {
   return distance * distance;
 }
 
-double pk_branch_product(const pk_branch *branch, double complex k, double complex dk_dk0) {
-  return creal(dk_dk0 * distance_of(branch, k));
+double complex pk_branch_product(const pk_branch *branch, double complex k, double complex dk_dk0) {
+  return dk_dk0 * distance_of(branch, k);
 }
 
 void pk_branch_take_side(pk_branch *branch, double product) {
@@ -67,18 +67,22 @@ void pk_branch_wavenumber(const pk_branch *branch, picket_quantity square_real,
   *k_imaginary = (picket_quantity){cimag(middle), bar_imaginary, note};
 }
 
-picket_quantity pk_branch_group_index(picket_quantity product, picket_quantity square_real) {
-  double s = square_real.value, ds = square_real.uncertainty;
-  if (!(s > 0)) {
+picket_quantity pk_branch_group_index(const picket_quantity product[2],
+                                      const picket_quantity square[2]) {
+  double complex g = product[0].value + I * product[1].value;
+  double complex s = square[0].value + I * square[1].value;
+  double dg = product[0].uncertainty + product[1].uncertainty;
+  double ds = square[0].uncertainty + square[1].uncertainty, size = cabs(s);
+  if (!(creal(s) > 0)) {
     return (picket_quantity){NAN, NAN, "inside a stop band the wave does not propagate"};
   }
-  double value = fabs(product.value) / sqrt(s);
-  double bar = product.uncertainty / sqrt(s);
-  bar += s > ds ? fabs(product.value) * (1 / sqrt(s - ds) - 1 / sqrt(s)) : INFINITY;
+  double value = fabs(creal(g / csqrt(s)));
+  double bar = dg / sqrt(size);
+  bar += size > ds ? cabs(g) * (1 / sqrt(size - ds) - 1 / sqrt(size)) : INFINITY;
   if (isinf(bar)) {
     return (picket_quantity){value, NAN, "too near a band edge for an error bar"};
   }
-  return (picket_quantity){value, bar, product.note};
+  return (picket_quantity){value, bar, product[0].note};
 }
 
 double pk_branch_allowed(const pk_branch *branch, double square_real, double relative) {

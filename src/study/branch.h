@@ -22,7 +22,7 @@ pk_branch pk_branch_of(double complex k, double pitch_um);
 
 /* The same for every spatial harmonic of a wave, and for its reflection. */
 double complex pk_branch_square(const pk_branch *branch, double complex k);
-double pk_branch_product(const pk_branch *branch, double complex k, double complex dk_dk0);
+double complex pk_branch_product(const pk_branch *branch, double complex k, double complex dk_dk0);
 
 /* The side of K on which the wave lies, from g: its sign is that of (k - K) dk/dk0, the same for a
  * wave and for its reflection, so grids may disagree about which of the two they found. */
@@ -34,8 +34,10 @@ void pk_branch_wavenumber(const pk_branch *branch, picket_quantity square_real,
                           picket_quantity square_imaginary, picket_quantity *k_real,
                           picket_quantity *k_imaginary);
 
-/* The group index from extrapolated g and s; NaN inside the stop band. */
-picket_quantity pk_branch_group_index(picket_quantity product, picket_quantity square_real);
+/* The group index Re(g/√s) from extrapolated g and s, {real, imaginary} each; NaN inside the stop
+ * band. */
+picket_quantity pk_branch_group_index(const picket_quantity product[2],
+                                      const picket_quantity square[2]);
 
 /* The uncertainty of s that leaves k with a relative uncertainty. */
 double pk_branch_allowed(const pk_branch *branch, double square_real, double relative);

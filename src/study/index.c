@@ -40,7 +40,8 @@ static const double LOSS_FLOOR = 1e-8;
 enum {
   V_SQUARE,     /* Re s, see branch.h */
   V_SQUARE_IM,  /* Im s */
-  V_PRODUCT,    /* g, see branch.h */
+  V_PRODUCT,    /* Re g, see branch.h */
+  V_PRODUCT_IM, /* Im g */
   V_GROUP,      /* |dk/dk0|, away from edges as good as g or better */
   V_DISPERSION, /* ps/(nm km) */
   V_ABSORBED,   /* part of the loss by absorption, 0 to 1 */
@@ -125,7 +126,9 @@ static picket_status measure(index_study *s, pk_level *level, int i, const pk_wa
   picket_status status =
       pk_wave_slope(&level->media, level->op, (pk_phase){1, 1, 0}, s->look.k0,
                     s->look.problem->cell.pitch_um, s->look.problem->cell.shift, wave, &slope);
-  v[V_PRODUCT] = pk_branch_product(&s->branch[i], k, slope);
+  double complex product = pk_branch_product(&s->branch[i], k, slope);
+  v[V_PRODUCT] = creal(product);
+  v[V_PRODUCT_IM] = f->character.at_boundary ? 0 : cimag(product);
   v[V_GROUP] = f->character.at_boundary ? NAN : fabs(creal(slope));
   if (status == PICKET_OK && !f->character.at_boundary) {
     status = dispersion(s, level, wave, slope, &v[V_DISPERSION], &f->dispersion_error);
@@ -258,7 +261,7 @@ static void divide_loss(const index_study *s, const pk_followed *f, bool stopped
 /* The better of the two ways to the group index: through the edge, or directly. The direct one
  * misleads where the square-root branch bends it more than its bar knows: then the two disagree. */
 static picket_quantity group_index(const picket_quantity *q) {
-  picket_quantity through = pk_branch_group_index(q[V_PRODUCT], q[V_SQUARE]), direct = q[V_GROUP];
+  picket_quantity through = pk_branch_group_index(&q[V_PRODUCT], &q[V_SQUARE]), direct = q[V_GROUP];
   bool agree = fabs(direct.value - through.value) <= direct.uncertainty + through.uncertainty;
   return agree && direct.uncertainty < through.uncertainty ? direct : through;
 }

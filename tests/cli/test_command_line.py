@@ -4,8 +4,8 @@ import unittest
 
 import tool
 
-COMMANDS = ('check', 'edges', 'bands', 'index', 'slab')
-LATER = ('modes', 'aim', 'tolerance', 'match', 'taper', 'report', 'start')
+COMMANDS = ('check', 'edges', 'bands', 'index', 'modes', 'slab')
+LATER = ('aim', 'tolerance', 'match', 'taper', 'report', 'start')
 
 
 class CommandLine(tool.ToolTest):
