@@ -80,6 +80,22 @@ static picket_status check_cell(const pk_problem *problem) {
   return PICKET_OK;
 }
 
+/* A guide below an open side in index leaks into it at every wavelength, and without contrast there
+ * is none. */
+static picket_status check_guidance(const pk_edge_family *f) {
+  double k0 = f->survey.k0_start, core = pk_survey_core_index(&f->survey, k0);
+  for (int side = 0; f->survey.open && core > 0 && side < 2; side++) {
+    double index = pk_survey_side_index(&f->survey, side, k0);
+    if (core <= index * (1 + 1e-9)) {
+      return pk_fail(f->problem->context, PICKET_ERROR_NO_MODE,
+                     "the cell guides no mode: its highest index is %.6g, that of the open side at "
+                     "%sx is %.6g and must be lower; for a guide that leaks ask for its index",
+                     core, side ? "+" : "-", index);
+    }
+  }
+  return PICKET_OK;
+}
+
 picket_status pk_edge_family_open(const pk_problem *problem, pk_polarization polarization,
                                   const picket_options *options, bool mirror, pk_edge_family *out) {
   picket_status status = check_cell(problem);
@@ -102,6 +118,9 @@ picket_status pk_edge_family_open(const pk_problem *problem, pk_polarization pol
                              .open = problem->cell.lateral == PK_LATERAL_OPEN,
                              .side_medium = {f.survey.side_medium[0], f.survey.side_medium[1]},
                              .inside = f.inside};
+  if (status == PICKET_OK) {
+    status = check_guidance(&f);
+  }
   if (status == PICKET_OK) {
     status = first_look(&f);
   }

@@ -135,6 +135,21 @@ double pk_survey_side_index(const pk_survey *survey, int side, double k0) {
   return sqrt(permittivity_near(survey->problem, survey->side_medium[side], k0));
 }
 
+double pk_survey_core_index(const pk_survey *survey, double k0) {
+  const pk_cell *cell = &survey->problem->cell;
+  double low[2] = {-0.5 * cell->pitch_um, 0}, high[2] = {0.5 * cell->pitch_um, 0};
+  pk_box box;
+  if (!pk_geometry_extent(cell->geometry, PK_V, &low[1], &high[1]) || !(high[1] > low[1]) ||
+      pk_geometry_box(cell->geometry, low, high, &box) != PICKET_OK) {
+    return 0;
+  }
+  double highest = 0;
+  for (int i = 0; i < box.count; i++) {
+    highest = fmax(highest, permittivity_near(survey->problem, box.medium[i], k0));
+  }
+  return sqrt(highest);
+}
+
 double pk_survey_light_line(const pk_survey *survey) {
   double line = 0;
   for (int side = 0; survey->open && side < 2; side++) {

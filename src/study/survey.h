@@ -38,6 +38,9 @@ double pk_survey_permittivity(const pk_survey *survey, int material, double k0);
 /* Index of an open side at k0 (materials moved into their known range). */
 double pk_survey_side_index(const pk_survey *survey, int side, double k0);
 
+/* The highest index between the outermost edges of the shapes at k0; 0 where it can't be told. */
+double pk_survey_core_index(const pk_survey *survey, double k0);
+
 /* The longest vacuum wavelength, µm, at which a state at the zone edge lies above the light line of
  * an open side; 0 for closed cells. */
 double pk_survey_light_line(const pk_survey *survey);
