@@ -8,8 +8,11 @@
 static const double PI = 3.141592653589793238;
 
 enum {
-  STEPS_PER_PITCH = 8,       /* of the base: the family starts at 16, where h² rules */
-  STEPS_PER_PITCH_STACK = 24 /* one-dimensional: costs nothing */
+  STEPS_PER_PITCH = 8,        /* of the base: the family starts at 16, where h² rules */
+  STEPS_PER_PITCH_STACK = 24, /* one-dimensional: costs nothing */
+  /* Of the base, in the densest medium. A pitch below the stop band is half a wave long and has
+   * twice as many; the limit counts for pitches of several waves. */
+  STEPS_PER_WAVE = 8
 };
 
 enum { RADIATED_ORDERS = 30 };
@@ -81,9 +84,9 @@ double pk_survey_permittivity(const pk_survey *survey, int material, double k0) 
   return permittivity_near(survey->problem, material, k0);
 }
 
-/* Mean index of the structure: of the whole cell if it is closed, of the extent of the shapes if it
- * is open. */
-static double mean_index(const pk_problem *problem, double k0) {
+/* What the structure holds: the whole cell if it is closed, the extent of the shapes if it is open.
+ * False if it cannot be told (too many media). */
+static bool box_of(const pk_problem *problem, pk_box *box) {
   const pk_cell *cell = &problem->cell;
   double low[2] = {-0.5 * cell->pitch_um, -0.5}, high[2] = {0.5 * cell->pitch_um, 0.5};
   if (cell->lateral == PK_LATERAL_OPEN) {
@@ -92,15 +95,33 @@ static double mean_index(const pk_problem *problem, double k0) {
     low[1] = -0.5 * cell->span_um;
     high[1] = 0.5 * cell->span_um;
   }
+  return pk_geometry_box(cell->geometry, low, high, box) == PICKET_OK;
+}
+
+/* Mean index of the structure. */
+static double mean_index(const pk_problem *problem, double k0) {
   pk_box box;
   double mean = 0;
-  if (pk_geometry_box(cell->geometry, low, high, &box) != PICKET_OK) {
+  if (!box_of(problem, &box)) {
     return 1.5; /* any index of a solid: only a place to start */
   }
   for (int i = 0; i < box.count; i++) {
     mean += box.fraction[i] * permittivity_near(problem, box.medium[i], k0);
   }
   return sqrt(mean);
+}
+
+void pk_survey_resolve(pk_survey *survey, double k0) {
+  const pk_problem *problem = survey->problem;
+  pk_box box;
+  double densest = 1;
+  if (box_of(problem, &box)) {
+    for (int i = 0; i < box.count; i++) {
+      densest = fmax(densest, permittivity_near(problem, box.medium[i], k0));
+    }
+  }
+  double waves = problem->cell.pitch_um * sqrt(densest) * k0 / (2 * PI);
+  survey->steps_per_pitch = fmax(survey->steps_per_pitch, ceil(STEPS_PER_WAVE * waves));
 }
 
 /* Frequency of the Bragg condition k0 n = π/Λ, from the estimate if there is one. */

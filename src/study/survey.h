@@ -28,6 +28,9 @@ typedef struct pk_survey {
 picket_status pk_survey_take(const pk_problem *problem, pk_polarization polarization,
                              pk_survey *out);
 
+/* Makes the base grid fine enough for waves of frequency k0 in the densest medium of the cell. */
+void pk_survey_resolve(pk_survey *survey, double k0);
+
 /* 1/e length into an open side of a field with wavenumber k at frequency k0; never longer than a
  * hundred pitches (a mode at the light line reaches as far as it likes). */
 double pk_survey_decay(const pk_survey *survey, int side, double k, double k0);
