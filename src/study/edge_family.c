@@ -83,8 +83,9 @@ static picket_status check_cell(const pk_problem *problem) {
 /* A guide below an open side in index leaks into it at every wavelength, and without contrast there
  * is none. */
 static picket_status check_guidance(const pk_edge_family *f) {
-  double k0 = f->survey.k0_start, core = pk_survey_core_index(&f->survey, k0);
-  for (int side = 0; f->survey.open && core > 0 && side < 2; side++) {
+  double k0 = f->survey.k0_start, core = 0;
+  picket_status status = pk_survey_core_index(&f->survey, k0, &core);
+  for (int side = 0; status == PICKET_OK && f->survey.open && core > 0 && side < 2; side++) {
     double index = pk_survey_side_index(&f->survey, side, k0);
     if (core <= index * (1 + 1e-9)) {
       return pk_fail(f->problem->context, PICKET_ERROR_NO_MODE,
@@ -93,7 +94,7 @@ static picket_status check_guidance(const pk_edge_family *f) {
                      core, side ? "+" : "-", index);
     }
   }
-  return PICKET_OK;
+  return status;
 }
 
 picket_status pk_edge_family_open(const pk_problem *problem, pk_polarization polarization,

@@ -255,7 +255,9 @@ picket_status pk_look_take(const pk_problem *problem, pk_polarization polarizati
   }
   picket_status status = pk_survey_take(problem, polarization, &look.survey);
   if (status == PICKET_OK) {
-    pk_survey_resolve(&look.survey, look.k0);
+    status = pk_survey_resolve(&look.survey, look.k0);
+  }
+  if (status == PICKET_OK) {
     look.mode = PK_NEW(problem->context, wanted + SPARE, pk_followed);
     status = look.mode ? first_look(&look, wanted, accuracy) : PICKET_ERROR_MEMORY;
   }

@@ -13,7 +13,10 @@
 
 enum { MOST_MODES = 20, FAMILIES = 4 };
 
-static const char NO_MODE[] = "the section guides no mode at this wavelength";
+static const char NO_MODE[] =
+    "no guided mode was found at this wavelength: the section guides none, or binds one too weakly "
+    "for the "
+    "span that was looked at; a larger section.span_nm may show it";
 
 typedef struct work {
   const pk_problem *problem;

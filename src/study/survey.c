@@ -84,9 +84,20 @@ double pk_survey_permittivity(const pk_survey *survey, int material, double k0) 
   return permittivity_near(survey->problem, material, k0);
 }
 
-/* What the structure holds: the whole cell if it is closed, the extent of the shapes if it is open.
- * False if it cannot be told (too many media). */
-static bool box_of(const pk_problem *problem, pk_box *box) {
+/* An empty box where there are too many media to tell. */
+static picket_status box_between(const pk_cell *cell, const double low[2], const double high[2],
+                                 pk_box *box) {
+  picket_status status = pk_geometry_box(cell->geometry, low, high, box);
+  if (status != PICKET_OK && status != PICKET_ERROR_MEMORY) {
+    box->count = 0;
+    status = PICKET_OK;
+  }
+  return status;
+}
+
+/* What the structure holds: the whole cell if it is closed, the extent of the shapes if it is open;
+ * nothing if it cannot be told (too many media). PICKET_ERROR_MEMORY. */
+static picket_status box_of(const pk_problem *problem, pk_box *box) {
   const pk_cell *cell = &problem->cell;
   double low[2] = {-0.5 * cell->pitch_um, -0.5}, high[2] = {0.5 * cell->pitch_um, 0.5};
   if (cell->lateral == PK_LATERAL_OPEN) {
@@ -95,33 +106,38 @@ static bool box_of(const pk_problem *problem, pk_box *box) {
     low[1] = -0.5 * cell->span_um;
     high[1] = 0.5 * cell->span_um;
   }
-  return pk_geometry_box(cell->geometry, low, high, box) == PICKET_OK;
+  return box_between(cell, low, high, box);
 }
 
 /* Mean index of the structure. */
-static double mean_index(const pk_problem *problem, double k0) {
+static picket_status mean_index(const pk_problem *problem, double k0, double *index) {
   pk_box box;
   double mean = 0;
-  if (!box_of(problem, &box)) {
-    return 1.5; /* any index of a solid: only a place to start */
+  picket_status status = box_of(problem, &box);
+  if (status != PICKET_OK) {
+    return status;
   }
   for (int i = 0; i < box.count; i++) {
     mean += box.fraction[i] * permittivity_near(problem, box.medium[i], k0);
   }
-  return sqrt(mean);
+  *index = box.count > 0 ? sqrt(mean) : 1.5; /* any index of a solid: only a place to start */
+  return PICKET_OK;
 }
 
-void pk_survey_resolve(pk_survey *survey, double k0) {
+picket_status pk_survey_resolve(pk_survey *survey, double k0) {
   const pk_problem *problem = survey->problem;
   pk_box box;
   double densest = 1;
-  if (box_of(problem, &box)) {
-    for (int i = 0; i < box.count; i++) {
-      densest = fmax(densest, permittivity_near(problem, box.medium[i], k0));
-    }
+  picket_status status = box_of(problem, &box);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  for (int i = 0; i < box.count; i++) {
+    densest = fmax(densest, permittivity_near(problem, box.medium[i], k0));
   }
   double waves = problem->cell.pitch_um * sqrt(densest) * k0 / (2 * PI);
   survey->steps_per_pitch = fmax(survey->steps_per_pitch, ceil(STEPS_PER_WAVE * waves));
+  return PICKET_OK;
 }
 
 /* Frequency of the Bragg condition k0 n = π/Λ, from the estimate if there is one. */
@@ -137,11 +153,13 @@ static picket_status find_start(pk_survey *survey) {
     return PICKET_OK;
   }
   double k0 = PI / (1.5 * pitch);
-  for (int i = 0; i < 4; i++) {
-    k0 = PI / (mean_index(survey->problem, k0) * pitch);
+  for (int i = 0; status == PICKET_OK && i < 4; i++) {
+    double index = 1;
+    status = mean_index(survey->problem, k0, &index);
+    k0 = PI / (index * pitch);
   }
   survey->k0_start = k0;
-  return PICKET_OK;
+  return status;
 }
 
 double pk_survey_decay(const pk_survey *survey, int side, double k, double k0) {
@@ -156,19 +174,21 @@ double pk_survey_side_index(const pk_survey *survey, int side, double k0) {
   return sqrt(permittivity_near(survey->problem, survey->side_medium[side], k0));
 }
 
-double pk_survey_core_index(const pk_survey *survey, double k0) {
+picket_status pk_survey_core_index(const pk_survey *survey, double k0, double *index) {
   const pk_cell *cell = &survey->problem->cell;
   double low[2] = {-0.5 * cell->pitch_um, 0}, high[2] = {0.5 * cell->pitch_um, 0};
   pk_box box;
-  if (!pk_geometry_extent(cell->geometry, PK_V, &low[1], &high[1]) || !(high[1] > low[1]) ||
-      pk_geometry_box(cell->geometry, low, high, &box) != PICKET_OK) {
-    return 0;
+  *index = 0;
+  if (!pk_geometry_extent(cell->geometry, PK_V, &low[1], &high[1]) || !(high[1] > low[1])) {
+    return PICKET_OK;
   }
+  picket_status status = box_between(cell, low, high, &box);
   double highest = 0;
-  for (int i = 0; i < box.count; i++) {
+  for (int i = 0; status == PICKET_OK && i < box.count; i++) {
     highest = fmax(highest, permittivity_near(survey->problem, box.medium[i], k0));
   }
-  return sqrt(highest);
+  *index = sqrt(highest);
+  return status;
 }
 
 double pk_survey_light_line(const pk_survey *survey) {

@@ -29,7 +29,7 @@ picket_status pk_survey_take(const pk_problem *problem, pk_polarization polariza
                              pk_survey *out);
 
 /* Makes the base grid fine enough for waves of frequency k0 in the densest medium of the cell. */
-void pk_survey_resolve(pk_survey *survey, double k0);
+picket_status pk_survey_resolve(pk_survey *survey, double k0);
 
 /* 1/e length into an open side of a field with wavenumber k at frequency k0; never longer than a
  * hundred pitches (a mode at the light line reaches as far as it likes). */
@@ -42,7 +42,7 @@ double pk_survey_permittivity(const pk_survey *survey, int material, double k0);
 double pk_survey_side_index(const pk_survey *survey, int side, double k0);
 
 /* The highest index between the outermost edges of the shapes at k0; 0 where it can't be told. */
-double pk_survey_core_index(const pk_survey *survey, double k0);
+picket_status pk_survey_core_index(const pk_survey *survey, double k0, double *index);
 
 /* The longest vacuum wavelength, µm, at which a state at the zone edge lies above the light line of
  * an open side; 0 for closed cells. */
