@@ -314,7 +314,7 @@ static picket_status sample_span_error(run *r, int m) {
 }
 
 static picket_quantity judge(const run *r, const int *m, int count, int number) {
-  double column[MOST_GRIDS];
+  double column[MOST_GRIDS] = {0};
   bool zero = true;
   for (int g = 0; g < count; g++) {
     column[g] = values_of(r, m[g])[number];

@@ -66,7 +66,7 @@ class Modes(tool.ToolTest):
     def test_a_section_that_guides_nothing(self):
         document, (point,) = self.ask(WIRE.replace('fill: core', 'fill: oxide'))
         self.assertEqual(point['modes'], [])
-        self.assertIn('guides no mode', point['note'])
+        self.assertIn('no guided mode was found', point['note'])
         self.assertTrue(document['complete'])
 
     def test_what_is_missing_is_said(self):
