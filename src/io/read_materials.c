@@ -30,11 +30,13 @@ enum {
 static const char *const kinds[KIND_COUNT] = {"catalogue", "constant", "sellmeier",
                                               "table",     "slab",     "layered"};
 
-enum { CONSTANT_INDEX, CONSTANT_EXTINCTION, CONSTANT_DN_DT, CONSTANT_COUNT };
+enum { CONSTANT_INDEX, CONSTANT_EXTINCTION, CONSTANT_DN_DT, CONSTANT_NUMBERS };
+enum { CONSTANT_GAIN = CONSTANT_NUMBERS, CONSTANT_COUNT };
 static const pk_key constant_keys[CONSTANT_COUNT] = {
     [CONSTANT_INDEX] = {"index", true},
     [CONSTANT_EXTINCTION] = {"extinction", false},
     [CONSTANT_DN_DT] = {"dn_dt_per_k", false},
+    [CONSTANT_GAIN] = {"gain", false},
 };
 
 enum { SELLMEIER_B, SELLMEIER_C, SELLMEIER_COUNT };
@@ -120,22 +122,28 @@ static picket_status add_catalogue(const pk_reader *reader, const entry *e) {
 static picket_status add_constant(const pk_reader *reader, const entry *e) {
   static const pk_limits index = {0, LARGEST_INDEX, true, false, false, ""};
   static const pk_limits extinction = {
-      0, LARGEST_INDEX, false, false, false, "(a medium with gain is not possible)"};
+      0, LARGEST_INDEX, false, false, false, "(a medium that amplifies needs gain: true)"};
+  static const pk_limits either = {-LARGEST_INDEX, LARGEST_INDEX, false, false, false, ""};
   static const pk_limits dn_dt = {-1, 1, false, false, false, "1/K"};
-  static const pk_limits *const limits[] = {&index, &extinction, &dn_dt};
+  static const char *const answers[] = {"false", "true"};
   const pk_node *values[CONSTANT_COUNT];
-  double number[CONSTANT_COUNT] = {0};
+  double number[CONSTANT_NUMBERS] = {0};
+  int gain = 0;
   picket_status status =
       pk_read_block(reader->context, e->value, constant_keys, CONSTANT_COUNT, values);
-  for (int i = 0; status == PICKET_OK && i < CONSTANT_COUNT; i++) {
+  if (status == PICKET_OK && values[CONSTANT_GAIN]) {
+    status = pk_read_choice(reader->context, values[CONSTANT_GAIN], answers, 2, &gain);
+  }
+  const pk_limits *const limits[] = {&index, gain ? &either : &extinction, &dn_dt};
+  for (int i = 0; status == PICKET_OK && i < CONSTANT_NUMBERS; i++) {
     if (values[i]) {
       status = pk_read_number(reader->context, values[i], limits[i], &number[i]);
     }
   }
   if (status == PICKET_OK) {
-    status = pk_materials_add_constant(reader->problem->materials, e->value->place, e->name->key,
-                                       number[CONSTANT_INDEX], number[CONSTANT_EXTINCTION],
-                                       number[CONSTANT_DN_DT]);
+    status = (gain ? pk_materials_add_amplifier : pk_materials_add_constant)(
+        reader->problem->materials, e->value->place, e->name->key, number[CONSTANT_INDEX],
+        number[CONSTANT_EXTINCTION], number[CONSTANT_DN_DT]);
   }
   return status;
 }

@@ -46,6 +46,9 @@ pk_material_range pk_materials_range(const pk_materials *materials, int material
  * index > 0; extinction >= 0. */
 picket_status pk_materials_add_constant(pk_materials *materials, pk_place place, const char *name,
                                         double index, double extinction, double dn_dt_per_k);
+/* The same for a medium that may amplify: extinction of either sign. */
+picket_status pk_materials_add_amplifier(pk_materials *materials, pk_place place, const char *name,
+                                         double index, double extinction, double dn_dt_per_k);
 
 /* n² = 1 + Σ B λ²/(λ² - C²), `count` terms, 1 to 8; λ in µm. Poles inside a wanted wavelength are
  * met at evaluation: n² <= 0 or λ = C is PICKET_ERROR_RANGE. */

@@ -124,12 +124,22 @@ picket_status pk_materials_append(pk_materials *materials, pk_material *item) {
 
 picket_status pk_materials_add_constant(pk_materials *materials, pk_place place, const char *name,
                                         double index, double extinction, double dn_dt_per_k) {
+  if (!(extinction >= 0)) {
+    return pk_fail_at(materials->context, PICKET_ERROR_INPUT, place,
+                      "material '%s': extinction is %g, must be 0 or more and finite", name,
+                      extinction);
+  }
+  return pk_materials_add_amplifier(materials, place, name, index, extinction, dn_dt_per_k);
+}
+
+picket_status pk_materials_add_amplifier(pk_materials *materials, pk_place place, const char *name,
+                                         double index, double extinction, double dn_dt_per_k) {
   picket_context *context = materials->context;
   if (!(index > 0 && index < INFINITY)) {
     return pk_fail_at(context, PICKET_ERROR_INPUT, place,
                       "material '%s': index is %g, must be above 0 and finite", name, index);
   }
-  if (!(extinction >= 0 && extinction < INFINITY)) {
+  if (!isfinite(extinction)) {
     return pk_fail_at(context, PICKET_ERROR_INPUT, place,
                       "material '%s': extinction is %g, must be 0 or more and finite", name,
                       extinction);
