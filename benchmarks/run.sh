@@ -38,6 +38,7 @@ cmake --build "$build" --target picket_tool -j 2 >>"$build.log" 2>&1 || { cat "$
 /usr/bin/python3 "$here/benchmarks/sweep_workers.py" "$build/picket" "$here/examples/bus_section.yaml"
 if /usr/bin/python3 -c 'import scipy' 2>/dev/null; then
   /usr/bin/python3 "$here/benchmarks/compare_scipy.py" "$build/benchmark_peer"
+  /usr/bin/python3 "$here/benchmarks/compare_edge.py" "$build/benchmark_edge" "$here/examples/bus_section.yaml"
 else
-  echo "benchmarks: no SciPy (package python3-scipy), its comparison is left out" >&2
+  echo "benchmarks: no SciPy (package python3-scipy), its comparisons are left out" >&2
 fi
