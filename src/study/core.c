@@ -15,6 +15,9 @@
 #include "study/bragg.h"
 #include "study/estimate.h"
 
+/* Of the averages: a core of one medium must not be refused for its last bits. */
+static const double ROUNDING = 1e-12;
+
 enum {
   OBLIQUE_STRIPS = 24,   /* staircase of a curved core: its error is far below the estimate's */
   FIRST_INTERVALS = 16,  /* of a profile; doubled until it fits */
@@ -243,6 +246,18 @@ static picket_status side(const pk_core *core, int material, double wavelength_u
   return status;
 }
 
+/* The second-order term grows as (pitch/λ)² without bound. An average above the densest medium it
+ * is made of is past where the expansion holds, and no estimate. */
+static double within_media(const pk_core *core, double index) {
+  double densest = 0;
+  for (int i = 0; i < core->count; i++) {
+    for (int j = 0; j < core->strips[i].count; j++) {
+      densest = fmax(densest, core->strips[i].permittivity[j]);
+    }
+  }
+  return index * index <= densest * (1 + ROUNDING) ? index : NAN;
+}
+
 picket_status pk_core_index(pk_core *core, double wavelength_um, double *index) {
   picket_context *context = core->problem->context;
   bool known = true;
@@ -250,7 +265,7 @@ picket_status pk_core_index(pk_core *core, double wavelength_um, double *index) 
   pk_slab_mode mode = {0};
   picket_status status = homogenise(core, wavelength_um, &known);
   if (status == PICKET_OK && known && core->low_side < 0) {
-    *index = sqrt(creal(core->films[0].medium.across));
+    *index = within_media(core, sqrt(creal(core->films[0].medium.across)));
     return PICKET_OK;
   }
   if (status == PICKET_OK && known) {
@@ -266,6 +281,6 @@ picket_status pk_core_index(pk_core *core, double wavelength_um, double *index) 
   status =
       pk_slab_mode_of_order(context, &slab, core->polarization == PK_EY ? PK_SLAB_TE : PK_SLAB_TM,
                             wavelength_um, 0, &mode, NULL, NULL);
-  *index = creal(mode.index);
+  *index = within_media(core, creal(mode.index));
   return pk_unknown_is_nan(context, status, index);
 }

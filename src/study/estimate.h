@@ -27,7 +27,8 @@ pk_rytov pk_rytov_average(int count, const double *boundaries, const double *per
 picket_status pk_estimate(const pk_problem *problem, pk_polarization polarization,
                           picket_edge_estimate *out);
 
-/* Index of the homogenised guide at a wavelength; NaN where the estimate does not apply, is unknown
+/* Index of the homogenised guide at a wavelength; NaN where the estimate does not apply (also past
+ * the pitch at which it would exceed every medium), is unknown
  * or guides nothing. PICKET_ERROR_MEMORY. */
 picket_status pk_estimated_index(const pk_problem *problem, pk_polarization polarization,
                                  double wavelength_um, double *index);

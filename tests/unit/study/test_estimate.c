@@ -172,6 +172,33 @@ static void light_lines(void **state) {
   picket_problem_free(u.owner);
 }
 
+/* The second-order term grows as the square of the pitch: for this stack it passes 3.476² at
+ * ⅓ (π Λ/λ g)² = 3.476² - ε∥, Λ = 0.764 µm at 1.55 µm. Beyond, there is no estimate. */
+static void none_above_every_medium(void **state) {
+  (void)state;
+  static const int pitch_nm[] = {300, 750, 780, 3000};
+  const double a = 3.476 * 3.476, b = 1.444 * 1.444, g = (a - b) / 4;
+  for (int i = 0; i < 4; i++) {
+    char text[512];
+    snprintf(text, sizeof text,
+             "format: 1\n" MATERIALS
+             "cell: {pitch_nm: %d, cladding: oxide, lateral: uniform, shapes: [{stripe: {fill: "
+             "core, across: z, from_nm: %g, to_nm: %g}}]}\n",
+             pitch_nm[i], -0.25 * pitch_nm[i], 0.25 * pitch_nm[i]);
+    understood u = understand_good(context, text);
+    double index = 0, turn = pi * pitch_nm[i] / 1550.0 * g;
+    double expected = sqrt((a + b) / 2 + turn * turn / 3);
+    assert_int_equal(pk_estimated_index(u.problem, PK_EY, 1.55, &index), PICKET_OK);
+    if (expected <= 3.476) {
+      assert_near(index, expected, 1e-13); /* roundings of a dozen operations */
+    } else {
+      assert_true(isnan(index));
+    }
+    assert_int_equal(isnan(index), i > 1);
+    picket_problem_free(u.owner);
+  }
+}
+
 static void out_of_memory(void **state) {
   (void)state;
   picket_status status = PICKET_ERROR_MEMORY;
@@ -207,6 +234,7 @@ int main(void) {
       cmocka_unit_test(cells_it_does_not_apply_to),
       cmocka_unit_test(none_where_a_material_is_unknown),
       cmocka_unit_test(light_lines),
+      cmocka_unit_test(none_above_every_medium),
       cmocka_unit_test(out_of_memory),
   };
   return cmocka_run_group_tests(tests, set_up, tear_down);
