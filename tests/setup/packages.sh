@@ -7,7 +7,8 @@ set -eu
 # libc6-dev is only recommended by gcc, so it has to be named.
 build_packages="gcc libc6-dev cmake make pkg-config
   libsuitesparse-dev libarpack2-dev libopenblas-dev libyaml-dev libjansson-dev libhdf5-dev"
-test_packages="libcmocka-dev g++ clang clang-format gcovr
+# gfortran brings the library that a static link of OpenBLAS names.
+test_packages="libcmocka-dev g++ gfortran clang clang-format gcovr
   python3 python3-numpy python3-scipy python3-mpmath python3-jsonschema python3-yaml python3-h5py"
 
 say() {
