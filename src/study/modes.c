@@ -100,7 +100,8 @@ static picket_status fill_modes(work *w, int total, picket_modes_point *point) {
 
 static picket_status fill_point(work *w, double wavelength_um, picket_modes_point *point) {
   point->wavelength_um = wavelength_um;
-  picket_status status = pk_section_survey_take(w->problem, wavelength_um, &w->survey);
+  picket_status status =
+      pk_section_survey_take(w->problem, &w->problem->section, wavelength_um, &w->survey);
   int total = 0;
   if (status == PICKET_OK) {
     status = look(w, &total);

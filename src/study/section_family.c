@@ -64,7 +64,7 @@ static picket_status open_section(const pk_section_survey *s, const pk_axis *x, 
     status = pk_axis_divide(context, y, m, &fine_y);
   }
   if (status == PICKET_OK) {
-    pk_section_plan plan = {s->problem->section.geometry, &fine_x, &fine_y, s->media, true};
+    pk_section_plan plan = {s->block->geometry, &fine_x, &fine_y, s->media, true};
     status = pk_section_create(context, &plan, &section);
   }
   if (status == PICKET_OK) {
@@ -290,7 +290,7 @@ static picket_status lay_closed(run *r) {
 }
 
 static bool windowed(const pk_section_survey *s) {
-  return s->problem->section.span_um[0] > 0 && s->problem->section.span_um[1] > 0;
+  return s->block->span_um[0] > 0 && s->block->span_um[1] > 0;
 }
 
 /* Magnetic walls move a value the other way than electric ones, by the same amount to first order:

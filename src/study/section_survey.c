@@ -66,7 +66,7 @@ static picket_status take_media(pk_section_survey *s, double wavelength_um) {
   for (int m = 0; m < s->media; m++) {
     pk_medium at[3] = {{.permittivity = 1}, {.permittivity = 1}, {.permittivity = 1}};
     picket_status status = PICKET_OK;
-    if (problem->section.used[m]) {
+    if (s->block->used[m]) {
       status =
           pk_materials_tensor_at(problem->materials, m, wavelength_um, problem->temperature_c, at);
       for (int c = 0; c < 3; c++) {
@@ -95,7 +95,7 @@ static int medium_on(const pk_geometry *geometry, int axis, double along, double
 static picket_status films_index(const pk_section_survey *s, int axis, double at, int count,
                                  const double *line, double *index) {
   picket_context *context = s->problem->context;
-  const pk_geometry *geometry = s->problem->section.geometry;
+  const pk_geometry *geometry = s->block->geometry;
   double far = axis == PK_U ? FAR_Y_UM : FAR_X_UM;
   int low_side = axis == PK_U ? 2 : 0; /* of the films */
   double low = s->leaks[low_side] ? s->edge[low_side] + 1e-6 : -far;
@@ -144,7 +144,7 @@ static picket_status take_sides(pk_section_survey *s) {
     double *line = NULL;
     int count = 0;
     picket_status status =
-        pk_geometry_lines(s->problem->section.geometry, axis == PK_U ? PK_V : PK_U, &line, &count);
+        pk_geometry_lines(s->block->geometry, axis == PK_U ? PK_V : PK_U, &line, &count);
     if (status == PICKET_OK) {
       status = films_index(s, axis, side % 2 ? far : -far, count, line, &s->side[side]);
     }
@@ -159,7 +159,7 @@ static picket_status take_sides(pk_section_survey *s) {
 /* --- Extent and planes ------------------------------------------------------------------------ */
 
 static void take_extent(pk_section_survey *s) {
-  const pk_section_block *block = &s->problem->section;
+  const pk_section_block *block = s->block;
   for (int axis = 0; axis < 2; axis++) {
     bool given = block->span_um[axis] > 0;
     s->low[axis] = given ? -0.5 * block->span_um[axis] : block->low_um[axis];
@@ -174,7 +174,7 @@ static void take_extent(pk_section_survey *s) {
 static void take_cut(pk_section_survey *s) {
   s->cut = 0;
   for (int side = 0; side < PK_SIDES; side++) {
-    bool walled = s->problem->section.span_um[side / 2] > 0 || s->leaks[side];
+    bool walled = s->block->span_um[side / 2] > 0 || s->leaks[side];
     s->cut = fmax(s->cut, walled ? 0 : s->side[side]);
   }
 }
@@ -185,8 +185,7 @@ picket_status pk_section_survey_set_apart(pk_section_survey *s, bool *done) {
   for (int axis = 0; axis < 2; axis++) {
     double *line = NULL;
     int count = 0;
-    picket_status status =
-        pk_geometry_lines(s->problem->section.geometry, (pk_axis_name)axis, &line, &count);
+    picket_status status = pk_geometry_lines(s->block->geometry, (pk_axis_name)axis, &line, &count);
     if (status != PICKET_OK) {
       return status;
     }
@@ -195,7 +194,7 @@ picket_status pk_section_survey_set_apart(pk_section_survey *s, bool *done) {
       double edge = end == 0 ? line[0] : line[count - 1];
       bool beyond = end == 0 ? edge < s->low[axis] : edge > s->high[axis];
       if (axis == PK_V && beyond && s->side[side] >= s->cut && !s->leaks[side] &&
-          s->problem->section.span_um[axis] == 0) {
+          s->block->span_um[axis] == 0) {
         s->leaks[side] = found = true;
         s->edge[side] = edge;
       }
@@ -216,9 +215,9 @@ picket_status pk_section_survey_set_apart(pk_section_survey *s, bool *done) {
   return status;
 }
 
-picket_status pk_section_survey_take(const pk_problem *problem, double wavelength_um,
-                                     pk_section_survey *out) {
-  pk_section_survey s = {.problem = problem, .k0 = 2 * PI / wavelength_um};
+picket_status pk_section_survey_take(const pk_problem *problem, const pk_section_block *block,
+                                     double wavelength_um, pk_section_survey *out) {
+  pk_section_survey s = {.problem = problem, .block = block, .k0 = 2 * PI / wavelength_um};
   picket_status status = take_media(&s, wavelength_um);
   if (status == PICKET_OK) {
     status = take_sides(&s);
@@ -306,10 +305,10 @@ static void place_ends(const pk_section_survey *s, const pk_section_wish *wish, 
                        pk_axis_wish *w) {
   w->from = s->low[axis];
   w->to = s->high[axis];
-  w->inner_from = s->problem->section.low_um[axis];
-  w->inner_to = s->problem->section.high_um[axis];
+  w->inner_from = s->block->low_um[axis];
+  w->inner_to = s->block->high_um[axis];
   w->low = w->high = wish->outer;
-  for (int end = 0; end < 2 && s->problem->section.span_um[axis] == 0; end++) {
+  for (int end = 0; end < 2 && s->block->span_um[axis] == 0; end++) {
     int side = 2 * axis + end;
     if (s->leaks[side]) {
       place_leak(s, wish, side, w);
@@ -332,8 +331,7 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
   picket_context *context = s->problem->context;
   double *line = NULL;
   int count = 0;
-  picket_status status =
-      pk_geometry_lines(s->problem->section.geometry, (pk_axis_name)axis, &line, &count);
+  picket_status status = pk_geometry_lines(s->block->geometry, (pk_axis_name)axis, &line, &count);
   if (status != PICKET_OK) {
     return status;
   }
@@ -343,7 +341,7 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
       .outer_step = INFINITY, /* far out a mode varies with its decay only */
       .growth = GROWTH,
       .least_intervals = 1};
-  const pk_section_block *block = &s->problem->section;
+  const pk_section_block *block = s->block;
   if (!pk_geometry_is_rectangular(block->geometry)) {
     double size = fmin(block->high_um[0] - block->low_um[0], block->high_um[1] - block->low_um[1]);
     w.step = fmin(w.step, size / STEPS_PER_SHAPE);
@@ -352,7 +350,7 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
   double *chosen = PK_NEW(context, count + 2, double);
   if (chosen) {
     w.lines = chosen;
-    w.line_count = choose_lines(&s->problem->section, axis, &w, count, line, chosen);
+    w.line_count = choose_lines(s->block, axis, &w, count, line, chosen);
     status = pk_axis_lay(context, &w, out);
   } else {
     status = PICKET_ERROR_MEMORY;
@@ -396,12 +394,12 @@ static double smallest_exponent(const pk_section_survey *s, const pk_corner_list
 
 picket_status pk_section_survey_law(const pk_section_survey *s, const pk_axis *x, const pk_axis *y,
                                     pk_error_law *out) {
-  const pk_geometry *geometry = s->problem->section.geometry;
+  const pk_geometry *geometry = s->block->geometry;
   pk_error_law law = {.count = 2, .exponent = {2, 4}, .smooth = 1};
   law.smooth = pk_geometry_is_rectangular(geometry) ? 1 : 0;
   double least = s->top;
   for (int m = 0; m < s->media; m++) {
-    least = s->problem->section.used[m] ? fmin(least, sqrt(cabs(s->permittivity[m]))) : least;
+    least = s->block->used[m] ? fmin(least, sqrt(cabs(s->permittivity[m]))) : least;
   }
   double ratio = least * least / (s->top * s->top);
   law.share = law.smooth ? 0 : SHARE * (1 - ratio) / (1 + ratio);

@@ -11,11 +11,12 @@
 enum { PK_SIDES = 4 };
 
 typedef struct pk_section_survey {
-  const pk_problem *problem;
-  double k0;                    /* 1/µm */
-  int media;                    /* materials of the problem */
-  double complex *permittivity; /* [3][media]; 1 where the section does not use one */
-  double complex *slope;        /* [3][media] k0 dε/dk0 */
+  const pk_problem *problem;     /* borrowed: its materials and temperature */
+  const pk_section_block *block; /* borrowed: the plane that is looked at */
+  double k0;                     /* 1/µm */
+  int media;                     /* materials of the problem */
+  double complex *permittivity;  /* [3][media]; 1 where the section does not use one */
+  double complex *slope;         /* [3][media] k0 dε/dk0 */
   bool dispersive;
   double top;             /* highest index of the media */
   double side[PK_SIDES];  /* index that a wave has far out at a side: of the medium there, or of
@@ -28,8 +29,9 @@ typedef struct pk_section_survey {
   double edge[PK_SIDES];  /* where the medium of a leaking side begins */
 } pk_section_survey;
 
-picket_status pk_section_survey_take(const pk_problem *problem, double wavelength_um,
-                                     pk_section_survey *out);
+/* `block` is the problem's section, or another plane across a guide (of a channel). */
+picket_status pk_section_survey_take(const pk_problem *problem, const pk_section_block *block,
+                                     double wavelength_um, pk_section_survey *out);
 /* Sets the sides of the highest index apart: modes below it leak there. `cut` becomes that of the
  * other sides. False, and nothing done, if there is no such side with an edge. */
 picket_status pk_section_survey_set_apart(pk_section_survey *survey, bool *done);
