@@ -11,7 +11,7 @@ import c_source
 
 # A room includes only itself and the rooms before it.
 ROOMS = ('base', 'dense', 'sparse', 'eigen', 'slab', 'material', 'geometry', 'grid', 'operator',
-         'bloch', 'section', 'study', 'io', 'api')
+         'bloch', 'section', 'channel', 'study', 'io', 'api')
 TOOL = 'cli'
 
 LONGEST_FUNCTION = 100
