@@ -6,8 +6,8 @@
 #include <string.h>
 
 #include "base/memory.h"
-#include "section/forms.h"
-#include "section/nodes.h"
+#include "study/section_describe.h"
+#include "study/section_member.h"
 
 /* Members of the family of grids on each attempt; zeros are left out. */
 /* Finer grids gain little against scattered values, so curved ones take fewer attempts. */
@@ -18,20 +18,9 @@ static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {
 static const int MEMBERS_CURVED[CURVED_ATTEMPTS][MOST_GRIDS] = {
     {2, 3, 4, 5}, {4, 5, 6, 7}, {6, 7, 8, 10}};
 
-enum { INDEX, GROUP, LOSS, AREA, NUMBERS }; /* of a mode, on a grid */
-
 /* A first look: walls this many decay lengths away, for a mode half way up. */
 static const double LOOK_REACH = 5;
 enum { LOOK_MEMBER = 1, LOOK_AT_ONCE = 4 };
-
-/* The shift stands this far above the highest index, where no mode is. */
-static const double ABOVE_TOP = 1.0005;
-
-/* Candidates among which a leaking mode is looked for: it is the one that is absorbed least. */
-enum { CANDIDATES = 3 };
-
-/* dB/cm of a field that falls as exp(-x µm⁻¹): 20 log10(e) × 1e4. */
-static const double DB_PER_CM = 86858.896380650366;
 
 typedef struct run {
   pk_section_family *family;
@@ -43,173 +32,13 @@ typedef struct run {
   pk_error_law law;
   int members;
   int member[MOST_MEMBERS];
-  double *values;     /* [MOST_MEMBERS][count][NUMBERS] */
-  double *span_error; /* [count][NUMBERS] */
+  double *values;     /* [MOST_MEMBERS][count][PK_NUMBERS] */
+  double *span_error; /* [count][PK_NUMBERS] */
   picket_section_mode *modes;
 } run;
 
 static bool leaks(const pk_section_survey *s) {
   return s->leaks[0] || s->leaks[1] || s->leaks[2] || s->leaks[3];
-}
-
-/* --- One grid --------------------------------------------------------------------------------- */
-
-static picket_status open_section(const pk_section_survey *s, const pk_axis *x, const pk_axis *y,
-                                  int m, pk_section **out) {
-  picket_context *context = s->problem->context;
-  pk_axis fine_x = {0}, fine_y = {0};
-  pk_section *section = NULL;
-  picket_status status = pk_axis_divide(context, x, m, &fine_x);
-  if (status == PICKET_OK) {
-    status = pk_axis_divide(context, y, m, &fine_y);
-  }
-  if (status == PICKET_OK) {
-    pk_section_plan plan = {s->block->geometry, &fine_x, &fine_y, s->media, true};
-    status = pk_section_create(context, &plan, &section);
-  }
-  if (status == PICKET_OK) {
-    status = pk_section_load(section, s->permittivity);
-  }
-  pk_axis_clear(context, &fine_x);
-  pk_axis_clear(context, &fine_y);
-  if (status != PICKET_OK) {
-    pk_section_free(section);
-    return status;
-  }
-  *out = section;
-  return PICKET_OK;
-}
-
-static picket_status uppermost(const pk_section_survey *s, pk_section *section, int wanted,
-                               pk_section_mode *modes, int *found) {
-  double top = s->k0 * s->top * ABOVE_TOP;
-  picket_status status = pk_section_modes(section, s->k0, top * top, wanted, modes, found);
-  return status;
-}
-
-/* Of the modes nearest to β² of the closed guide the one that is absorbed least, in *out. */
-static picket_status leaking_mode(const pk_section_survey *s, pk_section *section,
-                                  double complex near, pk_section_mode *out) {
-  picket_context *context = s->problem->context;
-  pk_section_mode modes[CANDIDATES] = {{0}};
-  int found = 0, best = 0;
-  picket_status status = pk_section_modes(section, s->k0, creal(near), CANDIDATES, modes, &found);
-  if (status != PICKET_OK) {
-    return status;
-  }
-  for (int i = 1; i < found; i++) {
-    if (fabs(cimag(modes[i].beta_square)) < fabs(cimag(modes[best].beta_square))) {
-      best = i;
-    }
-  }
-  *out = modes[best];
-  modes[best].h = NULL;
-  pk_section_modes_clear(context, found, modes);
-  return PICKET_OK;
-}
-
-/* The modes of the family on member m, by falling index of the closed guide. */
-static picket_status solve_member(const run *r, int m, pk_section *section,
-                                  pk_section_mode *modes) {
-  int count = r->family->count, found = 0;
-  if (r->closed_y.intervals == 0) {
-    picket_status status = uppermost(r->survey, section, count, modes, &found);
-    if (status == PICKET_OK && found < count) {
-      pk_section_modes_clear(r->context, found, modes);
-      status = pk_fail(r->context, PICKET_ERROR_NUMERIC, "%d of %d modes of the section converged",
-                       found, count);
-    }
-    return status;
-  }
-  pk_section_mode closed[PK_FAMILY_MODES] = {{0}};
-  pk_section *twin = NULL;
-  picket_status status = open_section(r->survey, &r->x, &r->closed_y, m, &twin);
-  if (status == PICKET_OK) {
-    status = uppermost(r->survey, twin, count, closed, &found);
-  }
-  for (int i = 0; status == PICKET_OK && i < count; i++) {
-    status = i < found ? leaking_mode(r->survey, section, closed[i].beta_square, &modes[i])
-                       : pk_fail(r->context, PICKET_ERROR_NUMERIC,
-                                 "%d of %d modes of the section converged", found, count);
-  }
-  pk_section_modes_clear(r->context, found, closed);
-  pk_section_free(twin);
-  if (status != PICKET_OK) {
-    pk_section_modes_clear(r->context, count, modes);
-  }
-  return status;
-}
-
-/* --- Numbers of a mode ------------------------------------------------------------------------ */
-
-/* Nodes of the whole from those of a part: E_x is odd across a plane x = constant that is a
- * magnetic wall (tangential E even there, normal E odd), and across a plane y = constant that is an
- * electric one; E_y the other way round. */
-static void count_nodes(const run *r, const pk_section_fields *fields, picket_section_mode *mode) {
-  int nodes[2];
-  bool along_x = mode->ex_share > 0.5;
-  pk_section_nodes(fields, along_x, nodes);
-  for (int axis = 0; axis < 2; axis++) {
-    if (r->survey->mirror[axis]) {
-      bool normal = along_x == (axis == 0);
-      bool odd = (r->family->plane[axis] == PK_END_FREE) == normal;
-      nodes[axis] = 2 * nodes[axis] + (odd ? 1 : 0);
-    }
-  }
-  mode->nodes_x = nodes[0];
-  mode->nodes_y = nodes[1];
-}
-
-static picket_status take_confinement(const run *r, pk_section *section,
-                                      const pk_section_fields *fields, picket_section_mode *mode) {
-  const pk_problem *problem = r->survey->problem;
-  double *share = PK_NEW(r->context, r->survey->media, double);
-  picket_confinement *list = PK_NEW(r->context, r->survey->media, picket_confinement);
-  picket_status status =
-      share && list ? pk_section_confinement(section, fields, share) : PICKET_ERROR_MEMORY;
-  int count = 0;
-  for (int m = 0; status == PICKET_OK && m < r->survey->media; m++) {
-    if (pk_section_uses(section, m)) {
-      list[count++] = (picket_confinement){pk_materials_name(problem->materials, m), share[m]};
-    }
-  }
-  pk_free(r->context, share);
-  if (status != PICKET_OK) {
-    pk_free(r->context, list);
-    return status;
-  }
-  pk_free(r->context, (void *)mode->confinement);
-  mode->confinement = list;
-  mode->material_count = count;
-  return PICKET_OK;
-}
-
-/* Quantities into numbers[NUMBERS]; the looks of the mode into `mode` where given. */
-static picket_status describe(const run *r, pk_section *section, const pk_section_mode *solved,
-                              double *numbers, picket_section_mode *mode) {
-  const pk_section_survey *s = r->survey;
-  pk_section_fields fields = {0};
-  double complex group = NAN;
-  picket_status status = pk_section_fields_take(section, s->k0, solved, &fields);
-  if (status == PICKET_OK) {
-    status = pk_section_group_index(section, &fields, s->dispersive ? s->slope : NULL, &group);
-  }
-  if (status == PICKET_OK) {
-    pk_section_looks looks;
-    pk_section_look(section, &fields, &looks);
-    int parts = (s->mirror[0] ? 2 : 1) * (s->mirror[1] ? 2 : 1);
-    numbers[INDEX] = creal(solved->beta) / s->k0;
-    numbers[GROUP] = creal(group);
-    numbers[LOSS] = DB_PER_CM * cimag(solved->beta);
-    numbers[AREA] = parts * looks.effective_area;
-    if (mode) {
-      mode->ex_share = looks.ex_share;
-      count_nodes(r, &fields, mode);
-      status = take_confinement(r, section, &fields, mode);
-    }
-  }
-  pk_section_fields_clear(&fields);
-  return status;
 }
 
 /* --- A family of grids ------------------------------------------------------------------------ */
@@ -219,16 +48,17 @@ static picket_status sample(run *r, const pk_axis *x, const pk_axis *y, int m, b
   pk_section_mode modes[PK_FAMILY_MODES] = {{0}};
   pk_section *section = NULL;
   int count = r->family->count;
-  picket_status status = open_section(r->survey, x, y, m, &section);
+  picket_status status = pk_section_member_open(r->survey, x, y, m, &section);
   if (status == PICKET_OK) {
-    status = solve_member(r, m, section, modes);
+    status = pk_section_member_solve(r->survey, &r->x, &r->closed_y, m, section, count, modes);
   }
   for (int i = 0; status == PICKET_OK && i < count; i++) {
-    status = describe(r, section, &modes[i], values + i * NUMBERS, keep ? &r->modes[i] : NULL);
+    status = pk_section_describe(r->family, section, &modes[i], values + i * PK_NUMBERS,
+                                 keep ? &r->modes[i] : NULL);
   }
   if (status == PICKET_OK) {
     pk_log(r->context, PICKET_LOG_INFO, "section: grid 1/%d, %lld unknowns, index %.10g", m,
-           (long long)pk_section_size(section), values[INDEX]);
+           (long long)pk_section_size(section), values[PK_NUMBER_INDEX]);
   }
   pk_section_modes_clear(r->context, count, modes);
   pk_section_free(section);
@@ -238,7 +68,7 @@ static picket_status sample(run *r, const pk_axis *x, const pk_axis *y, int m, b
 static double *values_of(const run *r, int m) {
   for (int i = 0; i < r->members; i++) {
     if (r->member[i] == m) {
-      return r->values + (ptrdiff_t)i * r->family->count * NUMBERS;
+      return r->values + (ptrdiff_t)i * r->family->count * PK_NUMBERS;
     }
   }
   return NULL;
@@ -251,7 +81,7 @@ static picket_status sample_grids(run *r, const int *m, int count) {
       continue;
     }
     status = pk_progress(r->context, "modes of the section", (double)g / count);
-    double *values = r->values + (ptrdiff_t)r->members * r->family->count * NUMBERS;
+    double *values = r->values + (ptrdiff_t)r->members * r->family->count * PK_NUMBERS;
     if (status == PICKET_OK) {
       status = sample(r, &r->x, &r->y, m[g], true, values);
     }
@@ -305,7 +135,7 @@ static picket_status sample_span_error(run *r, int m) {
     status = sample(r, &x, &y, m, false, r->span_error);
   }
   const double *known = values_of(r, m);
-  for (int i = 0; status == PICKET_OK && i < r->family->count * NUMBERS; i++) {
+  for (int i = 0; status == PICKET_OK && i < r->family->count * PK_NUMBERS; i++) {
     r->span_error[i] = 0.5 * fabs(r->span_error[i] - known[i]);
   }
   pk_axis_clear(r->context, &x);
@@ -331,10 +161,9 @@ static double judge_all(run *r, const int *m, int count) {
   double worst = 0;
   for (int i = 0; i < r->family->count; i++) {
     picket_section_mode *mode = &r->modes[i];
-    mode->index = judge(r, m, count, i * NUMBERS + INDEX);
-    mode->group_index = judge(r, m, count, i * NUMBERS + GROUP);
-    mode->loss_db_per_cm = judge(r, m, count, i * NUMBERS + LOSS);
-    mode->effective_area_um2 = judge(r, m, count, i * NUMBERS + AREA);
+    for (int k = 0; k < PK_NUMBERS; k++) {
+      *pk_section_quantity(mode, k) = judge(r, m, count, i * PK_NUMBERS + k);
+    }
     const picket_quantity *held[2] = {&mode->index, &mode->group_index};
     for (int k = 0; k < 2; k++) {
       if (isfinite(held[k]->uncertainty)) {
@@ -406,8 +235,8 @@ picket_status pk_section_family_converge(pk_section_family *family, const picket
            .context = context,
            .options = options,
            .modes = modes};
-  r.values = PK_NEW(context, MOST_MEMBERS * family->count * NUMBERS, double);
-  r.span_error = PK_NEW(context, family->count * NUMBERS, double);
+  r.values = PK_NEW(context, MOST_MEMBERS * family->count * PK_NUMBERS, double);
+  r.span_error = PK_NEW(context, family->count * PK_NUMBERS, double);
   picket_status status = r.values && r.span_error ? PICKET_OK : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
     status = lay(&r, PK_END_ZERO, &r.x, &r.y);
@@ -442,7 +271,7 @@ static picket_status count_guided(pk_section_family *f, pk_section *section, int
                                   bool *all) {
   pk_section_mode modes[PK_FAMILY_MODES];
   int found = 0;
-  picket_status status = uppermost(f->survey, section, wanted, modes, &found);
+  picket_status status = pk_section_member_uppermost(f->survey, section, wanted, modes, &found);
   f->count = 0;
   for (int i = 0; status == PICKET_OK && i < found; i++) {
     double index = creal(modes[i].beta) / f->survey->k0;
@@ -474,7 +303,7 @@ picket_status pk_section_family_look(pk_section_family *f, int most) {
   memcpy(wish.plane, f->plane, sizeof wish.plane);
   picket_status status = pk_section_survey_lay(s, &wish, &x, &y);
   if (status == PICKET_OK) {
-    status = open_section(s, &x, &y, LOOK_MEMBER, &section);
+    status = pk_section_member_open(s, &x, &y, LOOK_MEMBER, &section);
   }
   bool more = true;
   for (int wanted = most < LOOK_AT_ONCE ? most : LOOK_AT_ONCE; status == PICKET_OK && more;) {

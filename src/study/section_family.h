@@ -5,9 +5,8 @@
 #include <picket/modes.h>
 
 #include "study/result.h"
+#include "study/section_member.h"
 #include "study/section_survey.h"
-
-enum { PK_FAMILY_MODES = 200 };
 
 typedef struct pk_section_family {
   const pk_section_survey *survey; /* borrowed */

@@ -1,0 +1,93 @@
+/* See section_describe.h. */
+#include "study/section_describe.h"
+
+#include <math.h>
+
+#include "base/memory.h"
+#include "section/forms.h"
+#include "section/nodes.h"
+
+/* dB/cm of a field that falls as exp(-x µm⁻¹): 20 log10(e) × 1e4. */
+static const double DB_PER_CM = 86858.896380650366;
+
+/* Nodes of the whole from those of a part: E_x is odd across a plane x = constant that is a
+ * magnetic wall (tangential E even there, normal E odd), and across a plane y = constant that is an
+ * electric one; E_y the other way round. */
+static void count_nodes(const pk_section_family *f, const pk_section_fields *fields,
+                        picket_section_mode *mode) {
+  int nodes[2];
+  bool along_x = mode->ex_share > 0.5;
+  pk_section_nodes(fields, along_x, nodes);
+  for (int axis = 0; axis < 2; axis++) {
+    if (f->survey->mirror[axis]) {
+      bool normal = along_x == (axis == 0);
+      bool odd = (f->plane[axis] == PK_END_FREE) == normal;
+      nodes[axis] = 2 * nodes[axis] + (odd ? 1 : 0);
+    }
+  }
+  mode->nodes_x = nodes[0];
+  mode->nodes_y = nodes[1];
+}
+
+static picket_status take_confinement(const pk_section_survey *s, pk_section *section,
+                                      const pk_section_fields *fields, picket_section_mode *mode) {
+  const pk_problem *problem = s->problem;
+  picket_context *context = problem->context;
+  double *share = PK_NEW(context, s->media, double);
+  picket_confinement *list = PK_NEW(context, s->media, picket_confinement);
+  picket_status status =
+      share && list ? pk_section_confinement(section, fields, share) : PICKET_ERROR_MEMORY;
+  int count = 0;
+  for (int m = 0; status == PICKET_OK && m < s->media; m++) {
+    if (pk_section_uses(section, m)) {
+      list[count++] = (picket_confinement){pk_materials_name(problem->materials, m), share[m]};
+    }
+  }
+  pk_free(context, share);
+  if (status != PICKET_OK) {
+    pk_free(context, list);
+    return status;
+  }
+  pk_free(context, (void *)mode->confinement);
+  mode->confinement = list;
+  mode->material_count = count;
+  return PICKET_OK;
+}
+
+picket_status pk_section_describe(const pk_section_family *f, pk_section *section,
+                                  const pk_section_mode *solved, double *numbers,
+                                  picket_section_mode *mode) {
+  const pk_section_survey *s = f->survey;
+  pk_section_fields fields = {0};
+  double complex group = NAN;
+  picket_status status = pk_section_fields_take(section, s->k0, solved, &fields);
+  if (status == PICKET_OK) {
+    status = pk_section_group_index(section, &fields, s->dispersive ? s->slope : NULL, &group);
+  }
+  if (status == PICKET_OK) {
+    pk_section_looks looks;
+    pk_section_look(section, &fields, &looks);
+    int parts = (s->mirror[0] ? 2 : 1) * (s->mirror[1] ? 2 : 1);
+    numbers[PK_NUMBER_INDEX] = creal(solved->beta) / s->k0;
+    numbers[PK_NUMBER_GROUP] = creal(group);
+    numbers[PK_NUMBER_LOSS] = DB_PER_CM * cimag(solved->beta);
+    numbers[PK_NUMBER_AREA] = parts * looks.effective_area;
+    if (mode) {
+      mode->ex_share = looks.ex_share;
+      count_nodes(f, &fields, mode);
+      status = take_confinement(s, section, &fields, mode);
+    }
+  }
+  pk_section_fields_clear(&fields);
+  return status;
+}
+
+picket_quantity *pk_section_quantity(picket_section_mode *mode, int number) {
+  switch (number) {
+    case PK_NUMBER_INDEX: return &mode->index;
+    case PK_NUMBER_GROUP: return &mode->group_index;
+    case PK_NUMBER_LOSS: return &mode->loss_db_per_cm;
+    case PK_NUMBER_AREA: return &mode->effective_area_um2;
+    default: return NULL;
+  }
+}

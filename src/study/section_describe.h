@@ -1,0 +1,20 @@
+/* What is said about a mode of a section: numbers that depend on the grid and are extrapolated, and
+ * looks that are those of the finest grid. */
+#ifndef PK_STUDY_SECTION_DESCRIBE_H
+#define PK_STUDY_SECTION_DESCRIBE_H
+
+#include "section/modes.h"
+#include "study/section_family.h"
+
+/* Numbers of a mode on a grid. */
+enum { PK_NUMBER_INDEX, PK_NUMBER_GROUP, PK_NUMBER_LOSS, PK_NUMBER_AREA, PK_NUMBERS };
+
+/* Where the number is kept once it is extrapolated. */
+picket_quantity *pk_section_quantity(picket_section_mode *mode, int number);
+
+/* numbers [PK_NUMBERS]; the looks of the mode into `mode` where given. */
+picket_status pk_section_describe(const pk_section_family *family, pk_section *section,
+                                  const pk_section_mode *solved, double *numbers,
+                                  picket_section_mode *mode);
+
+#endif
