@@ -17,12 +17,16 @@ static double complex hx_at(const maker *k, int i, int j) {
   return i < 0 || j < 0 ? 0 : k->f->hx[i * k->s->my + j];
 }
 
+static double complex ghx_at(const maker *k, int i, int j) {
+  return i < 0 ? 0 : k->s->metric_line[i] * hx_at(k, i, j);
+}
+
 static double complex hy_at(const maker *k, int i, int j) {
   return i < 0 || j < 0 ? 0 : k->f->hy[i * k->s->ny + j];
 }
 
-static double complex ez_at(const maker *k, int i, int j) {
-  return i < 0 || j < 0 ? 0 : k->f->ez[i * k->s->ny + j];
+static double complex gez_at(const maker *k, int i, int j) {
+  return i < 0 || j < 0 ? 0 : k->s->metric_line[i] * k->f->ez[i * k->s->ny + j];
 }
 
 /* E_z = i c / k0 */
@@ -40,21 +44,22 @@ static void make_ez(const maker *k) {
   }
 }
 
-/* E_x = (k0 h_y - i ∂x E_z)/β, E_y = -(k0 h_x + i ∂y E_z)/β: with c = -i k0 E_z. */
+/* E_x = (k0 g h_y - i ∂x(g E_z))/β, E_y = -(k0 g h_x + i ∂y(g E_z))/β: with c = -i k0 E_z. */
 static void make_transverse(const maker *k) {
   const pk_section *s = k->s;
   for (int i = 0; i < s->mx; i++) {
     int low = pk_line_index(&s->x, i), high = pk_line_index(&s->x, i + 1);
     for (int j = 0; j < s->ny; j++) {
-      double complex slope = (ez_at(k, high, j) - ez_at(k, low, j)) / s->x.length[i];
-      k->f->ex[i * s->ny + j] = (k->k0 * hy_at(k, i, j) - I * slope) / k->beta;
+      double complex slope = (gez_at(k, high, j) - gez_at(k, low, j)) / s->x.length[i];
+      double complex h = s->metric_middle[i] * hy_at(k, i, j);
+      k->f->ex[i * s->ny + j] = (k->k0 * h - I * slope) / k->beta;
     }
   }
   for (int j = 0; j < s->my; j++) {
     int low = pk_line_index(&s->y, j), high = pk_line_index(&s->y, j + 1);
     for (int i = 0; i < s->nx; i++) {
-      double complex slope = (ez_at(k, i, high) - ez_at(k, i, low)) / s->y.length[j];
-      k->f->ey[i * s->my + j] = -(k->k0 * hx_at(k, i, j) + I * slope) / k->beta;
+      double complex slope = (gez_at(k, i, high) - gez_at(k, i, low)) / s->y.length[j];
+      k->f->ey[i * s->my + j] = -(k->k0 * ghx_at(k, i, j) + I * slope) / k->beta;
     }
   }
 }
@@ -66,8 +71,9 @@ static void make_hz(const maker *k) {
     int low = pk_line_index(&s->x, i), high = pk_line_index(&s->x, i + 1);
     for (int j = 0; j < s->my; j++) {
       double complex divergence =
-          (hx_at(k, high, j) - hx_at(k, low, j)) / s->x.length[i] +
-          (hy_at(k, i, pk_line_index(&s->y, j + 1)) - hy_at(k, i, pk_line_index(&s->y, j))) /
+          (ghx_at(k, high, j) - ghx_at(k, low, j)) / s->x.length[i] +
+          s->metric_middle[i] *
+              (hy_at(k, i, pk_line_index(&s->y, j + 1)) - hy_at(k, i, pk_line_index(&s->y, j))) /
               s->y.length[j];
       k->f->hz[i * s->my + j] = I * divergence / k->beta;
     }

@@ -5,7 +5,8 @@
 #include "section/modes.h"
 
 /* Shapes, y fastest: ex, hy [mx][ny]; ey, hx [nx][my]; ez [nx][ny]; hz [mx][my], with the lines
- * (n) and intervals (m) of both axes that carry unknowns. h = Z0 H, so E and h have one unit. */
+ * (n) and intervals (m) of both axes that carry unknowns. h = Z0 H, so E and h have one unit. In a
+ * bend they are the components along x, y and the arc, without the metric factor. */
 typedef struct pk_section_fields {
   picket_context *context;
   int nx, ny, mx, my;

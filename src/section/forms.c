@@ -62,6 +62,16 @@ typedef struct measure {
   double sign; /* of the z component */
 } measure;
 
+/* g at line or interval i of the x axis. */
+static double complex line_metric(const pk_section *s, const measure *m, int i) {
+  return m->plain ? pk_section_plain_metric(s, pk_section_line_at(s, PK_U, i)) : s->metric_line[i];
+}
+
+static double complex middle_metric(const pk_section *s, const measure *m, int i) {
+  return m->plain ? pk_section_plain_metric(s, pk_section_middle_at(s, PK_U, i))
+                  : s->metric_middle[i];
+}
+
 static double complex square(const measure *m, double complex u, double complex v) {
   return m->plain ? creal(u * conj(v)) : u * v;
 }
@@ -97,11 +107,12 @@ static double complex energy_x(const pk_section *s, const measure *m, const pk_s
                                const pk_section_fields *f) {
   double complex sum = 0;
   for (int i = 0; i < s->mx; i++) {
+    double complex g = middle_metric(s, m, i);
     for (int j = 0; j < s->ny; j++) {
       int p = i * s->ny + j;
       double complex area =
           m->plain ? interval_width(&s->x, i) * s->width_y[j] : s->x.length[i] * s->dual_y[j];
-      sum += area * e->x[p] * square(m, f->ex[p], f->ex[p]);
+      sum += g * area * e->x[p] * square(m, f->ex[p], f->ex[p]);
     }
   }
   return sum;
@@ -111,11 +122,12 @@ static double complex energy_y(const pk_section *s, const measure *m, const pk_s
                                const pk_section_fields *f) {
   double complex sum = 0;
   for (int i = 0; i < s->nx; i++) {
+    double complex g = line_metric(s, m, i);
     for (int j = 0; j < s->my; j++) {
       int p = i * s->my + j;
       double complex area =
           m->plain ? s->width_x[i] * interval_width(&s->y, j) : s->dual_x[i] * s->y.length[j];
-      sum += area * e->y[p] * square(m, f->ey[p], f->ey[p]);
+      sum += g * area * e->y[p] * square(m, f->ey[p], f->ey[p]);
     }
   }
   return sum;
@@ -126,14 +138,15 @@ static double complex energy_nodes(const pk_section *s, const measure *m, const 
                                    const pk_section_fields *f, bool mixed) {
   double complex sum = 0;
   for (int i = 0; i < s->nx; i++) {
+    double complex g = line_metric(s, m, i);
     for (int j = 0; j < s->ny; j++) {
       int p = i * s->ny + j;
       if (!mixed) {
         double complex area =
             m->plain ? s->width_x[i] * s->width_y[j] : s->dual_x[i] * s->dual_y[j];
-        sum += area * e->z[p] * square(m, f->ez[p], f->ez[p]);
+        sum += g * area * e->z[p] * square(m, f->ez[p], f->ez[p]);
       } else if (s->mixed[p] >= 0) {
-        sum += 2 * e->xy[p] * square(m, node_ex(s, m, f, i, j), node_ey(s, m, f, i, j));
+        sum += 2 * g * e->xy[p] * square(m, node_ex(s, m, f, i, j), node_ey(s, m, f, i, j));
       }
     }
   }
@@ -151,19 +164,20 @@ static double complex energy(const pk_section *s, const measure *m, const pk_sit
 static double complex magnetic(const pk_section *s, const pk_section_fields *f) {
   double complex sum = 0;
   for (int i = 0; i < s->mx; i++) {
+    double complex width = s->metric_middle[i] * s->x.length[i];
     for (int j = 0; j < s->ny; j++) {
       int p = i * s->ny + j;
-      sum += s->x.length[i] * s->dual_y[j] * f->hy[p] * f->hy[p];
+      sum += width * s->dual_y[j] * f->hy[p] * f->hy[p];
     }
     for (int j = 0; j < s->my; j++) {
       int p = i * s->my + j;
-      sum -= s->x.length[i] * s->y.length[j] * f->hz[p] * f->hz[p];
+      sum -= width * s->y.length[j] * f->hz[p] * f->hz[p];
     }
   }
   for (int i = 0; i < s->nx; i++) {
     for (int j = 0; j < s->my; j++) {
       int p = i * s->my + j;
-      sum += s->dual_x[i] * s->y.length[j] * f->hx[p] * f->hx[p];
+      sum += s->metric_line[i] * s->dual_x[i] * s->y.length[j] * f->hx[p] * f->hx[p];
     }
   }
   return sum;

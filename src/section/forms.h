@@ -5,6 +5,7 @@
  * vanishes for modes of different β² (reciprocity; A. W. Snyder and J. D. Love, Optical Waveguide
  * Theory (1983), ch. 31); with absorbing layers the integral runs over the stretched plane. A
  * change of k0 and ε moves β by δβ = ∫ [δ(k0 ε)(E_t² - E_z²) + δk0 (h_t² - h_z²)] / (2 P(a, a)).
+ * In a bend P is as it stands, and ∫ of an energy is over g dx dy, the volume per length of arc.
  * Both hold on the grid to rounding, because its curls are adjoint to each other. */
 #ifndef PK_SECTION_FORMS_H
 #define PK_SECTION_FORMS_H

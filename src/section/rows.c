@@ -21,12 +21,12 @@ static void put_hy(const pk_section *s, pk_row *row, int i, int j, double comple
   }
 }
 
-/* v c at a node; c vanishes on electric walls (i or j is -1 there). */
-static void put_c(const pk_section *s, pk_row *row, int i, int j, double complex v) {
+/* v g c at a node; c vanishes on electric walls (i or j is -1 there). */
+static void put_gc(const pk_section *s, pk_row *row, int i, int j, double complex v) {
   if (i < 0 || j < 0) {
     return;
   }
-  v /= s->sites.z[i * s->ny + j];
+  v *= s->metric_line[i] / s->sites.z[i * s->ny + j];
   put_hy(s, row, pk_interval_above(&s->x, i), j, v / s->dual_x[i]);
   put_hy(s, row, pk_interval_below(&s->x, i), j, -v / s->dual_x[i]);
   put_hx(s, row, i, pk_interval_above(&s->y, j), -v / s->dual_y[j]);
@@ -39,9 +39,9 @@ static void put_qx(const pk_section *s, pk_row *row, double k0, int i, int j, do
     return;
   }
   double complex slope = v / s->x.length[i];
-  put_c(s, row, pk_line_index(&s->x, i + 1), j, slope);
-  put_c(s, row, pk_line_index(&s->x, i), j, -slope);
-  put_hy(s, row, i, j, v * k0 * k0);
+  put_gc(s, row, pk_line_index(&s->x, i + 1), j, slope);
+  put_gc(s, row, pk_line_index(&s->x, i), j, -slope);
+  put_hy(s, row, i, j, v * k0 * k0 * s->metric_middle[i]);
 }
 
 static void put_qy(const pk_section *s, pk_row *row, double k0, int i, int j, double complex v) {
@@ -49,30 +49,38 @@ static void put_qy(const pk_section *s, pk_row *row, double k0, int i, int j, do
     return;
   }
   double complex slope = v / s->y.length[j];
-  put_c(s, row, i, pk_line_index(&s->y, j + 1), slope);
-  put_c(s, row, i, pk_line_index(&s->y, j), -slope);
-  put_hx(s, row, i, j, -v * k0 * k0);
+  put_gc(s, row, i, pk_line_index(&s->y, j + 1), slope);
+  put_gc(s, row, i, pk_line_index(&s->y, j), -slope);
+  put_hx(s, row, i, j, -v * k0 * k0 * s->metric_line[i]);
 }
 
-/* v d in a cell. */
-static void put_d(const pk_section *s, pk_row *row, int i, int j, double complex v) {
+/* v g h_x, 0 on an electric wall. */
+static void put_ghx(const pk_section *s, pk_row *row, int i, int j, double complex v) {
+  if (i >= 0) {
+    put_hx(s, row, i, j, v * s->metric_line[i]);
+  }
+}
+
+/* v g d in a cell. */
+static void put_gd(const pk_section *s, pk_row *row, int i, int j, double complex v) {
   if (i < 0 || j < 0) {
     return;
   }
-  double complex sx = v / s->x.length[i], sy = v / s->y.length[j];
-  put_hx(s, row, pk_line_index(&s->x, i + 1), j, sx);
-  put_hx(s, row, pk_line_index(&s->x, i), j, -sx);
+  double complex g = s->metric_middle[i];
+  double complex sx = v * g / s->x.length[i], sy = v * g * g / s->y.length[j];
+  put_ghx(s, row, pk_line_index(&s->x, i + 1), j, sx);
+  put_ghx(s, row, pk_line_index(&s->x, i), j, -sx);
   put_hy(s, row, i, pk_line_index(&s->y, j + 1), sy);
   put_hy(s, row, i, pk_line_index(&s->y, j), -sy);
 }
 
-/* v times what ε_xy at a node adds to D_y beside it: half a cell of the mean of E_x there. */
+/* v times what g ε_xy at a node adds to D_y beside it: half a cell of the mean of E_x there. */
 static void put_mixed_x(const pk_section *s, pk_row *row, double k0, int i, int j,
                         double complex v) {
   if (j < 0 || s->mixed[i * s->ny + j] < 0) {
     return;
   }
-  double complex w = 0.25 * v * s->sites.xy[i * s->ny + j] / s->dual_x[i];
+  double complex w = 0.25 * v * s->metric_line[i] * s->sites.xy[i * s->ny + j] / s->dual_x[i];
   for (int side = 0; side < 2; side++) {
     int k = side == 0 ? pk_interval_below(&s->x, i) : pk_interval_above(&s->x, i);
     if (k >= 0) {
@@ -86,7 +94,7 @@ static void put_mixed_y(const pk_section *s, pk_row *row, double k0, int i, int 
   if (i < 0 || s->mixed[i * s->ny + j] < 0) {
     return;
   }
-  double complex w = 0.25 * v * s->sites.xy[i * s->ny + j] / s->dual_y[j];
+  double complex w = 0.25 * v * s->metric_line[i] * s->sites.xy[i * s->ny + j] / s->dual_y[j];
   for (int side = 0; side < 2; side++) {
     int k = side == 0 ? pk_interval_below(&s->y, j) : pk_interval_above(&s->y, j);
     if (k >= 0) {
@@ -96,17 +104,17 @@ static void put_mixed_y(const pk_section *s, pk_row *row, double k0, int i, int 
 }
 
 static void row_hx(const pk_section *s, double k0, int i, int j, pk_row *row) {
-  put_d(s, row, pk_interval_above(&s->x, i), j, 1 / s->dual_x[i]);
-  put_d(s, row, pk_interval_below(&s->x, i), j, -1 / s->dual_x[i]);
-  put_qy(s, row, k0, i, j, -s->sites.y[i * s->my + j]);
+  put_gd(s, row, pk_interval_above(&s->x, i), j, 1 / s->dual_x[i]);
+  put_gd(s, row, pk_interval_below(&s->x, i), j, -1 / s->dual_x[i]);
+  put_qy(s, row, k0, i, j, -s->metric_line[i] * s->sites.y[i * s->my + j]);
   put_mixed_x(s, row, k0, i, pk_line_index(&s->y, j), -1);
   put_mixed_x(s, row, k0, i, pk_line_index(&s->y, j + 1), -1);
 }
 
 static void row_hy(const pk_section *s, double k0, int i, int j, pk_row *row) {
-  put_d(s, row, i, pk_interval_above(&s->y, j), 1 / s->dual_y[j]);
-  put_d(s, row, i, pk_interval_below(&s->y, j), -1 / s->dual_y[j]);
-  put_qx(s, row, k0, i, j, s->sites.x[i * s->ny + j]);
+  put_gd(s, row, i, pk_interval_above(&s->y, j), 1 / s->dual_y[j]);
+  put_gd(s, row, i, pk_interval_below(&s->y, j), -1 / s->dual_y[j]);
+  put_qx(s, row, k0, i, j, s->metric_middle[i] * s->sites.x[i * s->ny + j]);
   put_mixed_y(s, row, k0, pk_line_index(&s->x, i), j, 1);
   put_mixed_y(s, row, k0, pk_line_index(&s->x, i + 1), j, 1);
 }

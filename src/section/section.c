@@ -42,6 +42,37 @@ static picket_status take_widths(pk_section *s, const pk_axis *axis, int n, doub
   return PICKET_OK;
 }
 
+/* g = 1 + x̃ curvature, with x̃ = x outside absorbing layers. */
+static picket_status take_metric(pk_section *s) {
+  const pk_axis *axis = &s->x;
+  s->metric_line = PK_NEW(s->context, s->nx, double complex);
+  s->metric_middle = PK_NEW(s->context, s->mx, double complex);
+  if (!s->metric_line || !s->metric_middle) {
+    return PICKET_ERROR_MEMORY;
+  }
+  double complex at = axis->line[0];
+  double inside = axis->line[0] + axis->layer[0].thickness;
+  for (int i = 0; i < s->mx; i++) {
+    bool layered = 0.5 * (axis->line[i] + axis->line[i + 1]) < inside;
+    at -= layered ? I * cimag(axis->length[i]) : 0;
+  }
+  for (int i = 0; i <= s->mx; i++) {
+    int index = pk_line_index(axis, i);
+    if (index >= 0) {
+      s->metric_line[index] = 1 + s->curvature * at;
+    }
+    if (i < s->mx) {
+      s->metric_middle[i] = 1 + s->curvature * (at + 0.5 * axis->length[i]);
+      at += axis->length[i];
+    }
+  }
+  return PICKET_OK;
+}
+
+double pk_section_plain_metric(const pk_section *s, double x) {
+  return 1 + s->curvature * x;
+}
+
 static picket_status take_axes(pk_section *s, const pk_section_plan *plan) {
   picket_status status = copy_axis(s->context, plan->x, &s->x);
   if (status == PICKET_OK) {
@@ -58,7 +89,10 @@ static picket_status take_axes(pk_section *s, const pk_section_plan *plan) {
   s->n = s->hx_count + (int64_t)s->mx * s->ny;
   s->real_axes = real_lengths(&s->x) && real_lengths(&s->y);
   status = take_widths(s, &s->x, s->nx, &s->width_x, &s->dual_x);
-  return status == PICKET_OK ? take_widths(s, &s->y, s->ny, &s->width_y, &s->dual_y) : status;
+  if (status == PICKET_OK) {
+    status = take_widths(s, &s->y, s->ny, &s->width_y, &s->dual_y);
+  }
+  return status == PICKET_OK ? take_metric(s) : status;
 }
 
 static picket_status take_sites(pk_section *s, const pk_geometry *geometry) {
@@ -166,6 +200,9 @@ picket_status pk_section_create(picket_context *context, const pk_section_plan *
   }
   s->context = pk_context_hold(context);
   s->media = plan->media;
+  s->curvature = plan->curvature;
+  assert(s->curvature == 0 || plan->x->low != PK_END_PERIODIC);
+  assert(1 + s->curvature * plan->x->line[0] > 0);
   picket_status status = take_axes(s, plan);
   if (status == PICKET_OK) {
     status = take_sites(s, plan->geometry);
@@ -196,6 +233,8 @@ void pk_section_free(pk_section *s) {
   pk_free(context, s->dual_y);
   pk_free(context, s->width_x);
   pk_free(context, s->width_y);
+  pk_free(context, s->metric_line);
+  pk_free(context, s->metric_middle);
   pk_mixtures_close(&s->mixtures);
   pk_free(context, s->mixture_x);
   pk_free(context, s->mixture_y);
@@ -219,6 +258,10 @@ int64_t pk_section_size(const pk_section *s) {
 
 const pk_pattern *pk_section_pattern(const pk_section *s) {
   return &s->pattern;
+}
+
+double pk_section_curvature(const pk_section *s) {
+  return s->curvature;
 }
 
 bool pk_section_is_real(const pk_section *s) {

@@ -1,4 +1,5 @@
-/* Full-vector modes of a section: a plane (x, y) that does not vary along z.
+/* Full-vector modes of a section: a plane (x, y) that does not vary along z, or along the arc of a
+ * bend.
  *
  * Fields go as exp(i(βz - ωt)); h = Z0 H. Maxwell's equations with a diagonal or full transverse
  * permittivity, ∇×E = i k0 h and ∇×h = -i k0 εE, leave the transverse magnetic field:
@@ -17,7 +18,23 @@
  * area average there. An end PK_END_ZERO of an axis is an electric wall (or a mirror plane with the
  * tangential E odd), PK_END_FREE a magnetic one. The matrix is not symmetric, but the discrete
  * curls are adjoint to each other, so power orthogonality and perturbation formulas hold to
- * rounding. Unknowns: all h_x, then all h_y; y fastest. */
+ * rounding. Unknowns: all h_x, then all h_y; y fastest.
+ *
+ * In a bend of radius R about the line x = -R the arc length s at x = 0 stands for z, and fields go
+ * as exp(i β s). In these cylindrical coordinates ds has the metric factor
+ *
+ *   g = (R + x) / R = 1 + x × curvature
+ *
+ * and the components g E_z, g h_z obey Maxwell's equations of a straight guide whose ε and μ are
+ * multiplied by diag(g, g, 1/g); exact for the full vector, and the same as the map u = R ln g of
+ * M. Heiblum and J. H. Harris, IEEE J. Quantum Electron. 11, 75 (1975), seen from x instead of u:
+ *
+ *   β² h_x = ∂x(g d) - g (ε q)_y     d = ∂x(g h_x) + ∂y(g h_y)
+ *   β² h_y = ∂y(g d) + g (ε q)_x     c as above
+ *   q_x = ∂x(g c) + k0² g h_y,  q_y = ∂y(g c) - k0² g h_x
+ *
+ * with E and h_z as above; g is taken at each site, and in an absorbing layer at the continued x,
+ * where it is complex. Straight is g = 1. */
 #ifndef PK_SECTION_SECTION_H
 #define PK_SECTION_SECTION_H
 
@@ -36,6 +53,8 @@ typedef struct pk_section_plan {
   const pk_axis *x, *y;
   int media;            /* media numbers run from 0 to media - 1 */
   bool correct_corners; /* cure the singular E at corners of rectangles (corner_patch.h) */
+  double curvature;     /* 1/R, 1/µm; 0: straight. g must be positive on all of the x axis, which
+                           must not be periodic then */
 } pk_section_plan;
 
 picket_status pk_section_create(picket_context *context, const pk_section_plan *plan,
@@ -50,6 +69,8 @@ bool pk_section_uses(const pk_section *section, int medium);
 
 /* Gives the media their permittivities: [3][media], the entries xx, yy and zz. */
 picket_status pk_section_load(pk_section *section, const double complex *permittivity);
+
+double pk_section_curvature(const pk_section *section);
 
 /* True when the permittivities and the lengths of the axes are real. */
 bool pk_section_is_real(const pk_section *section);

@@ -27,6 +27,8 @@ struct pk_section {
   bool real_axes, is_real;
   double complex *dual_x, *dual_y; /* [nx], [ny] stretched lengths between half lines */
   double *width_x, *width_y;       /* [nx], [ny] the same without stretch */
+  double curvature;
+  double complex *metric_line, *metric_middle; /* [nx], [mx] g at the lines and middles of x */
   pk_mixtures mixtures;
   int *mixture_x, *mixture_y, *mixture_z; /* of the sites */
   int *mixed;                             /* [nx*ny] mixture of an oblique node, or -1 */
@@ -52,6 +54,9 @@ picket_status pk_sites_fill(pk_section *section, const double complex *permittiv
 
 /* Mixtures of the averaging boxes of every site. */
 picket_status pk_section_average(pk_section *section, const pk_geometry *geometry);
+
+/* g at a line or middle of the x axis without stretch. */
+double pk_section_plain_metric(const pk_section *section, double x);
 
 /* One row of T: columns may come several times; their values add up. */
 enum { PK_ROW_TERMS = 64 };

@@ -21,6 +21,7 @@ typedef struct plane {
   pk_geometry *geometry;
   double complex permittivity[3 * PLANE_MEDIA];
   pk_axis x, y; /* base axes */
+  double curvature;
 } plane;
 
 static inline void plane_media(plane *p, const double complex *index) {
@@ -99,7 +100,7 @@ static inline pk_section *plane_section(plane *p, int m, bool correct) {
   pk_section *section = NULL;
   assert_int_equal(pk_axis_divide(p->context, &p->x, m, &x), PICKET_OK);
   assert_int_equal(pk_axis_divide(p->context, &p->y, m, &y), PICKET_OK);
-  pk_section_plan plan = {p->geometry, &x, &y, PLANE_MEDIA, correct};
+  pk_section_plan plan = {p->geometry, &x, &y, PLANE_MEDIA, correct, p->curvature};
   assert_int_equal(pk_section_create(p->context, &plan, &section), PICKET_OK);
   assert_int_equal(pk_section_load(section, p->permittivity), PICKET_OK);
   pk_axis_clear(p->context, &x);

@@ -16,10 +16,12 @@ static plane crooked(picket_context *context, const double complex *index) {
   return p;
 }
 
-static plane crooked_plane(const double complex *index) {
+static plane crooked_plane(const double complex *index, double curvature) {
   picket_context *context = NULL;
   assert_int_equal(picket_context_create(NULL, &context), PICKET_OK);
-  return crooked(context, index);
+  plane p = crooked(context, index);
+  p.curvature = curvature;
+  return p;
 }
 
 enum { MODES = 3 };
@@ -54,11 +56,15 @@ static void solved_close(plane *p, solved *s) {
 static const double complex CLEAR[PLANE_MEDIA] = {1, 2.4, 1.444};
 static const double complex DIM[PLANE_MEDIA] = {1, 2.4 + 0.01 * I, 1.444 + 0.002 * I};
 
+/* Straight, and a bend of 3.3 µm, whose g goes from 0.7 to 1.33 here. */
+static const double CURVATURE[2] = {0, 0.3};
+
 /* P(a, b) = δ_ab, with absorption too; without it the same holds for the power that flows. */
 static void modes_are_orthogonal_in_power(void **state) {
   (void)state;
-  for (int lossy = 0; lossy < 2; lossy++) {
-    plane p = crooked_plane(lossy ? DIM : CLEAR);
+  for (int kind = 0; kind < 4; kind++) {
+    bool lossy = kind % 2 == 1;
+    plane p = crooked_plane(lossy ? DIM : CLEAR, CURVATURE[kind / 2]);
     solved s;
     solve(&p, 2 * PI / 1.2, &s);
     for (int a = 0; a < MODES; a++) {
@@ -77,15 +83,14 @@ static void modes_are_orthogonal_in_power(void **state) {
 }
 
 /* dβ/dk0 by the energy formula against a difference quotient of whole solves. */
-static void group_index_is_the_slope(void **state) {
-  (void)state;
+static void group_index_of(double curvature) {
   const double k0 = 2 * PI / 1.2, step = 1e-4 * k0;
   double complex slope[3 * PLANE_MEDIA] = {0};
   for (int c = 0; c < 3; c++) { /* k0 dε/dk0 */
     slope[c * PLANE_MEDIA + 1] = 0.4;
     slope[c * PLANE_MEDIA + 2] = 0.03;
   }
-  plane p = crooked_plane(DIM);
+  plane p = crooked_plane(DIM, curvature);
   solved s;
   solve(&p, k0, &s);
   double complex beta[2][MODES], group[MODES];
@@ -112,11 +117,16 @@ static void group_index_is_the_slope(void **state) {
   plane_close(&p);
 }
 
-/* ∂β/∂ε against a difference quotient; the shares of the energy add up. */
-static void pulls_and_shares(void **state) {
+static void group_index_is_the_slope(void **state) {
   (void)state;
+  group_index_of(CURVATURE[0]);
+  group_index_of(CURVATURE[1]);
+}
+
+/* ∂β/∂ε against a difference quotient; the shares of the energy add up. */
+static void pulls_and_shares_of(double curvature) {
   const double k0 = 2 * PI / 1.2, step = 1e-4;
-  plane p = crooked_plane(CLEAR);
+  plane p = crooked_plane(CLEAR, curvature);
   solved s;
   solve(&p, k0, &s);
   double complex pulls[PLANE_MEDIA];
@@ -140,6 +150,12 @@ static void pulls_and_shares(void **state) {
     assert_near(cabs(pulls[m] - (beta[1] - beta[0]) / (2 * step)), 0, 1e-7);
   }
   plane_close(&p);
+}
+
+static void pulls_and_shares(void **state) {
+  (void)state;
+  pulls_and_shares_of(CURVATURE[0]);
+  pulls_and_shares_of(CURVATURE[1]);
 }
 
 /* A square rod has a pair of equal modes: both are found, orthogonal to each other, real. */
@@ -209,7 +225,7 @@ static picket_status all_of_it(picket_context *context, const pk_geometry *geome
   int found = 0;
   double complex group;
   double share[PLANE_MEDIA];
-  pk_section_plan plan = {geometry, x, y, PLANE_MEDIA, true};
+  pk_section_plan plan = {geometry, x, y, PLANE_MEDIA, true, 0};
   picket_status status = pk_section_create(context, &plan, &section);
   if (status == PICKET_OK) {
     status = pk_section_load(section, e);
