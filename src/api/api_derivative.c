@@ -1,25 +1,9 @@
 /* See picket/derivative.h. */
-#include <math.h>
-#include <string.h>
-
 #include "api/border.h"
 #include "api/problem_private.h"
 #include "io/vary.h"
 #include "study/derivative.h"
-
-/* Step of a value, as a part of its size. The operator is smooth, so the error of the difference,
- * of fourth order, is of the order of 1e-12; corrections of corners are known to 5e-11, which over
- * the step and with their part of the whole leaves less than 1e-8 of the derivative. */
-static const double STEP = 5e-4;
-
-/* A value near zero (a position, a temperature) has no size of its own: by its unit. */
-static double size_of(const char *path, double value) {
-  size_t length = strlen(path);
-  bool is_length = length > 3 && strcmp(path + length - 3, "_nm") == 0;
-  bool is_temperature = strcmp(path, "temperature_c") == 0;
-  bool in_list = length > 0 && path[length - 1] >= '0' && path[length - 1] <= '9';
-  return fmax(fabs(value), is_length || is_temperature || in_list ? 100 : 1);
-}
+#include "study/variants.h"
 
 typedef picket_status (*derivative_study)(const pk_variation *variation,
                                           const picket_options *options, picket_result **out);
@@ -35,7 +19,7 @@ static picket_status run(picket_problem *problem, const char *path, const picket
     return status;
   }
   static const int AT[PK_NEIGHBOURS] = {-2, -1, 1, 2};
-  pk_variation variation = {.problem = understood, .step = STEP * size_of(path, value)};
+  pk_variation variation = {.problem = understood, .step = pk_vary_step(path, value)};
   pk_problem *neighbour[PK_NEIGHBOURS] = {0};
   for (int i = 0; status == PICKET_OK && i < PK_NEIGHBOURS; i++) {
     double moved = value + AT[i] * variation.step;

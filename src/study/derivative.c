@@ -88,13 +88,15 @@ static picket_status sample_edges(void *user, const pk_cell_grid *base, int m, d
   return status;
 }
 
-/* A derivative is a difference: what is asked of a value is asked of it relative to its own size,
- * but it takes what the grids for values give. */
-static double unlimited(const pk_converge_request *request, const picket_quantity *q, int i) {
-  (void)request;
+/* A derivative is a difference and takes what the first grids give, unless a bar is wanted. */
+static double allowed_bar(const pk_variation *variation) {
+  return variation->bar_wanted > 0 ? variation->bar_wanted : INFINITY;
+}
+
+static double allowed_edge(const pk_converge_request *request, const picket_quantity *q, int i) {
   (void)q;
-  (void)i;
-  return INFINITY;
+  /* A bar is wanted of the long edge of order 1. */
+  return i == 0 ? allowed_bar(((const edge_slopes *)request->user)->variation) : INFINITY;
 }
 
 static picket_status fill_edges(const edge_slopes *s, const picket_quantity *q,
@@ -140,7 +142,7 @@ static picket_status edges_of(const pk_variation *variation, pk_polarization pol
                                    .user = &s,
                                    .options = options,
                                    .phase = "derivatives of edges",
-                                   .allowed = unlimited};
+                                   .allowed = allowed_edge};
     status = pk_converge(&request, q, result);
   }
   if (status == PICKET_OK) {
@@ -240,6 +242,12 @@ static picket_status sample_index(void *user, const pk_cell_grid *base, int m, d
   return status;
 }
 
+static double allowed_index(const pk_converge_request *request, const picket_quantity *q, int i) {
+  (void)q;
+  (void)i;
+  return allowed_bar(((const index_slopes *)request->user)->variation);
+}
+
 static picket_status index_of(const pk_variation *variation, pk_polarization polarization, int i,
                               const picket_options *options, picket_index_derivative *point,
                               picket_result *result) {
@@ -265,7 +273,7 @@ static picket_status index_of(const pk_variation *variation, pk_polarization pol
                                    .user = &s,
                                    .options = options,
                                    .phase = "derivatives of the Bloch index",
-                                   .allowed = unlimited};
+                                   .allowed = allowed_index};
     status = pk_converge(&request, &point->bloch_index, result);
   }
   pk_look_clear(&s.look);

@@ -13,6 +13,8 @@ typedef struct pk_variation {
   const pk_problem *problem;
   const pk_problem *neighbour[PK_NEIGHBOURS];
   double step;
+  double bar_wanted; /* of the derivative, µm or 1 per unit: finer grids until it is met; 0: what
+                        the first grids give */
 } pk_variation;
 
 picket_status pk_study_edge_derivatives(const pk_variation *variation,
