@@ -6,15 +6,7 @@
 #include "operator/corner_list.h"
 #include "operator/mixture.h"
 #include "section/section.h"
-
-/* Numbers of one kind of site for every site: [count]; -1 at sites that do not exist. Sites are
- * counted over intervals or lines that carry unknowns, y fastest. */
-typedef struct pk_sites {
-  double complex *x;  /* [mx*ny] ε_xx where E_x lies */
-  double complex *y;  /* [nx*my] ε_yy where E_y lies */
-  double complex *z;  /* [nx*ny] ε_zz where E_z lies */
-  double complex *xy; /* [nx*ny] ε_xy at the nodes; used where mixed[] is not -1 */
-} pk_sites;
+#include "section/sites.h"
 
 struct pk_section {
   picket_context *context;
@@ -39,18 +31,6 @@ struct pk_section {
   pk_sites sites;
   pk_pattern pattern;
 };
-
-/* Neighbours along an axis, by number of unknown line: -1 where there is none. */
-int pk_line_index(const pk_axis *axis, int line);
-int pk_interval_below(const pk_axis *axis, int index);
-int pk_interval_above(const pk_axis *axis, int index);
-
-picket_status pk_sites_create(const pk_section *section, pk_sites *out);
-void pk_sites_free(const pk_section *section, pk_sites *sites);
-
-/* Averages of given permittivities [3][media] at every site, corner corrections included. */
-picket_status pk_sites_fill(pk_section *section, const double complex *permittivity,
-                            pk_sites *sites);
 
 /* Mixtures of the averaging boxes of every site. */
 picket_status pk_section_average(pk_section *section, const pk_geometry *geometry);
