@@ -80,6 +80,7 @@ picket_status pk_read_materials(pk_reader *reader);
 picket_status pk_read_slab(pk_reader *reader, const pk_node *node);
 picket_status pk_read_cell(pk_reader *reader, const pk_node *node);
 picket_status pk_read_section(pk_reader *reader, const pk_node *node);
+picket_status pk_read_channel(pk_reader *reader, const pk_node *node);
 picket_status pk_read_path(pk_reader *reader, const pk_node *node);
 
 /* The number of the material that a value names. */
@@ -97,8 +98,56 @@ picket_status pk_read_stack(const pk_reader *reader, const pk_node *const *value
 picket_status pk_read_films(const pk_reader *reader, const pk_node *list, pk_slab_recipe *recipe);
 void pk_slab_recipe_clear(picket_context *context, pk_slab_recipe *recipe);
 
-/* Paints the shapes of a list into the geometry of the cell. */
-picket_status pk_read_shapes(const pk_reader *reader, const pk_node *list, pk_cell *cell);
+/* ---- shapes ---- */
+
+typedef enum pk_shape_kind {
+  PK_SHAPE_RECT,
+  PK_SHAPE_DISC,
+  PK_SHAPE_POLYGON,
+  PK_SHAPE_STRIPE
+} pk_shape_kind;
+
+/* What is particular to the shapes of a block. */
+typedef struct pk_shape_plane {
+  char letter[2];                 /* of the axes u and v */
+  const char *rect_size[2];       /* keys of a rect's size along u and v */
+  double farthest_nm, largest_nm; /* bounds of coordinates and of sizes */
+  double pitch_nm;                /* above 0: shapes may have a range along z, inside the pitch */
+} pk_shape_plane;
+
+/* A shape as the file says it, nm. */
+typedef struct pk_shape {
+  const pk_node *node;
+  pk_shape_kind kind;
+  int material;
+  double at[2], size[2];  /* of a rect and a disc */
+  pk_axis_name across;    /* of a stripe */
+  int corner_count;       /* of a polygon */
+  double (*corners)[2];   /* lives as long as the call that hands it on */
+  double low[2], high[2]; /* extent; a stripe is endless along the other axis */
+  double along[2];        /* range of z; the whole pitch unless the file says less */
+} pk_shape;
+
+/* Receives the shapes one after the other. */
+typedef picket_status pk_shape_taker(void *owner, const pk_shape *shape);
+
+picket_status pk_read_shapes(const pk_reader *reader, const pk_node *list,
+                             const pk_shape_plane *plane, pk_shape_taker *take, void *owner);
+picket_status pk_shape_paint(picket_context *context, const pk_shape *shape, pk_geometry *geometry);
+
+/* Paints the shapes of a list into the geometry of the cell, which they must fit. */
+picket_status pk_read_cell_shapes(const pk_reader *reader, const pk_node *list, pk_cell *cell);
+
+/* A plane across a guide, of a section or a channel. pk_read_plane_open marks the materials and
+ * prepares the extent; pk_read_plane_note adds a shape to both. */
+extern const pk_shape_plane PK_PLANE_ACROSS; /* pitch_nm is 0 */
+picket_status pk_read_plane_open(pk_reader *reader, int cladding, const pk_node *span,
+                                 pk_section_block *block);
+picket_status pk_read_plane_create(picket_context *context, int cladding, pk_geometry **out);
+void pk_read_plane_note(const pk_shape *shape, pk_section_block *block);
+/* Fails if nothing says where the guide is. `what` is the block's name. */
+picket_status pk_read_plane_check(const pk_reader *reader, const pk_node *node, const char *what,
+                                  const pk_section_block *block);
 
 /* A table of wavelength_nm,n,k as a CSV file. Arrays are the caller's. */
 typedef struct pk_index_table {
@@ -115,5 +164,7 @@ static const double PK_NM_PER_UM = 1000.0;
 static const double PK_WAVELENGTH_LOW_NM = 10.0; /* soft X-rays and below: no guide has an index */
 static const double PK_WAVELENGTH_HIGH_NM = 1e6; /* 1 mm, the end of the optical range */
 static const double PK_LENGTH_HIGH_NM = 1e6;     /* 1 mm: no cell or film is larger */
+/* Of a period: a length computed from a file's decimals may miss the border by rounding. */
+static const double PK_BORDER_TOLERANCE = 1e-9;
 
 #endif

@@ -137,7 +137,7 @@ picket_status pk_read_cell(pk_reader *reader, const pk_node *node) {
     status = make_geometry(reader->context, &problem->cell);
   }
   if (status == PICKET_OK) {
-    status = pk_read_shapes(reader, values[KEY_SHAPES], &problem->cell);
+    status = pk_read_cell_shapes(reader, values[KEY_SHAPES], &problem->cell);
   }
   if (status == PICKET_OK) {
     problem->has_cell = true;

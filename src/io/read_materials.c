@@ -95,7 +95,7 @@ picket_status pk_read_material(const pk_reader *reader, const pk_node *node, int
     if (found >= 0 && !reader->layered &&
         pk_materials_is_layered(reader->problem->materials, found)) {
       return pk_fail_at(reader->context, PICKET_ERROR_INPUT, node->place,
-                        "%s is \"%s\", which is layered: only a section can hold it",
+                        "%s is \"%s\", which is layered: only a section or a channel can hold it",
                         pk_node_path(node).text, pk_text_shown(name).text);
     }
     *out = found;

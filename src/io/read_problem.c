@@ -22,8 +22,9 @@ enum {
   KEY_PATH,
   KEY_SLAB,
   KEY_SECTION,
+  KEY_CHANNEL,
   KEY_LATER, /* blocks of the format that no command reads yet: any content is let through */
-  KEY_COUNT = KEY_LATER + 5
+  KEY_COUNT = KEY_LATER + 4
 };
 static const pk_key keys[KEY_COUNT] = {
     [KEY_FORMAT] = {"format", false},
@@ -35,8 +36,8 @@ static const pk_key keys[KEY_COUNT] = {
     [KEY_PATH] = {"path", false},
     [KEY_SLAB] = {"slab", false},
     [KEY_SECTION] = {"section", false},
-    [KEY_LATER] = {"channel", false},
-    {"aim", false},
+    [KEY_CHANNEL] = {"channel", false},
+    [KEY_LATER] = {"aim", false},
     {"tolerance", false},
     {"taper", false},
     {"rules", false},
@@ -93,6 +94,9 @@ static picket_status read_blocks(pk_reader *reader, const pk_node *const *values
   }
   if (status == PICKET_OK && values[KEY_SECTION]) {
     status = pk_read_section(reader, values[KEY_SECTION]);
+  }
+  if (status == PICKET_OK && values[KEY_CHANNEL]) {
+    status = pk_read_channel(reader, values[KEY_CHANNEL]);
   }
   return status;
 }

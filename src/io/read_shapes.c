@@ -1,307 +1,262 @@
-/* shapes of a cell: rect, disc, polygon and stripe, painted in the order of the file. See read.h.
+/* shapes of a painted plane: rect, disc, polygon and stripe, in the order of the file. See read.h.
  *
- * Each shape is reduced to the box around it, [z, x] in nm, and the box is held against the cell:
- * in a periodic direction a shape may wrap but not be longer than the period, at a wall it must end
- * before the wall or on it. */
+ * The planes of a cell (z, x), of a section and of a channel's slices (both x, y) differ in the
+ * letters of their axes, in the keys of a rect's sizes, in how far out coordinates may lie, and in
+ * whether a shape may be limited along z; all of that is in a pk_shape_plane. Each shape is reduced
+ * to a pk_shape in nm and handed to the block it stands in, which checks and paints it. */
 #include <math.h>
+#include <stdio.h>
 
 #include "base/memory.h"
 #include "io/read.h"
 
 enum { MOST_SHAPES = 1000, FEWEST_CORNERS = 3, MOST_CORNERS = 1000 };
-/* Of the cell: a length that is computed from a file's decimals may miss the border by rounding. */
-static const double BORDER_TOLERANCE = 1e-9;
 
-enum { KIND_RECT, KIND_DISC, KIND_POLYGON, KIND_STRIPE, KIND_COUNT };
-static const char *const kinds[KIND_COUNT] = {"rect", "disc", "polygon", "stripe"};
+static const char *const kinds[] = {[PK_SHAPE_RECT] = "rect",
+                                    [PK_SHAPE_DISC] = "disc",
+                                    [PK_SHAPE_POLYGON] = "polygon",
+                                    [PK_SHAPE_STRIPE] = "stripe"};
+enum { KIND_COUNT = PK_SHAPE_STRIPE + 1 };
 
-enum { RECT_FILL, RECT_LENGTH, RECT_WIDTH, RECT_AT, RECT_COUNT };
-static const pk_key rect_keys[RECT_COUNT] = {
-    [RECT_FILL] = {"fill", true},
-    [RECT_LENGTH] = {"length_nm", true},
-    [RECT_WIDTH] = {"width_nm", true},
-    [RECT_AT] = {"at_nm", false},
-};
-enum { DISC_FILL, DISC_DIAMETER, DISC_AT, DISC_COUNT };
-static const pk_key disc_keys[DISC_COUNT] = {
-    [DISC_FILL] = {"fill", true},
-    [DISC_DIAMETER] = {"diameter_nm", true},
-    [DISC_AT] = {"at_nm", false},
-};
-enum { POLYGON_FILL, POLYGON_CORNERS, POLYGON_COUNT };
-static const pk_key polygon_keys[POLYGON_COUNT] = {
-    [POLYGON_FILL] = {"fill", true},
-    [POLYGON_CORNERS] = {"corners_nm", true},
-};
-enum { STRIPE_FILL, STRIPE_ACROSS, STRIPE_FROM, STRIPE_TO, STRIPE_COUNT };
-static const pk_key stripe_keys[STRIPE_COUNT] = {
-    [STRIPE_FILL] = {"fill", true},
-    [STRIPE_ACROSS] = {"across", true},
-    [STRIPE_FROM] = {"from_nm", true},
-    [STRIPE_TO] = {"to_nm", true},
-};
+/* Keys of a shape: the fill first, those of its kind, and the limits along z where allowed. */
+enum { FILL, OWN, MOST_OWN = 3, MOST_KEYS = OWN + MOST_OWN + 1 };
 
 typedef struct painter {
   const pk_reader *reader;
   picket_context *context;
-  pk_cell *cell;
+  const pk_shape_plane *plane;
+  void *owner;
 } painter;
 
-/* The extent of a shape along z and x, nm. */
-typedef struct extent {
-  double low[2], high[2];
-} extent;
-
-static const char axis_letter[2] = {'z', 'x'};
-
-static picket_status fail_shape(const painter *p, const pk_node *node, int axis, const extent *e,
-                                double half, const char *what) {
-  return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
-                    "%s %s: it spans %c from %.10g to %.10g nm, the cell from %.10g to %.10g nm",
-                    pk_node_path(node).text, what, axis_letter[axis], e->low[axis], e->high[axis],
-                    -half, half);
-}
-
-/* One axis of a shape against a cell that reaches from -half to half. */
-static picket_status check_axis(const painter *p, const pk_node *node, int axis, const extent *e,
-                                double half, bool periodic) {
-  double slack = 2 * half * BORDER_TOLERANCE;
-  if (e->low[axis] >= half - slack || e->high[axis] <= -half + slack) {
-    return fail_shape(p, node, axis, e, half, "lies wholly outside the cell");
-  }
-  if (periodic) {
-    return e->high[axis] - e->low[axis] > 2 * half + slack
-               ? fail_shape(p, node, axis, e, half, "is longer than one period")
-               : PICKET_OK;
-  }
-  /* Endless shapes simply end at the wall. */
-  bool below = isfinite(e->low[axis]) && e->low[axis] < -half - slack;
-  bool above = isfinite(e->high[axis]) && e->high[axis] > half + slack;
-  return below || above ? fail_shape(p, node, axis, e, half, "reaches outside the cell")
-                        : PICKET_OK;
-}
-
-/* A shape with ends on all sides. */
-static picket_status check_finite(const painter *p, const pk_node *node, const extent *e) {
-  const pk_cell *cell = p->cell;
-  if (cell->lateral == PK_LATERAL_UNIFORM) {
-    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
-                      "%s has a lateral end, but lateral is uniform; use a stripe across z",
-                      pk_node_path(node).text);
-  }
-  picket_status status = check_axis(p, node, PK_U, e, cell->pitch_um * PK_NM_PER_UM / 2, true);
-  if (status == PICKET_OK && cell->span_um > 0) {
-    status = check_axis(p, node, PK_V, e, cell->span_um * PK_NM_PER_UM / 2,
-                        cell->lateral == PK_LATERAL_PERIODIC);
-  }
-  return status;
-}
+/* --- Values ----------------------------------------------------------------------------------- */
 
 static picket_status read_size(const painter *p, const pk_node *node, double *nm) {
-  const pk_limits limits = {0, PK_LENGTH_HIGH_NM, true, false, false, "nm"};
+  const pk_limits limits = {0, p->plane->largest_nm, true, false, false, "nm"};
   return pk_read_number(p->context, node, &limits, nm);
 }
 
-/* A point [z, x]; `out` stays as it is if the point is left out. */
+/* A point in the plane; `out` stays as it is if the point is left out. */
 static picket_status read_point(const painter *p, const pk_node *node, double out[2]) {
-  const pk_limits limits = {-PK_LENGTH_HIGH_NM, PK_LENGTH_HIGH_NM, false, false, false, "nm"};
+  const double far = p->plane->farthest_nm;
+  const pk_limits limits = {-far, far, false, false, false, "nm"};
   return node ? pk_read_numbers(p->context, node, &limits, 2, out) : PICKET_OK;
 }
 
-static extent around(const double at[2], const double size[2]) {
-  extent e;
-  for (int axis = 0; axis < 2; axis++) {
-    e.low[axis] = at[axis] - size[axis] / 2;
-    e.high[axis] = at[axis] + size[axis] / 2;
-  }
-  return e;
+static picket_status refuse_order(const painter *p, const pk_node *high, const char *above,
+                                  const pk_node *low) {
+  return pk_fail_at(p->context, PICKET_ERROR_INPUT, high->place, "%s is %s, must be above %s, %s",
+                    pk_node_path(high).text, high->text, above, low->text);
 }
 
-static picket_status read_rect(const painter *p, const pk_node *node) {
-  const pk_node *values[RECT_COUNT];
-  int material = 0;
-  double at[2] = {0, 0};
-  double size[2] = {0, 0};
-  picket_status status = pk_read_block(p->context, node, rect_keys, RECT_COUNT, values);
-  if (status == PICKET_OK) {
-    status = pk_read_material(p->reader, values[RECT_FILL], &material);
+static picket_status read_along(const painter *p, const pk_node *node, pk_shape *shape) {
+  const double pitch = p->plane->pitch_nm;
+  const pk_limits limits = {-PK_LENGTH_HIGH_NM, PK_LENGTH_HIGH_NM, false, false, false, "nm"};
+  double *along = shape->along;
+  picket_status status = pk_read_numbers(p->context, node, &limits, 2, along);
+  if (status != PICKET_OK) {
+    return status;
   }
-  if (status == PICKET_OK) {
-    status = read_size(p, values[RECT_LENGTH], &size[PK_U]);
+  const double slack = pitch * PK_BORDER_TOLERANCE;
+  const pk_node *low = pk_node_element(node, 0), *high = pk_node_element(node, 1);
+  if (!(along[0] + slack < along[1])) {
+    return refuse_order(p, high, "the start of the range", low);
   }
-  if (status == PICKET_OK) {
-    status = read_size(p, values[RECT_WIDTH], &size[PK_V]);
+  if (along[1] - along[0] > pitch + slack) {
+    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
+                      "%s is %.10g nm long, must be at most the pitch, %.10g nm",
+                      pk_node_path(node).text, along[1] - along[0], pitch);
   }
-  if (status == PICKET_OK) {
-    status = read_point(p, values[RECT_AT], at);
-  }
-  if (status == PICKET_OK) {
-    extent e = around(at, size);
-    status = check_finite(p, node, &e);
-  }
-  if (status == PICKET_OK) {
-    const double at_um[2] = {at[0] / PK_NM_PER_UM, at[1] / PK_NM_PER_UM};
-    const double size_um[2] = {size[0] / PK_NM_PER_UM, size[1] / PK_NM_PER_UM};
-    status = pk_geometry_add_rect(p->cell->geometry, node->place, material, at_um, size_um);
-  }
-  return status;
-}
-
-static picket_status read_disc(const painter *p, const pk_node *node) {
-  const pk_node *values[DISC_COUNT];
-  int material = 0;
-  double at[2] = {0, 0};
-  double diameter = 0;
-  picket_status status = pk_read_block(p->context, node, disc_keys, DISC_COUNT, values);
-  if (status == PICKET_OK) {
-    status = pk_read_material(p->reader, values[DISC_FILL], &material);
-  }
-  if (status == PICKET_OK) {
-    status = read_size(p, values[DISC_DIAMETER], &diameter);
-  }
-  if (status == PICKET_OK) {
-    status = read_point(p, values[DISC_AT], at);
-  }
-  if (status == PICKET_OK) {
-    const double size[2] = {diameter, diameter};
-    extent e = around(at, size);
-    status = check_finite(p, node, &e);
-  }
-  if (status == PICKET_OK) {
-    const double at_um[2] = {at[0] / PK_NM_PER_UM, at[1] / PK_NM_PER_UM};
-    status = pk_geometry_add_disc(p->cell->geometry, node->place, material, at_um,
-                                  diameter / PK_NM_PER_UM);
-  }
-  return status;
-}
-
-/* Corners in µm and the extent around them in nm. */
-static picket_status read_corners(const painter *p, const pk_node *list, double (*corners)[2],
-                                  extent *e) {
-  int i = 0;
-  *e = (extent){{INFINITY, INFINITY}, {-INFINITY, -INFINITY}};
-  for (const pk_node *node = list->first; node; node = node->next, i++) {
-    double corner[2] = {0, 0};
-    picket_status status = read_point(p, node, corner);
-    if (status != PICKET_OK) {
-      return status;
-    }
-    for (int axis = 0; axis < 2; axis++) {
-      e->low[axis] = fmin(e->low[axis], corner[axis]);
-      e->high[axis] = fmax(e->high[axis], corner[axis]);
-      corners[i][axis] = corner[axis] / PK_NM_PER_UM;
-    }
+  if (along[0] >= pitch / 2 - slack || along[1] <= -pitch / 2 + slack) {
+    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
+                      "%s lies wholly outside the pitch, which is from %.10g to %.10g nm",
+                      pk_node_path(node).text, -pitch / 2, pitch / 2);
   }
   return PICKET_OK;
 }
 
-static picket_status read_polygon(const painter *p, const pk_node *node) {
-  const pk_node *values[POLYGON_COUNT];
-  int material = 0;
-  double(*corners)[2] = NULL;
-  extent e;
-  picket_status status = pk_read_block(p->context, node, polygon_keys, POLYGON_COUNT, values);
-  const pk_node *list = values[POLYGON_CORNERS];
+static void surround(pk_shape *shape) {
+  for (int axis = 0; axis < 2; axis++) {
+    shape->low[axis] = shape->at[axis] - shape->size[axis] / 2;
+    shape->high[axis] = shape->at[axis] + shape->size[axis] / 2;
+  }
+}
+
+/* --- Kinds ------------------------------------------------------------------------------------ */
+
+static picket_status read_rect(const painter *p, const pk_node *const *own, pk_shape *shape) {
+  picket_status status = read_size(p, own[0], &shape->size[PK_U]);
   if (status == PICKET_OK) {
-    status = pk_read_material(p->reader, values[POLYGON_FILL], &material);
+    status = read_size(p, own[1], &shape->size[PK_V]);
   }
   if (status == PICKET_OK) {
-    status = pk_read_list(p->context, list, FEWEST_CORNERS, MOST_CORNERS, "corners [z, x]");
+    status = read_point(p, own[2], shape->at);
   }
-  if (status == PICKET_OK) {
-    corners = pk_alloc(p->context, (size_t)list->count, sizeof *corners);
-    status = corners ? read_corners(p, list, corners, &e) : PICKET_ERROR_MEMORY;
-  }
-  if (status == PICKET_OK) {
-    status = check_finite(p, node, &e);
-  }
-  if (status == PICKET_OK) {
-    status = pk_geometry_add_polygon(p->cell->geometry, node->place, material, list->count,
-                                     (const double(*)[2])corners);
-  }
-  pk_free(p->context, corners);
+  surround(shape);
   return status;
 }
 
-/* Whether a stripe across an axis has a place in this kind of cell. */
-static picket_status check_stripe(const painter *p, const pk_node *node, int axis,
-                                  const extent *e) {
-  const pk_cell *cell = p->cell;
-  const pk_path_text path = pk_node_path(node);
-  bool periodic = axis == PK_U || cell->lateral == PK_LATERAL_PERIODIC;
-  if (axis == PK_U && cell->lateral == PK_LATERAL_OPEN) {
-    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
-                      "%s across z never ends laterally, but lateral is open; use a rect",
-                      path.text);
+static picket_status read_disc(const painter *p, const pk_node *const *own, pk_shape *shape) {
+  picket_status status = read_size(p, own[0], &shape->size[PK_U]);
+  shape->size[PK_V] = shape->size[PK_U];
+  if (status == PICKET_OK) {
+    status = read_point(p, own[1], shape->at);
   }
-  if (axis == PK_V && cell->lateral == PK_LATERAL_UNIFORM) {
-    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
-                      "%s is across x, but lateral is uniform; use a stripe across z", path.text);
-  }
-  if (periodic && (isinf(e->low[axis]) || isinf(e->high[axis]))) {
-    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
-                      "%s is endless, but the cell repeats along %c; give finite ends", path.text,
-                      axis_letter[axis]);
-  }
-  if (axis == PK_V && cell->lateral == PK_LATERAL_OPEN) {
-    return PICKET_OK;
-  }
-  double size = axis == PK_U ? cell->pitch_um : cell->span_um;
-  return check_axis(p, node, axis, e, size * PK_NM_PER_UM / 2, periodic);
+  surround(shape);
+  return status;
 }
 
-static picket_status read_stripe(const painter *p, const pk_node *node) {
-  static const char *const axes[] = {"z", "x"};
-  const pk_limits limits = {-PK_LENGTH_HIGH_NM, PK_LENGTH_HIGH_NM, false, false, true, "nm"};
-  const pk_node *values[STRIPE_COUNT];
-  int material = 0;
+/* The corners are the caller's. */
+static picket_status read_polygon(const painter *p, const pk_node *const *own, pk_shape *shape) {
+  const pk_node *list = own[0];
+  const char *letter = p->plane->letter;
+  char what[32];
+  snprintf(what, sizeof what, "corners [%c, %c]", letter[0], letter[1]);
+  picket_status status = pk_read_list(p->context, list, FEWEST_CORNERS, MOST_CORNERS, what);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  shape->corners = pk_alloc(p->context, (size_t)list->count, sizeof *shape->corners);
+  if (!shape->corners) {
+    return PICKET_ERROR_MEMORY;
+  }
+  for (int axis = 0; axis < 2; axis++) {
+    shape->low[axis] = INFINITY;
+    shape->high[axis] = -INFINITY;
+  }
+  const pk_node *node = list->first;
+  for (; status == PICKET_OK && node; node = node->next, shape->corner_count++) {
+    double *corner = shape->corners[shape->corner_count];
+    status = read_point(p, node, corner);
+    for (int axis = 0; axis < 2; axis++) {
+      shape->low[axis] = fmin(shape->low[axis], corner[axis]);
+      shape->high[axis] = fmax(shape->high[axis], corner[axis]);
+    }
+  }
+  return status;
+}
+
+static picket_status read_stripe(const painter *p, const pk_node *const *own, pk_shape *shape) {
+  const char letters[2][2] = {{p->plane->letter[0], '\0'}, {p->plane->letter[1], '\0'}};
+  const char *const axes[] = {letters[0], letters[1]};
+  const double far = p->plane->farthest_nm;
+  const pk_limits limits = {-far, far, false, false, true, "nm"};
+  const pk_node *from = own[1], *to = own[2];
   int axis = 0;
-  extent e = {{0, 0}, {0, 0}};
-  picket_status status = pk_read_block(p->context, node, stripe_keys, STRIPE_COUNT, values);
+  picket_status status = pk_read_choice(p->context, own[0], axes, 2, &axis);
   if (status == PICKET_OK) {
-    status = pk_read_material(p->reader, values[STRIPE_FILL], &material);
+    status = pk_read_number(p->context, from, &limits, &shape->low[axis]);
   }
   if (status == PICKET_OK) {
-    status = pk_read_choice(p->context, values[STRIPE_ACROSS], axes, 2, &axis);
+    status = pk_read_number(p->context, to, &limits, &shape->high[axis]);
+  }
+  if (status == PICKET_OK && !(shape->low[axis] < shape->high[axis])) {
+    status = refuse_order(p, to, "from_nm", from);
+  }
+  shape->across = (pk_axis_name)axis;
+  shape->low[1 - axis] = -INFINITY;
+  shape->high[1 - axis] = INFINITY;
+  return status;
+}
+
+typedef picket_status reader_of_kind(const painter *, const pk_node *const *, pk_shape *);
+
+/* The table of keys of a kind. */
+static int list_keys(const pk_shape_plane *plane, pk_shape_kind kind, pk_key *keys) {
+  const pk_key own[KIND_COUNT][MOST_OWN] = {
+      [PK_SHAPE_RECT] = {{plane->rect_size[0], true},
+                         {plane->rect_size[1], true},
+                         {"at_nm", false}},
+      [PK_SHAPE_DISC] = {{"diameter_nm", true}, {"at_nm", false}},
+      [PK_SHAPE_POLYGON] = {{"corners_nm", true}},
+      [PK_SHAPE_STRIPE] = {{"across", true}, {"from_nm", true}, {"to_nm", true}},
+  };
+  int count = 0;
+  keys[count++] = (pk_key){"fill", true};
+  for (int i = 0; i < MOST_OWN && own[kind][i].name; i++) {
+    keys[count++] = own[kind][i];
+  }
+  if (plane->pitch_nm > 0) {
+    keys[count++] = (pk_key){"along_nm", false};
+  }
+  return count;
+}
+
+static picket_status read_shape(const painter *p, const pk_node *node, pk_shape *shape) {
+  static reader_of_kind *const read[KIND_COUNT] = {
+      [PK_SHAPE_RECT] = read_rect,
+      [PK_SHAPE_DISC] = read_disc,
+      [PK_SHAPE_POLYGON] = read_polygon,
+      [PK_SHAPE_STRIPE] = read_stripe,
+  };
+  pk_key keys[MOST_KEYS];
+  const pk_node *values[MOST_KEYS];
+  int count = list_keys(p->plane, shape->kind, keys);
+  picket_status status = pk_read_block(p->context, node, keys, count, values);
+  if (status == PICKET_OK) {
+    status = pk_read_material(p->reader, values[FILL], &shape->material);
   }
   if (status == PICKET_OK) {
-    status = pk_read_number(p->context, values[STRIPE_FROM], &limits, &e.low[axis]);
+    status = read[shape->kind](p, values + OWN, shape);
   }
-  if (status == PICKET_OK) {
-    status = pk_read_number(p->context, values[STRIPE_TO], &limits, &e.high[axis]);
-  }
-  if (status == PICKET_OK && !(e.low[axis] < e.high[axis])) {
-    status = pk_fail_at(p->context, PICKET_ERROR_INPUT, values[STRIPE_TO]->place,
-                        "%s is %s, must be above from_nm, %s", pk_node_path(values[STRIPE_TO]).text,
-                        values[STRIPE_TO]->text, values[STRIPE_FROM]->text);
-  }
-  if (status == PICKET_OK) {
-    status = check_stripe(p, node, axis, &e);
-  }
-  if (status == PICKET_OK) {
-    status = pk_geometry_add_stripe(p->cell->geometry, node->place, material, (pk_axis_name)axis,
-                                    e.low[axis] / PK_NM_PER_UM, e.high[axis] / PK_NM_PER_UM);
+  const pk_node *along = p->plane->pitch_nm > 0 ? values[count - 1] : NULL;
+  shape->along[0] = -p->plane->pitch_nm / 2;
+  shape->along[1] = p->plane->pitch_nm / 2;
+  if (status == PICKET_OK && along) {
+    status = read_along(p, along, shape);
   }
   return status;
 }
 
-picket_status pk_read_shapes(const pk_reader *reader, const pk_node *list, pk_cell *cell) {
-  static picket_status (*const read[KIND_COUNT])(const painter *, const pk_node *) = {
-      [KIND_RECT] = read_rect,
-      [KIND_DISC] = read_disc,
-      [KIND_POLYGON] = read_polygon,
-      [KIND_STRIPE] = read_stripe,
-  };
-  painter p = {reader, reader->context, cell};
+picket_status pk_read_shapes(const pk_reader *reader, const pk_node *list,
+                             const pk_shape_plane *plane, pk_shape_taker *take, void *owner) {
+  const painter p = {reader, reader->context, plane, owner};
   picket_status status = pk_read_list(reader->context, list, 1, MOST_SHAPES, "shapes");
   const pk_node *node = status == PICKET_OK ? list->first : NULL;
   for (; status == PICKET_OK && node; node = node->next) {
     const pk_node *value = NULL;
     int kind = 0;
     status = pk_read_kind(reader->context, node, kinds, KIND_COUNT, &kind, &value);
+    pk_shape shape = {.node = value, .kind = (pk_shape_kind)kind};
     if (status == PICKET_OK) {
-      status = read[kind](&p, value);
+      status = read_shape(&p, value, &shape);
     }
+    if (status == PICKET_OK) {
+      status = take(owner, &shape);
+    }
+    pk_free(reader->context, shape.corners);
   }
   return status;
+}
+
+/* --- Painting --------------------------------------------------------------------------------- */
+
+static picket_status paint_polygon(picket_context *context, const pk_shape *s,
+                                   pk_geometry *geometry) {
+  double(*corners)[2] = pk_alloc(context, (size_t)s->corner_count, sizeof *corners);
+  if (!corners) {
+    return PICKET_ERROR_MEMORY;
+  }
+  for (int i = 0; i < s->corner_count; i++) {
+    corners[i][PK_U] = s->corners[i][PK_U] / PK_NM_PER_UM;
+    corners[i][PK_V] = s->corners[i][PK_V] / PK_NM_PER_UM;
+  }
+  picket_status status = pk_geometry_add_polygon(geometry, s->node->place, s->material,
+                                                 s->corner_count, (const double(*)[2])corners);
+  pk_free(context, corners);
+  return status;
+}
+
+picket_status pk_shape_paint(picket_context *context, const pk_shape *s, pk_geometry *geometry) {
+  const pk_place place = s->node->place;
+  const double at[2] = {s->at[PK_U] / PK_NM_PER_UM, s->at[PK_V] / PK_NM_PER_UM};
+  const double size[2] = {s->size[PK_U] / PK_NM_PER_UM, s->size[PK_V] / PK_NM_PER_UM};
+  switch (s->kind) {
+    case PK_SHAPE_RECT: return pk_geometry_add_rect(geometry, place, s->material, at, size);
+    case PK_SHAPE_DISC: return pk_geometry_add_disc(geometry, place, s->material, at, size[PK_U]);
+    case PK_SHAPE_POLYGON: return paint_polygon(context, s, geometry);
+    default:
+      return pk_geometry_add_stripe(geometry, place, s->material, s->across,
+                                    s->low[s->across] / PK_NM_PER_UM,
+                                    s->high[s->across] / PK_NM_PER_UM);
+  }
 }

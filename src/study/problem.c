@@ -3,6 +3,15 @@
 
 #include "base/memory.h"
 
+static void clear_channel(picket_context *context, pk_channel_block *channel) {
+  for (int i = 0; i < channel->slices; i++) {
+    pk_geometry_free(channel->slice[i]);
+  }
+  pk_free(context, channel->slice);
+  pk_free(context, channel->from_um);
+  pk_free(context, channel->outline.used);
+}
+
 void pk_problem_free(pk_problem *problem) {
   if (!problem) {
     return;
@@ -20,6 +29,7 @@ void pk_problem_free(pk_problem *problem) {
   pk_free(context, (void *)problem->slab.recipe.film_thickness_um);
   pk_geometry_free(problem->section.geometry);
   pk_free(context, problem->section.used);
+  clear_channel(context, &problem->channel);
   pk_free(context, problem);
   pk_context_release(context);
 }

@@ -44,7 +44,23 @@ typedef struct pk_section_block {
   bool *used;                   /* [materials] named by the block */
   double span_um[2];            /* width and height of the window around (0, 0); 0: not given */
   double low_um[2], high_um[2]; /* extent of the shapes with ends; low above high: none */
+  int others;                   /* of a channel's outline: further planes that it consists of */
+  pk_geometry **other;          /* [others] borrowed */
 } pk_section_block;
+
+/* A channel: planes across the guide, one after the other along z, repeated with the pitch. Slice i
+ * reaches from from_um[i] to from_um[i + 1]. */
+typedef struct pk_channel_block {
+  bool given;
+  pk_place place;
+  double pitch_um;
+  int cladding;    /* material where nothing is painted */
+  bool use_planes; /* mirror planes may halve the problem */
+  int slices;
+  double *from_um;          /* [slices + 1] rising, the first slice begins at or after -pitch/2 */
+  pk_geometry **slice;      /* [slices] */
+  pk_section_block outline; /* all slices at once; its planes are the slices' */
+} pk_channel_block;
 
 typedef struct pk_problem {
   picket_context *context; /* held */
@@ -59,6 +75,7 @@ typedef struct pk_problem {
   pk_path path;
   pk_slab_block slab;
   pk_section_block section;
+  pk_channel_block channel;
 } pk_problem;
 
 /* Accepts null and half-built problems. */

@@ -8,6 +8,7 @@
 #include "operator/corner_exponent.h"
 #include "operator/corner_list.h"
 #include "slab/slab.h"
+#include "study/section_planes.h"
 
 static const double PI = 3.141592653589793238;
 static const double QUARTER_TURN = 1.57079632679489661923;
@@ -35,9 +36,6 @@ static const double LONGEST_DECAY = 2;
 static const double LAYER_RADIANS = 4, STEP_RADIANS = 0.5, ROOM_RADIANS = 2;
 
 static const double FAR_X_UM = 49.99, FAR_Y_UM = 60;
-
-/* Lines closer than this are one: the tolerance of coordinates in a section (io/read_section.c). */
-static const double SAME_UM = 2e-7;
 
 /* A corner so weak is not told from none: 4 - 2α is 2. */
 static const double WEAK = 1e-3;
@@ -90,12 +88,11 @@ static int medium_on(const pk_geometry *geometry, int axis, double along, double
                       : pk_geometry_medium_at(geometry, across, along);
 }
 
-/* Highest index of a guided mode of the films met along the line `axis` = at, or of their
- * surroundings. */
-static picket_status films_index(const pk_section_survey *s, int axis, double at, int count,
-                                 const double *line, double *index) {
+/* Highest index of a guided mode of the films that a plane has along the line `axis` = at, or of
+ * their surroundings. */
+static picket_status films_index(const pk_section_survey *s, const pk_geometry *geometry, int axis,
+                                 double at, int count, const double *line, double *index) {
   picket_context *context = s->problem->context;
-  const pk_geometry *geometry = s->block->geometry;
   double far = axis == PK_U ? FAR_Y_UM : FAR_X_UM;
   int low_side = axis == PK_U ? 2 : 0; /* of the films */
   double low = s->leaks[low_side] ? s->edge[low_side] + 1e-6 : -far;
@@ -136,39 +133,51 @@ static picket_status films_index(const pk_section_survey *s, int axis, double at
   return status;
 }
 
-static picket_status take_sides(pk_section_survey *s) {
+static picket_status side_index(const pk_section_survey *s, const pk_geometry *geometry, int side,
+                                double *index) {
   picket_context *context = s->problem->context;
-  for (int side = 0; side < PK_SIDES; side++) {
-    int axis = side / 2;
-    double far = axis == PK_U ? FAR_X_UM : FAR_Y_UM;
-    double *line = NULL;
-    int count = 0;
-    picket_status status =
-        pk_geometry_lines(s->block->geometry, axis == PK_U ? PK_V : PK_U, &line, &count);
-    if (status == PICKET_OK) {
-      status = films_index(s, axis, side % 2 ? far : -far, count, line, &s->side[side]);
-    }
-    pk_free(context, line);
-    if (status != PICKET_OK) {
-      return status;
-    }
+  int axis = side / 2;
+  double far = axis == PK_U ? FAR_X_UM : FAR_Y_UM;
+  double *line = NULL;
+  int count = 0;
+  picket_status status = pk_geometry_lines(geometry, axis == PK_U ? PK_V : PK_U, &line, &count);
+  if (status == PICKET_OK) {
+    status = films_index(s, geometry, axis, side % 2 ? far : -far, count, line, index);
   }
-  return PICKET_OK;
+  pk_free(context, line);
+  return status;
+}
+
+/* Of a channel whose side differs from slice to slice the highest, which bounds that of the whole.
+ */
+static picket_status take_sides(pk_section_survey *s) {
+  picket_status status = PICKET_OK;
+  for (int side = 0; side < PK_SIDES; side++) {
+    double highest = 0;
+    for (int i = 0; status == PICKET_OK && i < pk_planes_count(s->block); i++) {
+      double index = 0;
+      status = side_index(s, pk_planes_get(s->block, i), side, &index);
+      highest = fmax(highest, index);
+    }
+    s->side[side] = highest;
+  }
+  return status;
 }
 
 /* --- Extent and planes ------------------------------------------------------------------------ */
 
-static void take_extent(pk_section_survey *s) {
+static picket_status take_extent(pk_section_survey *s) {
   const pk_section_block *block = s->block;
-  for (int axis = 0; axis < 2; axis++) {
+  picket_status status = PICKET_OK;
+  for (int axis = 0; status == PICKET_OK && axis < 2; axis++) {
     bool given = block->span_um[axis] > 0;
     s->low[axis] = given ? -0.5 * block->span_um[axis] : block->low_um[axis];
     s->high[axis] = given ? 0.5 * block->span_um[axis] : block->high_um[axis];
-    double centre = 0;
-    s->mirror[axis] =
-        pk_geometry_mirror(block->geometry, (pk_axis_name)axis, &centre) && (!given || centre == 0);
-    s->centre[axis] = centre;
+    bool found = false;
+    status = pk_planes_mirror(s->problem->context, block, axis, &found, &s->centre[axis]);
+    s->mirror[axis] = found && (!given || s->centre[axis] == 0);
   }
+  return status;
 }
 
 static void take_cut(pk_section_survey *s) {
@@ -185,7 +194,7 @@ picket_status pk_section_survey_set_apart(pk_section_survey *s, bool *done) {
   for (int axis = 0; axis < 2; axis++) {
     double *line = NULL;
     int count = 0;
-    picket_status status = pk_geometry_lines(s->block->geometry, (pk_axis_name)axis, &line, &count);
+    picket_status status = pk_planes_lines(s->problem->context, s->block, axis, &line, &count);
     if (status != PICKET_OK) {
       return status;
     }
@@ -222,11 +231,13 @@ picket_status pk_section_survey_take(const pk_problem *problem, const pk_section
   if (status == PICKET_OK) {
     status = take_sides(&s);
   }
+  if (status == PICKET_OK) {
+    status = take_extent(&s);
+  }
   if (status != PICKET_OK) {
     pk_section_survey_clear(&s);
     return status;
   }
-  take_extent(&s);
   take_cut(&s);
   *out = s;
   return PICKET_OK;
@@ -249,16 +260,6 @@ static double decay_of(const pk_section_survey *s, int side, double index) {
   return 1 / (s->k0 * sqrt(fmax(square, least * least)));
 }
 
-static int insert(double value, int count, double *line) {
-  int at = count;
-  while (at > 0 && line[at - 1] > value) {
-    line[at] = line[at - 1];
-    at--;
-  }
-  line[at] = value;
-  return count + 1;
-}
-
 /* Lines of a grid inside (from, to): those of the geometry, and the ends of the shapes, which
  * curved and oblique ones do not have among them but where the fine steps end. [count + 2] is
  * enough. */
@@ -270,11 +271,11 @@ static int choose_lines(const pk_section_block *block, int axis, const pk_axis_w
     line[kept++] = known[i];
   }
   for (int e = 0; e < 2; e++) {
-    kept = isfinite(ends[e]) ? insert(ends[e], kept, line) : kept;
+    kept = isfinite(ends[e]) ? pk_line_insert(ends[e], kept, line) : kept;
   }
   int inside = 0;
   for (int i = 0; i < kept; i++) {
-    bool repeated = inside > 0 && line[i] - line[inside - 1] < SAME_UM;
+    bool repeated = inside > 0 && line[i] - line[inside - 1] < PK_SAME_LINE_UM;
     if (line[i] > w->from && line[i] < w->to && !repeated) {
       line[inside++] = line[i];
     }
@@ -331,7 +332,7 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
   picket_context *context = s->problem->context;
   double *line = NULL;
   int count = 0;
-  picket_status status = pk_geometry_lines(s->block->geometry, (pk_axis_name)axis, &line, &count);
+  picket_status status = pk_planes_lines(s->problem->context, s->block, axis, &line, &count);
   if (status != PICKET_OK) {
     return status;
   }
@@ -342,7 +343,7 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
       .growth = GROWTH,
       .least_intervals = 1};
   const pk_section_block *block = s->block;
-  if (!pk_geometry_is_rectangular(block->geometry)) {
+  if (!pk_planes_are_rectangular(block)) {
     double size = fmin(block->high_um[0] - block->low_um[0], block->high_um[1] - block->low_um[1]);
     w.step = fmin(w.step, size / STEPS_PER_SHAPE);
   }
@@ -394,9 +395,8 @@ static double smallest_exponent(const pk_section_survey *s, const pk_corner_list
 
 picket_status pk_section_survey_law(const pk_section_survey *s, const pk_axis *x, const pk_axis *y,
                                     pk_error_law *out) {
-  const pk_geometry *geometry = s->block->geometry;
   pk_error_law law = {.count = 2, .exponent = {2, 4}, .smooth = 1};
-  law.smooth = pk_geometry_is_rectangular(geometry) ? 1 : 0;
+  law.smooth = pk_planes_are_rectangular(s->block) ? 1 : 0;
   double least = s->top;
   for (int m = 0; m < s->media; m++) {
     least = s->block->used[m] ? fmin(least, sqrt(cabs(s->permittivity[m]))) : least;
@@ -404,22 +404,23 @@ picket_status pk_section_survey_law(const pk_section_survey *s, const pk_axis *x
   double ratio = least * least / (s->top * s->top);
   law.share = law.smooth ? 0 : SHARE * (1 - ratio) / (1 + ratio);
   law.share_order = 2;
-  pk_corner_list list;
-  picket_status status = pk_corner_list_take(s->problem->context, geometry, x, y, &list);
-  if (status != PICKET_OK) {
-    return status;
+  double alpha = 1;
+  for (int i = 0; i < pk_planes_count(s->block); i++) {
+    pk_corner_list list;
+    picket_status status =
+        pk_corner_list_take(s->problem->context, pk_planes_get(s->block, i), x, y, &list);
+    if (status != PICKET_OK) {
+      return status;
+    }
+    alpha = fmin(alpha, smallest_exponent(s, &list));
+    law.no_bar = list.other_count > 0 ? NOTE_OBLIQUE : list.lost_count > 0 ? NOTE_LOST : law.no_bar;
+    pk_corner_list_clear(s->problem->context, &list);
   }
-  double alpha = smallest_exponent(s, &list);
-  if (list.other_count > 0) {
-    law.no_bar = NOTE_OBLIQUE;
-  } else if (list.lost_count > 0) {
-    law.no_bar = NOTE_LOST;
-  } else if (alpha < 0) {
+  if (alpha < 0 && !law.no_bar) {
     law.no_bar = NOTE_METAL;
-  } else if (alpha < 1 - WEAK && law.smooth) {
+  } else if (alpha < 1 - WEAK && law.smooth && !law.no_bar) {
     law = (pk_error_law){.count = 3, .exponent = {2, 4 - 2 * alpha, 4}, .smooth = 1, .corners = 1};
   }
-  pk_corner_list_clear(s->problem->context, &list);
   *out = law;
   return PICKET_OK;
 }
