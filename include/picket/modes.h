@@ -16,12 +16,32 @@ typedef struct picket_confinement {
   double share;         /* 0 to 1; the shares of a mode add up to 1 */
 } picket_confinement;
 
+/* Mode-field diameters, each by its own definition, all equal to 2w for a Gaussian beam with an
+ * intensity as exp(-2r²/w²). S_z = ½ Re(E × H*)_z is the power flow, H_t the transverse magnetic
+ * field. Missing (NaN, with a note) where a mode has none. */
+typedef struct picket_mode_diameters {
+  /* Petermann II: 2√(2 ∫|H_t|² / ∫|∇H_t|²), and along an axis 2√(∫|H_t|² / ∫|∂H_t|²): from the
+   * spread of the far field (K. Petermann, Electron. Lett. 19, 712 (1983)). */
+  picket_quantity petermann_um, petermann_x_um, petermann_y_um;
+  /* 2√2 √⟨r²⟩ about the centroid of S_z, and along an axis 4σ. */
+  picket_quantity rms_um, rms_x_um, rms_y_um;
+  /* Between the outermost places on the line through the centroid of S_z along an axis where S_z
+   * falls to 1/e² of its largest value on that line. */
+  picket_quantity e2_x_um, e2_y_um;
+  /* The Gaussian beam g about the centroid of S_z, polarized along x or y, that resembles the mode
+   * most: the overlap |∫H_c g|² / (∫|H_t|² ∫g²), H_c across the beam's E, is largest. Round, then
+   * with a diameter along x and one along y. */
+  picket_quantity gaussian_um, gaussian_overlap;
+  picket_quantity gaussian_x_um, gaussian_y_um, gaussian_xy_overlap;
+} picket_mode_diameters;
+
 typedef struct picket_section_mode {
   int order;                          /* by falling index, from 0 */
   picket_quantity index;              /* Re β/k0 */
   picket_quantity group_index;        /* dβ/dk0, material dispersion included */
   picket_quantity loss_db_per_cm;     /* of power, from Im β: absorption and leakage */
   picket_quantity effective_area_um2; /* (∫S_z dA)² / ∫S_z² dA */
+  picket_mode_diameters diameters;
   double ex_share; /* of the transverse electric energy ∫ε(|E_x|² + |E_y|²), that along x; 1 is a
                       te-like mode of a flat guide, 0 a tm-like one. From the finest grid, as are
                       the numbers below */

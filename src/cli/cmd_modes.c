@@ -1,4 +1,5 @@
 /* modes: full-vector modes of a section. */
+#include <math.h>
 #include <stdio.h>
 
 #include "cli/text.h"
@@ -65,6 +66,45 @@ static void print_confinement(const picket_modes_point *point) {
   }
 }
 
+static void print_width(pk_text_table *t, pk_notes *notes, const picket_section_mode *mode,
+                        const char *name, const picket_quantity *all) {
+  pk_table_cell(t, "%d", mode->order);
+  pk_table_cell(t, "%s", name);
+  for (int i = 0; i < 4; i++) {
+    if (isfinite(all[i].value) || all[i].note) {
+      pk_table_quantity(t, notes, all[i], 1);
+    } else {
+      pk_table_cell(t, "%s", "");
+    }
+  }
+}
+
+/* Mode-field diameters at the first wavelength. */
+static void print_diameters(const picket_modes_point *point, pk_notes *notes) {
+  const picket_quantity none = {NAN, NAN, NULL};
+  pk_text_table t = {.columns = 6};
+  const char *const head[] = {"order", "mode-field diameter, um", "round", "x", "y", "overlap"};
+  for (int i = 0; i < t.columns; i++) {
+    pk_table_cell(&t, "%s", head[i]);
+  }
+  for (int m = 0; m < point->mode_count; m++) {
+    const picket_section_mode *mode = &point->modes[m];
+    const picket_mode_diameters *d = &mode->diameters;
+    print_width(&t, notes, mode, "Petermann II",
+                (picket_quantity[]){d->petermann_um, d->petermann_x_um, d->petermann_y_um, none});
+    print_width(&t, notes, mode, "rms (4 sigma)",
+                (picket_quantity[]){d->rms_um, d->rms_x_um, d->rms_y_um, none});
+    print_width(&t, notes, mode, "1/e2 of power flow",
+                (picket_quantity[]){none, d->e2_x_um, d->e2_y_um, none});
+    print_width(&t, notes, mode, "best round Gaussian",
+                (picket_quantity[]){d->gaussian_um, none, none, d->gaussian_overlap});
+    print_width(
+        &t, notes, mode, "best oval Gaussian",
+        (picket_quantity[]){none, d->gaussian_x_um, d->gaussian_y_um, d->gaussian_xy_overlap});
+  }
+  pk_table_print(&t);
+}
+
 void pk_modes_print(const pk_arguments *arguments, const picket_result *result) {
   (void)arguments;
   pk_notes seen = {0};
@@ -81,6 +121,8 @@ void pk_modes_print(const pk_arguments *arguments, const picket_result *result) 
   }
   if (answer.point_count > 0) {
     print_confinement(&answer.points[0]);
+    printf("\n");
+    print_diameters(&answer.points[0], &seen);
   }
   printf("\n");
   pk_notes_print(&seen);

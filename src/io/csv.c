@@ -4,6 +4,7 @@
 #include <string.h>
 
 #include "base/memory.h"
+#include "io/csv_private.h"
 #include "io/number.h"
 #include "io/write.h"
 
@@ -230,6 +231,13 @@ static void write_slab(sheet *s, const picket_result *result) {
   }
 }
 
+static void put_diameters(sheet *s, const picket_mode_diameters *d) {
+  const picket_quantity *all = (const picket_quantity *)d; /* it is made of nothing else */
+  for (size_t i = 0; i < sizeof *d / sizeof *all; i++) {
+    put_quantity(s, all[i], 1);
+  }
+}
+
 static void write_modes_point(sheet *s, const picket_modes_point *point) {
   for (int m = 0; m < point->mode_count; m++) {
     const picket_section_mode *mode = &point->modes[m];
@@ -242,6 +250,7 @@ static void write_modes_point(sheet *s, const picket_modes_point *point) {
     put_quantity(s, mode->effective_area_um2, 1);
     put_number(s, mode->nodes_x);
     put_number(s, mode->nodes_y);
+    put_diameters(s, &mode->diameters);
     end_row(s);
   }
 }
@@ -260,6 +269,7 @@ static void write_modes(sheet *s, const picket_result *result) {
                                        "effective_area_uncertainty_um2",
                                        "nodes_x",
                                        "nodes_y",
+                                       PK_CSV_DIAMETERS,
                                        NULL};
   put_header(s, header);
   end_row(s);

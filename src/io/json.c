@@ -182,6 +182,24 @@ static json_t *confinement(const picket_section_mode *mode) {
   return finish(object, good);
 }
 
+static json_t *diameters(const picket_mode_diameters *d) {
+  json_t *object = json_object();
+  bool good = put(object, "petermann_um", quantity(d->petermann_um, 1)) &&
+              put(object, "petermann_x_um", quantity(d->petermann_x_um, 1)) &&
+              put(object, "petermann_y_um", quantity(d->petermann_y_um, 1)) &&
+              put(object, "rms_um", quantity(d->rms_um, 1)) &&
+              put(object, "rms_x_um", quantity(d->rms_x_um, 1)) &&
+              put(object, "rms_y_um", quantity(d->rms_y_um, 1)) &&
+              put(object, "e2_x_um", quantity(d->e2_x_um, 1)) &&
+              put(object, "e2_y_um", quantity(d->e2_y_um, 1)) &&
+              put(object, "gaussian_um", quantity(d->gaussian_um, 1)) &&
+              put(object, "gaussian_overlap", quantity(d->gaussian_overlap, 1)) &&
+              put(object, "gaussian_x_um", quantity(d->gaussian_x_um, 1)) &&
+              put(object, "gaussian_y_um", quantity(d->gaussian_y_um, 1)) &&
+              put(object, "gaussian_xy_overlap", quantity(d->gaussian_xy_overlap, 1));
+  return finish(object, good);
+}
+
 static json_t *section_mode(const void *user, int i) {
   const picket_section_mode *mode = (const picket_section_mode *)user + i;
   json_t *object = json_object();
@@ -192,6 +210,7 @@ static json_t *section_mode(const void *user, int i) {
               put(object, "ex_share", number(mode->ex_share)) &&
               put(object, "polarization", text(mode->ex_share > 0.5 ? "te-like" : "tm-like")) &&
               put(object, "effective_area_um2", quantity(mode->effective_area_um2, 1)) &&
+              put(object, "diameters", diameters(&mode->diameters)) &&
               put(object, "nodes_x", json_integer(mode->nodes_x)) &&
               put(object, "nodes_y", json_integer(mode->nodes_y)) &&
               put(object, "confinement", confinement(mode));

@@ -1,11 +1,14 @@
 /* See section_describe.h. */
 #include "study/section_describe.h"
 
+#include <assert.h>
 #include <math.h>
+#include <string.h>
 
 #include "base/memory.h"
 #include "section/forms.h"
 #include "section/nodes.h"
+#include "section/widths.h"
 
 /* dB/cm of a field that falls as exp(-x µm⁻¹): 20 log10(e) × 1e4. */
 static const double DB_PER_CM = 86858.896380650366;
@@ -54,6 +57,25 @@ static picket_status take_confinement(const pk_section_survey *s, pk_section *se
   return PICKET_OK;
 }
 
+static picket_status take_diameters(const pk_section_survey *s, const pk_section *section,
+                                    const pk_section_fields *fields, double *numbers) {
+  pk_section_whole whole = {0};
+  pk_section_widths w = {0};
+  picket_status status = pk_section_unfold(section, fields, s->mirror, &whole);
+  if (status == PICKET_OK) {
+    status = pk_section_widths_take(&whole, &w);
+  }
+  if (status == PICKET_OK) {
+    const double all[PK_DIAMETERS] = {
+        w.petermann,     w.petermann_along[0], w.petermann_along[1], w.rms,  w.rms_along[0],
+        w.rms_along[1],  w.fall_along[0],      w.fall_along[1],      w.beam, w.beam_overlap,
+        w.oval_along[0], w.oval_along[1],      w.oval_overlap};
+    memcpy(numbers, all, sizeof all);
+  }
+  pk_section_whole_clear(&whole);
+  return status;
+}
+
 picket_status pk_section_describe(const pk_section_family *f, pk_section *section,
                                   const pk_section_mode *solved, double *numbers,
                                   picket_section_mode *mode) {
@@ -72,7 +94,8 @@ picket_status pk_section_describe(const pk_section_family *f, pk_section *sectio
     numbers[PK_NUMBER_GROUP] = creal(group);
     numbers[PK_NUMBER_LOSS] = DB_PER_CM * cimag(solved->beta);
     numbers[PK_NUMBER_AREA] = parts * looks.effective_area;
-    if (mode) {
+    status = take_diameters(s, section, &fields, numbers + PK_NUMBER_DIAMETERS);
+    if (status == PICKET_OK && mode) {
       mode->ex_share = looks.ex_share;
       count_nodes(f, &fields, mode);
       status = take_confinement(s, section, &fields, mode);
@@ -83,11 +106,36 @@ picket_status pk_section_describe(const pk_section_family *f, pk_section *sectio
 }
 
 picket_quantity *pk_section_quantity(picket_section_mode *mode, int number) {
+  static_assert(sizeof(picket_mode_diameters) == PK_DIAMETERS * sizeof(picket_quantity),
+                "a mode-field diameter lacks its number");
   switch (number) {
     case PK_NUMBER_INDEX: return &mode->index;
     case PK_NUMBER_GROUP: return &mode->group_index;
     case PK_NUMBER_LOSS: return &mode->loss_db_per_cm;
     case PK_NUMBER_AREA: return &mode->effective_area_um2;
-    default: return NULL;
+    default: return (picket_quantity *)&mode->diameters + (number - PK_NUMBER_DIAMETERS);
   }
+}
+
+/* Places in picket_mode_diameters. */
+enum { FALL = 6, BEAM = 8 };
+
+pk_error_law pk_section_number_law(const pk_error_law *law, int number) {
+  pk_error_law own = *law;
+  int place = number - PK_NUMBER_DIAMETERS;
+  if (place >= FALL && place < BEAM) {
+    /* Read off between grid places, which lie differently on every grid. */
+    own.smooth = own.corners = 0;
+  }
+  return own;
+}
+
+const char *pk_section_number_note(int number) {
+  int place = number - PK_NUMBER_DIAMETERS;
+  if (place >= BEAM) {
+    return "no Gaussian beam about the centroid of the mode's power resembles it";
+  }
+  return place >= FALL ? "on the line through the centroid of the mode's power there is too little "
+                         "of it, or it does not fall to 1/e2 within the window"
+                       : NULL;
 }

@@ -150,9 +150,10 @@ static picket_quantity judge(const run *r, const int *m, int count, int number) 
     column[g] = values_of(r, m[g])[number];
     zero = zero && column[g] == 0;
   }
-  picket_quantity q = pk_extrapolate(&r->law, count, m, column);
+  pk_error_law law = pk_section_number_law(&r->law, number % PK_NUMBERS);
+  picket_quantity q = pk_extrapolate(&law, count, m, column);
   q.uncertainty = zero ? 0 : q.uncertainty + r->span_error[number];
-  q.note = zero ? NULL : q.note;
+  q.note = zero ? NULL : isnan(q.value) ? pk_section_number_note(number % PK_NUMBERS) : q.note;
   return q;
 }
 
