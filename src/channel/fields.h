@@ -10,6 +10,7 @@ typedef struct pk_channel_fields {
   picket_context *context;
   int nx, ny, mx, my;
   double complex *ex, *ey, *ez, *hx, *hy, *hz;
+  double complex *work, *wave; /* inside */
 } pk_channel_fields;
 
 picket_status pk_channel_fields_create(const pk_channel *channel, pk_channel_fields *out);

@@ -9,27 +9,21 @@
 
 #include "channel/channel.h"
 
-/* y = T(k) x, and Tᵀ x. */
-picket_status pk_channel_times(const pk_channel *channel, double complex k,
-                               double complex k0_square, const double complex *x,
-                               double complex *y);
-picket_status pk_channel_transposed_times(const pk_channel *channel, double complex k,
-                                          double complex k0_square, const double complex *x,
-                                          double complex *y);
+/* y = T(k) x, and Tᵀ x, with the media as loaded. */
+void pk_channel_times(const pk_channel *channel, double complex k, double complex k0_square,
+                      const double complex *x, double complex *y);
+void pk_channel_transposed_times(const pk_channel *channel, double complex k,
+                                 double complex k0_square, const double complex *x,
+                                 double complex *y);
 
-/* lᵀ T(k) r with the media as loaded. */
-picket_status pk_channel_form(const pk_channel *channel, double complex k, double complex k0_square,
-                              const double complex *l, const double complex *r,
-                              double complex *out);
-
-/* lᵀ M r */
-picket_status pk_channel_mass_form(const pk_channel *channel, const double complex *l,
-                                   const double complex *r, double complex *out);
-
-/* lᵀ (∂T/∂k) r */
-picket_status pk_channel_k_form(const pk_channel *channel, double complex k,
-                                const double complex *l, const double complex *r,
-                                double complex *out);
+/* lᵀ T(k) r with the media as loaded; lᵀ M r; lᵀ (∂T/∂k) r. */
+double complex pk_channel_form(const pk_channel *channel, double complex k,
+                               double complex k0_square, const double complex *l,
+                               const double complex *r);
+double complex pk_channel_mass_form(const pk_channel *channel, const double complex *l,
+                                    const double complex *r);
+double complex pk_channel_k_form(const pk_channel *channel, double complex k,
+                                 const double complex *l, const double complex *r);
 
 /* lᵀ (∂T/∂k0) r.
  *   slope  [3][media] k0 dε/dk0, null without dispersion */
@@ -54,7 +48,6 @@ typedef struct pk_channel_looks {
   double ez_share; /* ∫ε|E_z|² over ∫ε|E|² */
 } pk_channel_looks;
 
-picket_status pk_channel_look(const pk_channel *channel, const double complex *e,
-                              pk_channel_looks *out);
+void pk_channel_look(const pk_channel *channel, const double complex *e, pk_channel_looks *out);
 
 #endif

@@ -50,7 +50,8 @@ picket_status pk_channel_waves(pk_channel *channel, double k0, double complex gu
 double pk_channel_overlap(const pk_channel *channel, const double complex *a,
                           const double complex *b);
 
-/* max(|T r|, |Tᵀ l|) over the norms of k0² M r and k0² Mᵀ l; NaN when memory is out. */
+/* max(|T r|, |Tᵀ l|) over the norms of k0² M r and k0² Mᵀ l; NaN when memory is
+ * out. */
 double pk_channel_residual(const pk_channel *channel, const pk_channel_mode *mode);
 
 #endif
