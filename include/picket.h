@@ -17,5 +17,6 @@
 #include <picket/slab.h>
 #include <picket/status.h>
 #include <picket/summary.h>
+#include <picket/sweep.h>
 
 #endif

@@ -42,6 +42,8 @@ typedef struct picket_edges_answer {
   const picket_stop_band *bands; /* borrowed from the result */
   picket_operating_band operating;
   picket_edge_estimate estimate;
+  const char *note; /* why the answer could not be computed, in a sweep; null otherwise */
+  int failed;       /* 1 if it could not: there are no bands then */
 } picket_edges_answer;
 
 /* Finds the stop bands of the problem's cell, for each polarization of its `light` (both without

@@ -54,7 +54,8 @@ typedef struct picket_modes_point {
   double wavelength_um;
   int mode_count;
   const picket_section_mode *modes; /* by falling index; borrowed from the result */
-  const char *note;                 /* why there is no mode; null otherwise */
+  const char *note; /* why there is no mode, or why the point failed; null otherwise */
+  int failed;       /* 1 if the point could not be computed */
 } picket_modes_point;
 
 typedef struct picket_modes_answer {
@@ -72,13 +73,24 @@ typedef struct picket_modes_answer {
  * substrate) has a higher index than the guide's modes, the modes of the guide without that side
  * are followed into it: they leak, and loss_db_per_cm says how much.
  *
+ * A wavelength that cannot be computed is marked with the reason and does not stop the rest; if all
+ * fail for the same reason, that is the failure of the call. What picket_index_find says on
+ * `options->jobs` and PICKET_ERROR_STOPPED holds here too.
+ *
  * PICKET_ERROR_INPUT without section or wavelengths, PICKET_ERROR_RANGE outside a material's range,
  * PICKET_ERROR_NUMERIC, PICKET_ERROR_MEMORY, PICKET_ERROR_STOPPED. Cost per wavelength: three grids
  * for each family of modes (four families for two mirror planes), on each one factorisation. */
 PICKET_EXPORT picket_status picket_modes_find(picket_problem *problem,
                                               const picket_options *options, picket_result **out);
 
-/* 1 for a result of picket_modes_find; 0 for another kind of result. */
+/* The same with a journal of finished wavelengths, as picket_index_find_resumable. */
+PICKET_EXPORT picket_status picket_modes_find_resumable(picket_problem *problem,
+                                                        const picket_options *options,
+                                                        const char *journal_path,
+                                                        picket_result **out);
+
+/* 1 for a result of picket_modes_find, one for each value of a sweep; 0 for another kind of result.
+ */
 PICKET_EXPORT int picket_modes_count(const picket_result *result);
 
 /* PICKET_ERROR_ARGUMENT if i or the kind of result is wrong; `out` is then untouched. */

@@ -29,6 +29,8 @@ typedef struct picket_slab_answer {
   picket_slab_polarization polarization;
   int point_count;
   const picket_slab_point *points; /* borrowed */
+  const char *note; /* why the answer could not be computed, in a sweep; null otherwise */
+  int failed;       /* 1 if it could not: there are no points then */
 } picket_slab_answer;
 
 /* All guided modes of the problem's `slab` at each wavelength of its `light`, for the polarization

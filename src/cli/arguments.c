@@ -14,6 +14,7 @@ typedef enum option_kind {
   OPTION_RESUME,
   OPTION_FIELDS,
   OPTION_SET,
+  OPTION_SWEEP,
   OPTION_QUIET,
   OPTION_VERBOSE,
   OPTION_HELP,
@@ -29,11 +30,17 @@ typedef struct option {
 } option;
 
 static const option OPTIONS[] = {
-    {"json", OPTION_JSON, NULL},      {"csv", OPTION_CSV, "a file name"},
-    {"set", OPTION_SET, "KEY=VALUE"}, {"resume", OPTION_RESUME, "a file name"},
-    {"quiet", OPTION_QUIET, NULL},    {"verbose", OPTION_VERBOSE, NULL},
-    {"help", OPTION_HELP, NULL},      {"version", OPTION_VERSION, NULL},
-    {"figure", OPTION_LATER, NULL},   {"fields", OPTION_FIELDS, "a file name"},
+    {"json", OPTION_JSON, NULL},
+    {"csv", OPTION_CSV, "a file name"},
+    {"set", OPTION_SET, "KEY=VALUE"},
+    {"resume", OPTION_RESUME, "a file name"},
+    {"quiet", OPTION_QUIET, NULL},
+    {"verbose", OPTION_VERBOSE, NULL},
+    {"help", OPTION_HELP, NULL},
+    {"version", OPTION_VERSION, NULL},
+    {"figure", OPTION_LATER, NULL},
+    {"fields", OPTION_FIELDS, "a file name"},
+    {"sweep", OPTION_SWEEP, "PATH=FROM:TO:COUNT"},
 };
 enum { OPTION_COUNT = sizeof OPTIONS / sizeof OPTIONS[0], NAME_LENGTH = 40 };
 
@@ -114,6 +121,7 @@ static int apply(pk_arguments *a, const option *o, const char *value) {
     case OPTION_HELP: a->help = true; break;
     case OPTION_VERSION: a->version = true; break;
     case OPTION_SET: return add_set(a, value);
+    case OPTION_SWEEP: return pk_sweep_parse(&a->sweep, value);
     case OPTION_NUMBER: return set_number(a, o->name, value);
     case OPTION_LATER:
       return pk_complain(PK_EXIT_WRONG, "--%s is not in this version (%s)", o->name,
@@ -185,6 +193,35 @@ static bool is_same_file(const char *a, const char *b) {
          first.st_ino == second.st_ino;
 }
 
+/* Options that not every command has. */
+static int check_extras(const pk_arguments *a) {
+  const char *name = a->command->name;
+  picket_question question;
+  bool index = a->command->find == picket_index_find, modes = a->command->find == picket_modes_find;
+  if (a->sweep.path && !pk_sweep_question(a->command, &question)) {
+    return pk_complain(PK_EXIT_WRONG,
+                       "--sweep is for picket edges, index, modes and slab; picket %s has none",
+                       name);
+  }
+  if (a->resume && !index && !modes && !a->sweep.path) {
+    return pk_complain(
+        PK_EXIT_WRONG,
+        "--resume is for picket index, picket modes and for --sweep; picket %s keeps "
+        "no journal",
+        name);
+  }
+  if (a->fields && !index && !modes) {
+    return pk_complain(
+        PK_EXIT_WRONG,
+        "--fields is for picket index and picket modes; picket %s has no mode fields", name);
+  }
+  if (a->fields && a->sweep.path) {
+    return pk_complain(PK_EXIT_WRONG,
+                       "--fields and --sweep cannot be given together; set one value with --set");
+  }
+  return PK_EXIT_DONE;
+}
+
 static int check_whole(const pk_arguments *a) {
   if (a->help || a->version) {
     return PK_EXIT_DONE;
@@ -196,13 +233,9 @@ static int check_whole(const pk_arguments *a) {
     return pk_complain(PK_EXIT_WRONG, "picket %s needs a problem file, or - for standard input",
                        a->command->name);
   }
-  if (a->resume && a->command->find != picket_index_find) {
-    return pk_complain(PK_EXIT_WRONG, "--resume is for picket index; picket %s keeps no journal",
-                       a->command->name);
-  }
-  if (a->fields && a->command->find != picket_index_find) {
-    return pk_complain(PK_EXIT_WRONG, "--fields is for picket index; picket %s has no mode fields",
-                       a->command->name);
+  int status = check_extras(a);
+  if (status != PK_EXIT_DONE) {
+    return status;
   }
   if (is_same_file(a->file, a->csv) || is_same_file(a->file, a->fields)) {
     return pk_complain(PK_EXIT_WRONG, "%s is the problem file; name another file for the answer",
@@ -240,6 +273,7 @@ int pk_arguments_parse(int argc, char **argv, pk_arguments *out) {
 }
 
 void pk_arguments_free(pk_arguments *arguments) {
+  pk_sweep_free(&arguments->sweep);
   free(arguments->sets);
   arguments->sets = NULL;
 }

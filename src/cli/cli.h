@@ -23,6 +23,13 @@ enum {
 
 typedef struct pk_command pk_command;
 
+/* What --sweep says. */
+typedef struct pk_sweep_words {
+  char *path; /* null: it was not given; owned */
+  int count;
+  double *values; /* [count], owned */
+} pk_sweep_words;
+
 typedef struct pk_arguments {
   const pk_command *command; /* null with --version and --help alone */
   const char *file;          /* null until given; "-" is standard input */
@@ -30,6 +37,7 @@ typedef struct pk_arguments {
   const char *csv;    /* or null */
   const char *resume; /* a journal, or null */
   const char *fields; /* an HDF5 file of mode fields, or null */
+  pk_sweep_words sweep;
   picket_options options;
   int set_count;
   const char **sets; /* [set_count] KEY=VALUE, borrowed from argv; the array is owned */
@@ -62,6 +70,17 @@ void pk_check_print(const pk_arguments *arguments, const picket_result *result);
 /* PK_EXIT_DONE, or the exit status after saying what is wrong. */
 int pk_arguments_parse(int argc, char **argv, pk_arguments *out);
 void pk_arguments_free(pk_arguments *arguments);
+
+/* ---- sweep_option.c ---- */
+
+/* The value of --sweep; an exit status, complains. */
+int pk_sweep_parse(pk_sweep_words *sweep, const char *text);
+void pk_sweep_free(pk_sweep_words *sweep);
+/* The question of a command; false if it has no sweep. */
+bool pk_sweep_question(const pk_command *command, picket_question *out);
+/* The sweep of the arguments, with their journal. */
+picket_status pk_sweep_ask(const pk_arguments *arguments, picket_problem *problem,
+                           picket_result **out);
 
 /* ---- help.c ---- */
 

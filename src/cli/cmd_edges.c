@@ -32,6 +32,13 @@ static void print_operating(const picket_operating_band *band, const char *word,
          band->clearance_um.value < 0 ? " (negative: it reaches into or past the stop band)" : "");
 }
 
+static const char *confined_word(const picket_stop_band *band) {
+  return band->short_confined && band->long_confined ? "both"
+         : band->long_confined                       ? "long only"
+         : band->short_confined                      ? "short only"
+                                                     : "neither";
+}
+
 static void print_stop_bands(const picket_edges_answer *answer, pk_notes *notes) {
   pk_text_table t = {.columns = 5};
   pk_table_cell(&t, "order");
@@ -45,11 +52,7 @@ static void print_stop_bands(const picket_edges_answer *answer, pk_notes *notes)
     pk_table_quantity(&t, notes, band->short_um, NM_PER_UM);
     pk_table_quantity(&t, notes, band->long_um, NM_PER_UM);
     pk_table_quantity(&t, notes, band->attenuation_db_per_pitch, 1);
-    pk_table_cell(&t, "%s",
-                  band->short_confined && band->long_confined ? "both"
-                  : band->long_confined                       ? "long only"
-                  : band->short_confined                      ? "short only"
-                                                              : "neither");
+    pk_table_cell(&t, "%s", confined_word(band));
   }
   pk_table_print(&t);
 }
@@ -71,16 +74,80 @@ static void print_estimate(const picket_edge_estimate *estimate, pk_notes *notes
   printf("\n");
 }
 
+/* --- A sweep: one table for each polarization ----------------------------------------------------
+ */
+
+static void print_sweep_row(pk_text_table *t, pk_notes *notes, const picket_edges_answer *answer,
+                            const picket_stop_band *band) {
+  pk_table_cell(t, "%d", band->order);
+  pk_table_quantity(t, notes, band->short_um, NM_PER_UM);
+  pk_table_quantity(t, notes, band->long_um, NM_PER_UM);
+  pk_table_quantity(t, notes, band->attenuation_db_per_pitch, 1);
+  if (answer->operating.given) {
+    pk_table_quantity(t, notes, answer->operating.clearance_um, NM_PER_UM);
+  } else {
+    pk_table_cell(t, "none");
+  }
+  pk_table_cell(t, "%s", confined_word(band));
+}
+
+static void print_sweep_table(const picket_result *result, picket_polarization polarization,
+                              pk_notes *notes) {
+  pk_text_table t = {.columns = 6 + pk_sweep_columns(result)};
+  picket_edges_answer answer;
+  pk_table_sweep(&t, result, -1);
+  pk_table_cell(&t, "order");
+  pk_table_cell(&t, "short edge, nm");
+  pk_table_cell(&t, "long edge, nm");
+  pk_table_cell(&t, "attenuation, dB/pitch");
+  pk_table_cell(&t, "clearance, nm");
+  pk_table_cell(&t, "edges confined");
+  for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
+    for (int b = 0; answer.polarization == polarization && b < answer.band_count; b++) {
+      pk_table_sweep(&t, result, i);
+      print_sweep_row(&t, notes, &answer, &answer.bands[b]);
+    }
+  }
+  pk_table_print(&t);
+}
+
+static void print_sweep(const picket_result *result, pk_notes *notes) {
+  picket_edges_answer answer;
+  for (int p = PICKET_EY; p <= PICKET_HY; p++) {
+    int count = 0;
+    for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
+      count += (int)answer.polarization == p;
+    }
+    if (count == 0) {
+      continue;
+    }
+    printf("%s: stop bands\n", p == PICKET_EY ? "ey" : "hy");
+    print_sweep_table(result, (picket_polarization)p, notes);
+    for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
+      if ((int)answer.polarization == p && answer.failed) {
+        printf("  FAILED%s: %s\n", pk_sweep_where(result, i).text, answer.note);
+      }
+    }
+    printf("\n");
+  }
+}
+
+static void print_answers(const picket_result *result, pk_notes *notes) {
+  picket_edges_answer answer;
+  for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
+    print_operating(&answer.operating, answer.polarization == PICKET_EY ? "ey" : "hy", notes);
+    print_stop_bands(&answer, notes);
+    print_estimate(&answer.estimate, notes);
+    printf("\n");
+  }
+}
+
 void pk_edges_print(const pk_arguments *arguments, const picket_result *result) {
   pk_notes seen = {0};
-  for (int i = 0; i < picket_edges_count(result); i++) {
-    picket_edges_answer answer;
-    if (picket_edges_get(result, i, &answer) == PICKET_OK) {
-      print_operating(&answer.operating, answer.polarization == PICKET_EY ? "ey" : "hy", &seen);
-      print_stop_bands(&answer, &seen);
-      print_estimate(&answer.estimate, &seen);
-      printf("\n");
-    }
+  if (picket_sweep_path(result)) {
+    print_sweep(result, &seen);
+  } else {
+    print_answers(result, &seen);
   }
   pk_notes_print(&seen);
   pk_cautions_print(arguments);

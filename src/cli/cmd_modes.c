@@ -6,11 +6,14 @@
 
 static const double NM_PER_UM = 1000;
 
-static bool lossy(const picket_modes_answer *answer) {
-  for (int p = 0; p < answer->point_count; p++) {
-    for (int m = 0; m < answer->points[p].mode_count; m++) {
-      if (answer->points[p].modes[m].loss_db_per_cm.value != 0) {
-        return true;
+static bool lossy(const picket_result *result) {
+  picket_modes_answer answer;
+  for (int i = 0; picket_modes_get(result, i, &answer) == PICKET_OK; i++) {
+    for (int p = 0; p < answer.point_count; p++) {
+      for (int m = 0; m < answer.points[p].mode_count; m++) {
+        if (answer.points[p].modes[m].loss_db_per_cm.value != 0) {
+          return true;
+        }
       }
     }
   }
@@ -32,9 +35,11 @@ static void print_mode(pk_text_table *t, pk_notes *notes, const picket_modes_poi
   pk_table_quantity(t, notes, mode->effective_area_um2, 1);
 }
 
-static void print_table(const picket_modes_answer *answer, pk_notes *notes) {
-  bool loss = lossy(answer);
-  pk_text_table t = {.columns = loss ? 8 : 7};
+static void print_table(const picket_result *result, pk_notes *notes) {
+  bool loss = lossy(result);
+  pk_text_table t = {.columns = (loss ? 8 : 7) + pk_sweep_columns(result)};
+  picket_modes_answer answer;
+  pk_table_sweep(&t, result, -1);
   pk_table_cell(&t, "wavelength, nm");
   pk_table_cell(&t, "order");
   pk_table_cell(&t, "kind, nodes x y");
@@ -45,19 +50,35 @@ static void print_table(const picket_modes_answer *answer, pk_notes *notes) {
   }
   pk_table_cell(&t, "Ex share");
   pk_table_cell(&t, "effective area, um2");
-  for (int p = 0; p < answer->point_count; p++) {
-    for (int m = 0; m < answer->points[p].mode_count; m++) {
-      print_mode(&t, notes, &answer->points[p], &answer->points[p].modes[m], loss);
+  for (int i = 0; picket_modes_get(result, i, &answer) == PICKET_OK; i++) {
+    for (int p = 0; p < answer.point_count; p++) {
+      for (int m = 0; m < answer.points[p].mode_count; m++) {
+        pk_table_sweep(&t, result, i);
+        print_mode(&t, notes, &answer.points[p], &answer.points[p].modes[m], loss);
+      }
     }
   }
   pk_table_print(&t);
 }
 
-/* Where the energy of the modes at the first wavelength is. */
-static void print_confinement(const picket_modes_point *point) {
+static void print_without(const picket_result *result) {
+  picket_modes_answer answer;
+  for (int i = 0; picket_modes_get(result, i, &answer) == PICKET_OK; i++) {
+    for (int p = 0; p < answer.point_count; p++) {
+      if (answer.points[p].note) {
+        printf("  %s at %.10g nm%s: %s\n", answer.points[p].failed ? "FAILED" : "nothing",
+               NM_PER_UM * answer.points[p].wavelength_um, pk_sweep_where(result, i).text,
+               answer.points[p].note);
+      }
+    }
+  }
+}
+
+/* Where the energy of the modes of a point is. */
+static void print_confinement(const picket_modes_point *point, const char *where) {
   for (int m = 0; m < point->mode_count; m++) {
-    printf("  mode %d at %.10g nm: energy", point->modes[m].order,
-           NM_PER_UM * point->wavelength_um);
+    printf("  mode %d at %.10g nm%s: energy", point->modes[m].order,
+           NM_PER_UM * point->wavelength_um, where);
     for (int i = 0; i < point->modes[m].material_count; i++) {
       const picket_confinement *part = &point->modes[m].confinement[i];
       printf("%s %.2f %% in %s", i == 0 ? "" : ",", 100 * part->share, part->material);
@@ -109,18 +130,10 @@ void pk_modes_print(const pk_arguments *arguments, const picket_result *result) 
   (void)arguments;
   pk_notes seen = {0};
   picket_modes_answer answer;
-  if (picket_modes_get(result, 0, &answer) != PICKET_OK) {
-    return;
-  }
-  print_table(&answer, &seen);
-  for (int p = 0; p < answer.point_count; p++) {
-    if (answer.points[p].note) {
-      printf("  nothing at %.10g nm: %s\n", NM_PER_UM * answer.points[p].wavelength_um,
-             answer.points[p].note);
-    }
-  }
-  if (answer.point_count > 0) {
-    print_confinement(&answer.points[0]);
+  print_table(result, &seen);
+  print_without(result);
+  if (picket_modes_get(result, 0, &answer) == PICKET_OK && answer.point_count > 0) {
+    print_confinement(&answer.points[0], pk_sweep_where(result, 0).text);
     printf("\n");
     print_diameters(&answer.points[0], &seen);
   }

@@ -5,7 +5,7 @@
 
 static const double NM_PER_UM = 1000;
 
-static void print_count(const picket_slab_answer *answer, const char *word) {
+static void print_count(const picket_slab_answer *answer, const char *word, const char *where) {
   int least = answer->point_count > 0 ? answer->points[0].mode_count : 0;
   int most = least;
   for (int p = 0; p < answer->point_count; p++) {
@@ -14,11 +14,11 @@ static void print_count(const picket_slab_answer *answer, const char *word) {
     most = count > most ? count : most;
   }
   if (most == 0) {
-    printf("%s: no guided mode\n", word);
+    printf("%s%s: no guided mode\n", word, where);
   } else if (least == most) {
-    printf("%s: %d guided mode%s\n", word, most, most == 1 ? "" : "s");
+    printf("%s%s: %d guided mode%s\n", word, where, most, most == 1 ? "" : "s");
   } else {
-    printf("%s: %d to %d guided modes\n", word, least, most);
+    printf("%s%s: %d to %d guided modes\n", word, where, least, most);
   }
 }
 
@@ -46,8 +46,14 @@ void pk_slab_print(const pk_arguments *arguments, const picket_result *result) {
   for (int i = 0; i < picket_slab_count(result); i++) {
     picket_slab_answer answer;
     if (picket_slab_get(result, i, &answer) == PICKET_OK) {
-      print_count(&answer, answer.polarization == PICKET_TE ? "te" : "tm");
-      print_modes(&answer, &seen);
+      const char *word = answer.polarization == PICKET_TE ? "te" : "tm";
+      pk_sweep_text where = pk_sweep_where(result, i);
+      if (answer.failed) {
+        printf("%s FAILED%s: %s\n", word, where.text, answer.note);
+      } else {
+        print_count(&answer, word, where.text);
+        print_modes(&answer, &seen);
+      }
       printf("\n");
     }
   }

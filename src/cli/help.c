@@ -15,8 +15,13 @@ static void print_options(void) {
       "  --set KEY=VALUE  override one value of the file, e.g. cell.pitch_nm=310; may be repeated\n"
       "  --json           one JSON document on standard output, nothing else\n"
       "  --csv FILE       the table of the result, comma-separated\n"
-      "  --resume FILE    index: keep finished points in FILE, and take up what is in it\n"
-      "  --fields FILE    index: the fields of the modes, as an HDF5 file\n"
+      "  --sweep PATH=FROM:TO:COUNT or PATH=A,B,...  edges, index, modes, slab: ask for each of "
+      "these\n"
+      "                   values of one number of the file, e.g. "
+      "section.shapes.0.width_nm=300:600:13\n"
+      "  --resume FILE    index, modes, --sweep: keep finished points in FILE, take up what is in "
+      "it\n"
+      "  --fields FILE    index, modes: the fields of the modes, as an HDF5 file\n"
       "  --quiet          the answer only\n"
       "  --verbose        grids and solver settings on standard error\n"
       "  --version        which version this is\n"
@@ -27,7 +32,7 @@ static void print_status(void) {
   printf(
       "Exit status: 0 done; 1 the numbers could not be obtained to the accuracy asked (what there\n"
       "is, is printed and marked); 2 the command line or the file is wrong; 3 the machine failed\n"
-      "(memory, or a file or pipe that cannot be written); 130 interrupted (what index\nfinished "
+      "(memory, or a file or pipe that cannot be written); 130 interrupted (what a sweep\nfinished "
       "is printed).\n");
 }
 

@@ -77,8 +77,15 @@ static int deliver(const pk_arguments *a, picket_context *context, picket_result
 }
 
 static picket_status ask(const pk_arguments *a, picket_problem *problem, picket_result **out) {
-  return a->resume ? picket_index_find_resumable(problem, &a->options, a->resume, out)
-                   : a->command->find(problem, &a->options, out);
+  if (a->sweep.path) {
+    return pk_sweep_ask(a, problem, out);
+  }
+  if (!a->resume) {
+    return a->command->find(problem, &a->options, out);
+  }
+  return a->command->find == picket_modes_find
+             ? picket_modes_find_resumable(problem, &a->options, a->resume, out)
+             : picket_index_find_resumable(problem, &a->options, a->resume, out);
 }
 
 /* The question and its answer. A failure may leave a part of the answer, which is delivered too. */

@@ -97,6 +97,30 @@ void pk_table_quantity(pk_text_table *table, pk_notes *notes, picket_quantity qu
   pk_table_cell(table, "%s", pk_quantity_show(quantity, scale).text);
 }
 
+int pk_sweep_columns(const picket_result *result) {
+  return picket_sweep_path(result) != NULL;
+}
+
+void pk_table_sweep(pk_text_table *table, const picket_result *result, int answer) {
+  const char *path = picket_sweep_path(result);
+  double value = 0;
+  if (path && answer < 0) {
+    pk_table_cell(table, "%s", path);
+  } else if (path && picket_sweep_value(result, answer, &value) == PICKET_OK) {
+    pk_table_cell(table, "%.10g", value);
+  }
+}
+
+pk_sweep_text pk_sweep_where(const picket_result *result, int answer) {
+  pk_sweep_text where = {""};
+  double value = 0;
+  if (picket_sweep_value(result, answer, &value) == PICKET_OK) {
+    snprintf(where.text, sizeof where.text, " with %.70s = %.10g", picket_sweep_path(result),
+             value);
+  }
+  return where;
+}
+
 static int characters(const char *text) {
   int count = 0;
   for (; *text; text++) {

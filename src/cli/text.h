@@ -33,6 +33,15 @@ void pk_table_cell(pk_text_table *table, const char *format, ...)
     __attribute__((format(printf, 2, 3)));
 void pk_table_quantity(pk_text_table *table, pk_notes *notes, picket_quantity quantity,
                        double scale);
+/* In a sweep the first cell of a row: the path in the head (answer < 0), the value of an answer
+ * below; nothing else. The column counts among the table's: pk_sweep_columns. */
+void pk_table_sweep(pk_text_table *table, const picket_result *result, int answer);
+int pk_sweep_columns(const picket_result *result); /* 1 in a sweep, else 0 */
+/* " with cell.pitch_nm = 310" for lines outside tables; "" outside a sweep. */
+typedef struct pk_sweep_text {
+  char text[PK_QUANTITY_TEXT];
+} pk_sweep_text;
+pk_sweep_text pk_sweep_where(const picket_result *result, int answer);
 /* Prints it, nothing if there is only a head, and frees it. */
 void pk_table_print(pk_text_table *table);
 

@@ -16,7 +16,9 @@ typedef struct sheet {
   char *text;
   size_t used, capacity;
   picket_status status;
-  bool fresh; /* at the start of a row */
+  bool fresh;                  /* at the start of a row */
+  const picket_result *result; /* of a sweep; else null: rows then begin with the swept value */
+  int answer;                  /* whose rows these are; -1 for the header */
 } sheet;
 
 static void append(sheet *s, const char *bytes, size_t count) {
@@ -37,6 +39,8 @@ static void append(sheet *s, const char *bytes, size_t count) {
   }
 }
 
+static void put_lead(sheet *s);
+
 /* One field; null is an empty one. Quotes go around a text with a comma, a quote or a line break,
  * or with a space at an end, and are doubled inside. */
 static void put_text(sheet *s, const char *text) {
@@ -44,6 +48,7 @@ static void put_text(sheet *s, const char *text) {
   size_t length = strlen(text);
   bool quoted = strpbrk(text, ",\"\r\n") != NULL || (length > 0 && text[0] == ' ') ||
                 (length > 0 && text[length - 1] == ' ');
+  put_lead(s);
   append(s, ",", s->fresh ? 0 : 1);
   s->fresh = false;
   append(s, "\"", quoted);
@@ -60,6 +65,20 @@ static void put_number(sheet *s, double value) {
     pk_number_write(value, digits);
   }
   put_text(s, digits);
+}
+
+/* The first column of a sweep. */
+static void put_lead(sheet *s) {
+  const picket_result *sweep = s->result;
+  if (s->fresh && sweep) {
+    s->result = NULL; /* the field itself has none */
+    if (s->answer < 0) {
+      put_text(s, sweep->sweep_path);
+    } else {
+      put_number(s, sweep->sweep_value[s->answer]);
+    }
+    s->result = sweep;
+  }
 }
 
 static void put_quantity(sheet *s, picket_quantity q, double scale) {
@@ -80,6 +99,30 @@ static void put_header(sheet *s, const char *const *names) {
   for (int i = 0; names[i]; i++) {
     put_text(s, names[i]);
   }
+}
+
+/* Whether an answer of a sweep failed, and why; nothing outside a sweep. */
+static void put_failure(sheet *s, bool failed, const char *note) {
+  if (s->result) {
+    put_flag(s, failed);
+    put_text(s, note);
+  }
+}
+
+static void put_failure_header(sheet *s) {
+  if (s->result) {
+    put_text(s, "failed");
+    put_text(s, "note");
+  }
+}
+
+/* The rest of the row of a failed answer: so many empty fields, and the reason. */
+static void put_failed_row(sheet *s, int empty, const char *note) {
+  for (int i = 0; i < empty; i++) {
+    put_text(s, NULL);
+  }
+  put_failure(s, true, note);
+  end_row(s);
 }
 
 static void put_operating(sheet *s, const picket_operating_band *band) {
@@ -111,9 +154,15 @@ static void write_edges(sheet *s, const picket_result *result) {
                                        "estimate_error_uncertainty_nm",
                                        NULL};
   put_header(s, header);
+  put_failure_header(s);
   end_row(s);
   for (int i = 0; i < result->count; i++) {
     const picket_edges_answer *answer = &result->edges[i];
+    s->answer = i;
+    if (answer->failed) {
+      put_text(s, pk_word_polarization(answer->polarization));
+      put_failed_row(s, (int)(sizeof header / sizeof header[0]) - 2, answer->note);
+    }
     for (int b = 0; b < answer->band_count; b++) {
       const picket_stop_band *band = &answer->bands[b];
       put_text(s, pk_word_polarization(answer->polarization));
@@ -126,6 +175,7 @@ static void write_edges(sheet *s, const picket_result *result) {
       put_operating(s, &answer->operating);
       put_number(s, PK_NM_OF_UM * answer->estimate.centre_um);
       put_quantity(s, answer->estimate.error_um, PK_NM_OF_UM);
+      put_failure(s, false, NULL);
       end_row(s);
     }
   }
@@ -176,6 +226,7 @@ static void write_slab_point(sheet *s, const picket_slab_answer *answer,
     put_number(s, point->modes[m].order);
     put_quantity(s, point->modes[m].index, 1);
     put_quantity(s, point->modes[m].group_index, 1);
+    put_failure(s, false, NULL);
     end_row(s);
   }
 }
@@ -223,8 +274,14 @@ static void write_slab(sheet *s, const picket_result *result) {
       "polarization", "wavelength_nm",           "order", "index", "index_uncertainty",
       "group_index",  "group_index_uncertainty", NULL};
   put_header(s, header);
+  put_failure_header(s);
   end_row(s);
   for (int i = 0; i < result->count; i++) {
+    s->answer = i;
+    if (result->slab[i].failed) {
+      put_text(s, pk_word_slab_polarization(result->slab[i].polarization));
+      put_failed_row(s, (int)(sizeof header / sizeof header[0]) - 2, result->slab[i].note);
+    }
     for (int p = 0; p < result->slab[i].point_count; p++) {
       write_slab_point(s, &result->slab[i], &result->slab[i].points[p]);
     }
@@ -251,8 +308,21 @@ static void write_modes_point(sheet *s, const picket_modes_point *point) {
     put_number(s, mode->nodes_x);
     put_number(s, mode->nodes_y);
     put_diameters(s, &mode->diameters);
+    put_flag(s, false);
+    put_text(s, point->note);
     end_row(s);
   }
+}
+
+/* A point without modes; `between` columns of modes stay empty. */
+static void write_no_modes(sheet *s, const picket_modes_point *point, int between) {
+  put_number(s, PK_NM_OF_UM * point->wavelength_um);
+  for (int i = 0; i < between; i++) {
+    put_text(s, NULL);
+  }
+  put_flag(s, point->failed);
+  put_text(s, point->note);
+  end_row(s);
 }
 
 static void write_modes(sheet *s, const picket_result *result) {
@@ -270,11 +340,21 @@ static void write_modes(sheet *s, const picket_result *result) {
                                        "nodes_x",
                                        "nodes_y",
                                        PK_CSV_DIAMETERS,
+                                       "failed",
+                                       "note",
                                        NULL};
+  enum { COLUMNS = sizeof header / sizeof header[0] - 1 };
   put_header(s, header);
   end_row(s);
-  for (int p = 0; p < result->modes->point_count; p++) {
-    write_modes_point(s, &result->modes->points[p]);
+  for (int i = 0; i < result->count; i++) {
+    s->answer = i;
+    for (int p = 0; p < result->modes[i].point_count; p++) {
+      const picket_modes_point *point = &result->modes[i].points[p];
+      write_modes_point(s, point);
+      if (point->mode_count == 0) {
+        write_no_modes(s, point, COLUMNS - 3); /* wavelength, failed, note */
+      }
+    }
   }
 }
 
@@ -340,6 +420,7 @@ static void write_index(sheet *s, const picket_result *result) {
   put_index_header(s);
   for (int i = 0; i < result->count; i++) {
     const picket_index_answer *answer = &result->index[i];
+    s->answer = i;
     for (int p = 0; p < answer->point_count; p++) {
       const picket_index_point *point = &answer->points[p];
       for (int m = 0; m < point->mode_count; m++) {
@@ -377,7 +458,8 @@ picket_status pk_csv_write(const picket_result *result, char **out) {
       [PK_RESULT_EDGE_DERIVATIVES] = write_edge_derivatives,
       [PK_RESULT_INDEX_DERIVATIVES] = write_index_derivatives,
   };
-  sheet s = {.context = result->context, .status = PICKET_OK, .fresh = true};
+  sheet s = {.context = result->context, .status = PICKET_OK, .fresh = true, .answer = -1};
+  s.result = result->sweep_path ? result : NULL;
   writers[result->kind](&s, result);
   if (s.status != PICKET_OK) {
     pk_free(result->context, s.text);

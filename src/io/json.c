@@ -63,6 +63,11 @@ static json_t *array(int count, json_t *(*make)(const void *user, int i), const 
   return finish(list, good);
 }
 
+/* What a piece of a sweep that failed has more. */
+static bool failure(json_t *object, int failed, const char *note) {
+  return !failed || (put(object, "note", text(note)) && put(object, "failed", json_true()));
+}
+
 /* ---- edges ---- */
 
 static json_t *stop_band(const void *user, int i) {
@@ -105,7 +110,8 @@ static json_t *edges_answer(const void *user, int i) {
   bool good = put(object, "polarization", text(pk_word_polarization(answer->polarization))) &&
               put(object, "stop_bands", array(answer->band_count, stop_band, answer->bands)) &&
               put(object, "operating", operating(&answer->operating)) &&
-              put(object, "estimate", estimate(&answer->estimate));
+              put(object, "estimate", estimate(&answer->estimate)) &&
+              failure(object, answer->failed, answer->note);
   return finish(object, good);
 }
 
@@ -167,7 +173,8 @@ static json_t *slab_answer(const void *user, int i) {
   const picket_slab_answer *answer = ((const picket_result *)user)->slab + i;
   json_t *object = json_object();
   bool good = put(object, "polarization", text(pk_word_slab_polarization(answer->polarization))) &&
-              put(object, "points", array(answer->point_count, slab_point, answer->points));
+              put(object, "points", array(answer->point_count, slab_point, answer->points)) &&
+              failure(object, answer->failed, answer->note);
   return finish(object, good);
 }
 
@@ -222,7 +229,8 @@ static json_t *modes_point(const void *user, int i) {
   json_t *object = json_object();
   bool good = put(object, "wavelength_nm", number(PK_NM_OF_UM * point->wavelength_um)) &&
               put(object, "modes", array(point->mode_count, section_mode, point->modes)) &&
-              (!point->note || put(object, "note", text(point->note)));
+              (!point->note || put(object, "note", text(point->note))) &&
+              (!point->failed || put(object, "failed", json_true()));
   return finish(object, good);
 }
 
@@ -347,6 +355,20 @@ static const writer WRITER[] = {
     [PK_RESULT_INDEX_DERIVATIVES] = {"index derivatives", index_derivatives},
 };
 
+/* An answer, and in a sweep the value it belongs to. */
+static json_t *answer_of(const void *user, int i) {
+  const picket_result *result = user;
+  json_t *object = WRITER[result->kind].element(result, i);
+  if (!object || !result->sweep_path) {
+    return object;
+  }
+  json_t *sweep = json_object();
+  bool good = put(sweep, "path", text(result->sweep_path)) &&
+              put(sweep, "value", number(result->sweep_value[i]));
+  sweep = finish(sweep, good);
+  return finish(object, put(object, "sweep", sweep));
+}
+
 static json_t *document(const picket_result *result) {
   const writer *w = &WRITER[result->kind];
   json_t *object = json_object();
@@ -355,7 +377,7 @@ static json_t *document(const picket_result *result) {
               put(object, "accuracy", number(result->accuracy)) &&
               put(object, "complete", json_boolean(result->complete)) &&
               put(object, "shortfall", text(result->shortfall)) &&
-              put(object, "results", array(result->count, w->element, result));
+              put(object, "results", array(result->count, answer_of, result));
   return finish(object, good);
 }
 

@@ -5,6 +5,7 @@
 #include "base/memory.h"
 #include "study/converge.h"
 #include "study/edge_family.h"
+#include "study/edges.h"
 #include "study/estimate.h"
 #include "study/study.h"
 
@@ -189,9 +190,9 @@ static picket_status check_found(const pk_edge_family *s, picket_result *result)
   return PICKET_OK;
 }
 
-static picket_status one_polarization(const pk_problem *problem, pk_polarization polarization,
-                                      const picket_options *options, picket_edges_answer *answer,
-                                      picket_result *result) {
+picket_status pk_edges_of(const pk_problem *problem, pk_polarization polarization,
+                          const picket_options *options, picket_edges_answer *answer,
+                          picket_result *result) {
   pk_edge_family family;
   picket_status status = pk_edge_family_open(problem, polarization, options, true, &family);
   if (status == PICKET_OK) {
@@ -216,7 +217,7 @@ picket_status pk_study_edges(const pk_problem *problem, const picket_options *op
   for (int p = 0; p < 2 && status == PICKET_OK; p++) {
     if (problem->light.wanted[p]) {
       picket_edges_answer *answer = &result->edges[result->count++];
-      status = one_polarization(problem, (pk_polarization)p, options, answer, result);
+      status = pk_edges_of(problem, (pk_polarization)p, options, answer, result);
     }
   }
   if (status != PICKET_OK) {

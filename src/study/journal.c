@@ -1,6 +1,6 @@
 /* See journal.h. Lines:
  *
- *   picket journal 1 <version> <key>
+ *   picket journal 2 <version> <key>
  *   <piece> <answer> #<checksum>
  *
  * The version is in it because another one may find other digits. A line counts when it is whole
@@ -196,7 +196,7 @@ picket_status pk_journal_open(picket_context *context, const char *path, uint64_
   }
   j->context = context;
   j->file = -1;
-  snprintf(j->header, sizeof j->header, "%s1 %s %016" PRIx64, SIGNATURE, picket_version(), key);
+  snprintf(j->header, sizeof j->header, "%s2 %s %016" PRIx64, SIGNATURE, picket_version(), key);
   j->path = pk_text_copy(context, path);
   picket_status status = j->path ? open_file(j) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {

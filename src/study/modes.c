@@ -1,6 +1,6 @@
-/* The modes of a section at the wavelengths of a problem.
+/* The modes of a section at a wavelength (modes_sweep.c: at those of a problem).
  *
- * At each wavelength: a first look on the base grid counts the guided modes of every family (even
+ * A first look on the base grid counts the guided modes of every family (even
  * or odd at the mirror planes) and says how far they reach; then each family is solved on exactly
  * proportional grids, extrapolated and given bars, until those are below the accuracy asked. */
 #include <math.h>
@@ -8,8 +8,8 @@
 #include <string.h>
 
 #include "base/memory.h"
+#include "study/modes.h"
 #include "study/section_family.h"
-#include "study/study.h"
 
 enum { MOST_MODES = 20, FAMILIES = 4 };
 
@@ -123,56 +123,19 @@ static picket_status fill_point(work *w, double wavelength_um, picket_modes_poin
   return status;
 }
 
-static picket_status fill(work *w) {
-  picket_context *context = w->problem->context;
-  const pk_light *light = &w->problem->light;
-  w->result->modes = PK_NEW(context, 1, picket_modes_answer);
-  picket_modes_point *points =
-      w->result->modes ? PK_NEW(context, light->count, picket_modes_point) : NULL;
-  if (!points) {
-    return PICKET_ERROR_MEMORY;
-  }
-  w->result->count = 1;
-  w->result->modes->points = points;
-  w->result->modes->point_count = light->count;
-  picket_status status = PICKET_OK;
-  for (int i = 0; status == PICKET_OK && i < light->count; i++) {
-    status = pk_progress(context, "modes of the section", (double)i / light->count);
-    if (status == PICKET_OK) {
-      status = fill_point(w, light->wavelength_um[i], &points[i]);
-    }
-  }
-  return status;
-}
-
-static picket_status check(const pk_problem *problem) {
-  if (!problem->section.given) {
-    return pk_fail(problem->context, PICKET_ERROR_INPUT,
-                   "the problem has no \"section\", which is what the modes are asked of");
-  }
-  if (problem->light.count == 0) {
-    return pk_fail_at(problem->context, PICKET_ERROR_INPUT, problem->section.place,
-                      "the modes of a section need \"light.wavelength_nm\", which is not given");
-  }
-  return PICKET_OK;
-}
-
-picket_status pk_study_modes(const pk_problem *problem, const picket_options *options,
-                             picket_result **out) {
-  work w = {.problem = problem, .options = options};
+picket_status pk_modes_point(const pk_problem *problem, double wavelength_um,
+                             const picket_options *options, picket_modes_point *point,
+                             picket_result *result) {
+  work w = {.problem = problem, .options = options, .result = result};
   w.most = options->count > 0 ? (int)options->count : MOST_MODES;
-  picket_status status = check(problem);
-  if (status == PICKET_OK) {
-    status = pk_result_create(problem->context, PK_RESULT_MODES, problem->name, options->accuracy,
-                              &w.result);
+  return fill_point(&w, wavelength_um, point);
+}
+
+void pk_modes_point_clear(picket_context *context, picket_modes_point *point) {
+  for (int m = 0; m < point->mode_count; m++) {
+    pk_free(context, (void *)point->modes[m].confinement);
   }
-  if (status == PICKET_OK) {
-    status = fill(&w);
-  }
-  if (status != PICKET_OK) {
-    pk_result_free(w.result);
-    return status;
-  }
-  *out = w.result;
-  return PICKET_OK;
+  pk_free(context, (void *)point->modes);
+  point->modes = NULL;
+  point->mode_count = 0;
 }

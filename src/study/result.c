@@ -8,6 +8,8 @@
 
 #include "base/memory.h"
 #include "study/index.h"
+#include "study/modes.h"
+#include "study/slab_answer.h"
 
 enum { FIRST_TEXTS = 16 };
 
@@ -90,24 +92,20 @@ static void free_bands(picket_context *context, int count, picket_bands_answer *
 
 static void free_slab(picket_context *context, int count, picket_slab_answer *answers) {
   for (int i = 0; answers && i < count; i++) {
-    for (int p = 0; answers[i].points && p < answers[i].point_count; p++) {
-      pk_free(context, (void *)answers[i].points[p].modes);
-    }
-    pk_free(context, (void *)answers[i].points);
+    pk_slab_answer_clear(context, &answers[i]);
   }
   pk_free(context, answers);
 }
 
-static void free_modes(picket_context *context, picket_modes_answer *answer) {
-  picket_modes_point *points = answer ? (picket_modes_point *)answer->points : NULL;
-  for (int p = 0; points && p < answer->point_count; p++) {
-    for (int m = 0; m < points[p].mode_count; m++) {
-      pk_free(context, (void *)points[p].modes[m].confinement);
+static void free_modes(picket_context *context, int count, picket_modes_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    picket_modes_point *points = (picket_modes_point *)answers[i].points;
+    for (int p = 0; points && p < answers[i].point_count; p++) {
+      pk_modes_point_clear(context, &points[p]);
     }
-    pk_free(context, (void *)points[p].modes);
+    pk_free(context, points);
   }
-  pk_free(context, points);
-  pk_free(context, answer);
+  pk_free(context, answers);
 }
 
 static void free_index(picket_context *context, int count, picket_index_answer *answers) {
@@ -157,7 +155,7 @@ void pk_result_free(picket_result *result) {
   free_edges(context, result->count, result->edges);
   free_bands(context, result->count, result->bands);
   free_slab(context, result->count, result->slab);
-  free_modes(context, result->modes);
+  free_modes(context, result->count, result->modes);
   free_index(context, result->count, result->index);
   free_derivatives(result);
   free_summary(result);
@@ -166,6 +164,8 @@ void pk_result_free(picket_result *result) {
   }
   pk_free(context, result->texts);
   pk_free(context, result->name);
+  pk_free(context, result->sweep_path);
+  pk_free(context, result->sweep_value);
   pk_free(context, result->shortfall);
   pk_free(context, result->json);
   pk_free(context, result->csv);

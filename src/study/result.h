@@ -47,6 +47,8 @@ struct picket_result {
   picket_edge_derivatives *edge_derivatives;
   picket_index_derivatives *index_derivatives;
   pk_summary_item *summary;
+  char *sweep_path;    /* what was swept; null: nothing was */
+  double *sweep_value; /* [count] of the answers, or null */
   char *json, *csv; /* made when first asked for */
   char **lines;     /* of a summary, for people; [count], or null */
   char **texts;     /* notes that are not static, each once */

@@ -4,6 +4,7 @@
 #include <math.h>
 
 #include "base/memory.h"
+#include "study/slab_answer.h"
 #include "study/study.h"
 
 enum { FIRST_MODES = 16 }; /* more than a film of silicon below 3 µm guides; grows when needed */
@@ -98,7 +99,7 @@ static picket_status fill_answer(work *w, picket_slab_answer *answer) {
   return status;
 }
 
-static picket_status check(const pk_problem *problem) {
+picket_status pk_slab_check(const pk_problem *problem) {
   if (!problem->slab.given) {
     return pk_fail(problem->context, PICKET_ERROR_INPUT,
                    "the problem has no \"slab\", which is what the modes are asked of");
@@ -110,29 +111,47 @@ static picket_status check(const pk_problem *problem) {
   return PICKET_OK;
 }
 
-static picket_status fill(const pk_problem *problem, const picket_options *options,
-                          picket_result *result) {
+picket_status pk_slab_of(const pk_problem *problem, pk_slab_polarization polarization,
+                         const picket_options *options, picket_slab_answer *answer) {
   picket_context *context = problem->context;
-  work w = {.problem = problem, .most = (int)options->count, .capacity = FIRST_MODES};
-  result->slab = PK_NEW(context, 2, picket_slab_answer);
-  w.films = result->slab ? PK_NEW(context, problem->slab.recipe.film_count, pk_slab_film) : NULL;
+  work w = {.problem = problem,
+            .polarization = polarization,
+            .most = (int)options->count,
+            .capacity = FIRST_MODES};
+  w.films = PK_NEW(context, problem->slab.recipe.film_count, pk_slab_film);
   w.modes = w.films ? PK_NEW(context, w.capacity, pk_slab_mode) : NULL;
-  picket_status status = w.modes ? PICKET_OK : PICKET_ERROR_MEMORY;
-  for (int p = PK_SLAB_TE; status == PICKET_OK && p <= PK_SLAB_TM; p++) {
-    if (problem->slab.wanted[p]) {
-      w.polarization = (pk_slab_polarization)p;
-      status = fill_answer(&w, &result->slab[result->count++]);
-    }
-  }
+  picket_status status = w.modes ? fill_answer(&w, answer) : PICKET_ERROR_MEMORY;
   pk_free(context, w.modes);
   pk_free(context, w.films);
+  return status;
+}
+
+void pk_slab_answer_clear(picket_context *context, picket_slab_answer *answer) {
+  for (int p = 0; p < answer->point_count; p++) {
+    pk_free(context, (void *)answer->points[p].modes);
+  }
+  pk_free(context, (void *)answer->points);
+  answer->points = NULL;
+  answer->point_count = 0;
+}
+
+static picket_status fill(const pk_problem *problem, const picket_options *options,
+                          picket_result *result) {
+  result->slab = PK_NEW(problem->context, 2, picket_slab_answer);
+  picket_status status = result->slab ? PICKET_OK : PICKET_ERROR_MEMORY;
+  for (int p = PK_SLAB_TE; status == PICKET_OK && p <= PK_SLAB_TM; p++) {
+    if (problem->slab.wanted[p]) {
+      status =
+          pk_slab_of(problem, (pk_slab_polarization)p, options, &result->slab[result->count++]);
+    }
+  }
   return status;
 }
 
 picket_status pk_study_slab(const pk_problem *problem, const picket_options *options,
                             picket_result **out) {
   picket_result *result = NULL;
-  picket_status status = check(problem);
+  picket_status status = pk_slab_check(problem);
   if (status == PICKET_OK) {
     status = pk_result_create(problem->context, PK_RESULT_SLAB, problem->name, options->accuracy,
                               &result);

@@ -4,7 +4,6 @@
 #define PK_STUDY_STUDY_H
 
 #include <picket/options.h>
-#include <stdint.h>
 
 #include "study/problem.h"
 #include "study/result.h"
@@ -19,12 +18,6 @@ picket_status pk_study_modes(const pk_problem *problem, const picket_options *op
                              picket_result **out);
 picket_status pk_study_index(const pk_problem *problem, const picket_options *options,
                              picket_result **out);
-
-/* The same with a journal of finished points (null: none); `document` is a fingerprint of the
- * problem's text. PICKET_ERROR_STOPPED and PICKET_ERROR_OUTPUT: *out receives what was finished, if
- * there is anything; else it is untouched. */
-picket_status pk_study_index_resumable(const pk_problem *problem, const picket_options *options,
-                                       const char *journal, uint64_t document, picket_result **out);
 picket_status pk_study_summary(const pk_problem *problem, picket_result **out);
 
 #endif

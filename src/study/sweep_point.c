@@ -1,11 +1,12 @@
-/* See sweep_point.h. The line: status, wavelength, estimate, note, shortfall, number of modes; of
- * each mode its order, regime, quantities, radiated orders and profile. */
+/* See sweep_point.h. In the line: wavelength, estimate, note, number of modes; of each mode its
+ * order, regime, quantities, radiated orders and profile. */
 #include "study/sweep_point.h"
 
 #include <stddef.h>
 
 #include "base/memory.h"
 #include "study/index.h"
+#include "study/record_part.h"
 
 /* Far above what a point has: they only bound what a damaged line can ask for. */
 enum { MOST_MODES = 10000, MOST_ORDERS = 10000 };
@@ -28,10 +29,7 @@ static void write_mode(const picket_bloch_mode *mode, pk_record *record) {
   pk_record_whole(record, mode->order);
   pk_record_whole(record, (int)mode->regime);
   for (int i = 0; i < QUANTITIES; i++) {
-    const picket_quantity *q = (const picket_quantity *)((const char *)mode + QUANTITY[i]);
-    pk_record_number(record, q->value);
-    pk_record_number(record, q->uncertainty);
-    pk_record_text(record, q->note);
+    pk_part_write_quantity(record, (const picket_quantity *)((const char *)mode + QUANTITY[i]));
   }
   pk_record_whole(record, mode->radiated_count);
   for (int i = 0; i < mode->radiated_count; i++) {
@@ -51,24 +49,14 @@ static void write_profile(const pk_profile *profile, pk_record *record) {
 }
 
 void pk_sweep_point_write(const pk_sweep_point *point, pk_record *record) {
-  pk_record_whole(record, (int)point->status);
   pk_record_number(record, point->point.wavelength_um);
   pk_record_number(record, point->point.estimate);
   pk_record_text(record, point->point.note);
-  pk_record_text(record, point->shortfall);
   pk_record_whole(record, point->point.mode_count);
   for (int i = 0; i < point->point.mode_count; i++) {
     write_mode(&point->point.modes[i], record);
     write_profile(&point->profile[i], record);
   }
-}
-
-/* A text of the line as the result's own; false when memory is out. */
-static bool read_text(picket_result *result, pk_record_reader *reader, const char **out) {
-  char buffer[PK_RECORD_TEXT];
-  const char *text = pk_record_read_text(reader, buffer);
-  *out = text ? pk_result_text(result, text) : NULL;
-  return *out || !text;
 }
 
 static picket_status read_radiated(picket_result *result, pk_record_reader *reader,
@@ -97,14 +85,12 @@ static picket_status read_mode(picket_result *result, pk_record_reader *reader,
   mode->order = pk_record_read_whole(reader, 0, MOST_MODES);
   mode->regime =
       (picket_regime)pk_record_read_whole(reader, PICKET_REGIME_UNKNOWN, PICKET_REGIME_RADIATING);
-  bool good = true;
-  for (int i = 0; i < QUANTITIES && good; i++) {
+  picket_status status = PICKET_OK;
+  for (int i = 0; i < QUANTITIES && status == PICKET_OK; i++) {
     picket_quantity *q = (picket_quantity *)((char *)mode + QUANTITY[i]);
-    q->value = pk_record_read_number(reader);
-    q->uncertainty = pk_record_read_number(reader);
-    good = read_text(result, reader, &q->note);
+    status = pk_part_read_quantity(result, reader, q);
   }
-  return good ? read_radiated(result, reader, mode) : PICKET_ERROR_MEMORY;
+  return status == PICKET_OK ? read_radiated(result, reader, mode) : status;
 }
 
 static void read_profile(pk_record_reader *reader, pk_profile *profile) {
@@ -135,25 +121,12 @@ static picket_status read_modes(picket_result *result, pk_record_reader *reader,
   return status;
 }
 
-picket_status pk_sweep_point_read(picket_result *result, const char *line, pk_sweep_point *out) {
-  pk_record_reader reader = {line, true};
-  pk_sweep_point p = {0};
-  p.status = (picket_status)pk_record_read_whole(&reader, PICKET_ERROR_OUTPUT, PICKET_OK);
-  p.point.failed = p.status != PICKET_OK;
-  p.point.wavelength_um = pk_record_read_number(&reader);
-  p.point.estimate = pk_record_read_number(&reader);
-  bool good = read_text(result, &reader, &p.point.note) && read_text(result, &reader, &p.shortfall);
-  picket_status status = good ? read_modes(result, &reader, &p) : PICKET_ERROR_MEMORY;
-  if (status == PICKET_OK && !pk_record_read_end(&reader)) {
-    status = pk_fail(result->context, PICKET_ERROR_INTERNAL,
-                     "a line that should hold a point of a sweep does not");
-  }
-  if (status != PICKET_OK) {
-    pk_sweep_point_clear(result->context, &p);
-    return status;
-  }
-  *out = p;
-  return PICKET_OK;
+picket_status pk_sweep_point_read(picket_result *result, pk_record_reader *reader,
+                                  pk_sweep_point *out) {
+  out->point.wavelength_um = pk_record_read_number(reader);
+  out->point.estimate = pk_record_read_number(reader);
+  picket_status status = pk_part_read_text(result, reader, &out->point.note);
+  return status == PICKET_OK ? read_modes(result, reader, out) : status;
 }
 
 void pk_sweep_point_clear(picket_context *context, pk_sweep_point *point) {

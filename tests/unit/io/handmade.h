@@ -82,7 +82,7 @@ static inline picket_result *handmade_slab(picket_context *context) {
   modes[0] = (picket_slab_mode){0, with_bar(2.5, 0.5), with_bar(3.5, 0.5)};
   points[0] = (picket_slab_point){1.5, 1, modes};
   points[1] = (picket_slab_point){2, 0, NULL};
-  answers[0] = (picket_slab_answer){PICKET_TE, 2, points};
+  answers[0] = (picket_slab_answer){PICKET_TE, 2, points, NULL, 0};
   result->slab = answers;
   result->count = 1;
   return result;

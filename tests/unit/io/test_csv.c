@@ -122,7 +122,7 @@ static void a_long_table_is_whole(void **state) {
   picket_result *result = handmade(context, PK_RESULT_SLAB, "", 0.25);
   picket_slab_point *points = PK_NEW(context, POINTS, picket_slab_point);
   result->slab = PK_NEW(context, 1, picket_slab_answer);
-  result->slab[0] = (picket_slab_answer){PICKET_TM, POINTS, points};
+  result->slab[0] = (picket_slab_answer){PICKET_TM, POINTS, points, NULL, 0};
   result->count = 1;
   for (int i = 0; i < POINTS; i++) {
     picket_slab_mode *mode = PK_NEW(context, 1, picket_slab_mode);
