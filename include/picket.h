@@ -3,6 +3,7 @@
 #ifndef PICKET_H
 #define PICKET_H
 
+#include <picket/aim.h>
 #include <picket/bands.h>
 #include <picket/context.h>
 #include <picket/derivative.h>

@@ -56,6 +56,7 @@ struct pk_command {
 
 extern const pk_command pk_commands[]; /* ends with an empty row */
 
+void pk_aim_print(const pk_arguments *arguments, const picket_result *result);
 void pk_edges_print(const pk_arguments *arguments, const picket_result *result);
 void pk_bands_print(const pk_arguments *arguments, const picket_result *result);
 void pk_index_print(const pk_arguments *arguments, const picket_result *result);

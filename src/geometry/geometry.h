@@ -99,6 +99,8 @@ bool pk_geometry_side_media(const pk_geometry *geometry, pk_axis_name axis, int 
  * through the middle of every shape and between its neighbouring parallel edges (teeth and gaps;
  * around the period where periodic), µm; INFINITY if none. For advice and for the base grid. */
 double pk_geometry_smallest_feature(const pk_geometry *geometry);
+/* The same along one axis only. */
+double pk_geometry_smallest_along(const pk_geometry *geometry, pk_axis_name axis);
 
 /* True if reflecting the painted plane about the line axis = centre maps every medium onto itself.
  * Centres tried: 0, the middle of the frame, and those that map the low end of the topmost finite

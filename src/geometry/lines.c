@@ -157,14 +157,17 @@ static double shortest_through(const pk_geometry *geometry, const pk_shape *shap
   return shortest;
 }
 
-double pk_geometry_smallest_feature(const pk_geometry *geometry) {
+double pk_geometry_smallest_along(const pk_geometry *geometry, pk_axis_name axis) {
   double shortest = INFINITY;
   for (int s = 0; s < geometry->count; s++) {
-    for (int a = 0; a < 2; a++) {
-      shortest = fmin(shortest, shortest_through(geometry, &geometry->shapes[s], (pk_axis_name)a));
-    }
+    shortest = fmin(shortest, shortest_through(geometry, &geometry->shapes[s], axis));
   }
   return shortest;
+}
+
+double pk_geometry_smallest_feature(const pk_geometry *geometry) {
+  return fmin(pk_geometry_smallest_along(geometry, PK_U),
+              pk_geometry_smallest_along(geometry, PK_V));
 }
 
 picket_status pk_geometry_profile(const pk_geometry *geometry, double v, int capacity,

@@ -5,125 +5,11 @@
 
 #include "base/memory.h"
 #include "io/csv_private.h"
+#include "io/csv_sheet.h"
 #include "io/number.h"
 #include "io/write.h"
 
-enum { FIRST_BYTES = 4096, COLUMN_NAME = 40 };
-
-/* A text being written. After a failure everything further is dropped. */
-typedef struct sheet {
-  picket_context *context;
-  char *text;
-  size_t used, capacity;
-  picket_status status;
-  bool fresh;                  /* at the start of a row */
-  const picket_result *result; /* of a sweep; else null: rows then begin with the swept value */
-  int answer;                  /* whose rows these are; -1 for the header */
-} sheet;
-
-static void append(sheet *s, const char *bytes, size_t count) {
-  if (s->status == PICKET_OK && s->used + count + 1 > s->capacity) {
-    size_t capacity = 2 * (s->used + count + 1) + FIRST_BYTES;
-    char *larger = pk_regrow(s->context, s->text, s->used, capacity, 1);
-    if (larger) {
-      s->text = larger;
-      s->capacity = capacity;
-    } else {
-      s->status = PICKET_ERROR_MEMORY;
-    }
-  }
-  if (s->status == PICKET_OK) {
-    memcpy(s->text + s->used, bytes, count);
-    s->used += count;
-    s->text[s->used] = '\0';
-  }
-}
-
-static void put_lead(sheet *s);
-
-/* One field; null is an empty one. Quotes go around a text with a comma, a quote or a line break,
- * or with a space at an end, and are doubled inside. */
-static void put_text(sheet *s, const char *text) {
-  text = text ? text : "";
-  size_t length = strlen(text);
-  bool quoted = strpbrk(text, ",\"\r\n") != NULL || (length > 0 && text[0] == ' ') ||
-                (length > 0 && text[length - 1] == ' ');
-  put_lead(s);
-  append(s, ",", s->fresh ? 0 : 1);
-  s->fresh = false;
-  append(s, "\"", quoted);
-  for (size_t i = 0; i < length; i++) {
-    append(s, "\"", text[i] == '"');
-    append(s, text + i, 1);
-  }
-  append(s, "\"", quoted);
-}
-
-static void put_number(sheet *s, double value) {
-  char digits[PK_NUMBER_TEXT] = "";
-  if (isfinite(value)) {
-    pk_number_write(value, digits);
-  }
-  put_text(s, digits);
-}
-
-/* The first column of a sweep. */
-static void put_lead(sheet *s) {
-  const picket_result *sweep = s->result;
-  if (s->fresh && sweep) {
-    s->result = NULL; /* the field itself has none */
-    if (s->answer < 0) {
-      put_text(s, sweep->sweep_path);
-    } else {
-      put_number(s, sweep->sweep_value[s->answer]);
-    }
-    s->result = sweep;
-  }
-}
-
-static void put_quantity(sheet *s, picket_quantity q, double scale) {
-  put_number(s, scale * q.value);
-  put_number(s, scale * q.uncertainty);
-}
-
-static void put_flag(sheet *s, bool flag) {
-  put_text(s, flag ? "true" : "false");
-}
-
-static void end_row(sheet *s) {
-  append(s, "\n", 1);
-  s->fresh = true;
-}
-
-static void put_header(sheet *s, const char *const *names) {
-  for (int i = 0; names[i]; i++) {
-    put_text(s, names[i]);
-  }
-}
-
-/* Whether an answer of a sweep failed, and why; nothing outside a sweep. */
-static void put_failure(sheet *s, bool failed, const char *note) {
-  if (s->result) {
-    put_flag(s, failed);
-    put_text(s, note);
-  }
-}
-
-static void put_failure_header(sheet *s) {
-  if (s->result) {
-    put_text(s, "failed");
-    put_text(s, "note");
-  }
-}
-
-/* The rest of the row of a failed answer: so many empty fields, and the reason. */
-static void put_failed_row(sheet *s, int empty, const char *note) {
-  for (int i = 0; i < empty; i++) {
-    put_text(s, NULL);
-  }
-  put_failure(s, true, note);
-  end_row(s);
-}
+enum { COLUMN_NAME = 40 };
 
 static void put_operating(sheet *s, const picket_operating_band *band) {
   const picket_quantity none = {NAN, NAN, NULL};
@@ -455,6 +341,7 @@ picket_status pk_csv_write(const picket_result *result, char **out) {
       [PK_RESULT_INDEX] = write_index,
       [PK_RESULT_MODES] = write_modes,
       [PK_RESULT_SUMMARY] = write_summary,
+      [PK_RESULT_AIM] = pk_csv_aim,
       [PK_RESULT_EDGE_DERIVATIVES] = write_edge_derivatives,
       [PK_RESULT_INDEX_DERIVATIVES] = write_index_derivatives,
   };

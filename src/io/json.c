@@ -9,6 +9,7 @@
 #include <stdbool.h>
 
 #include "base/memory.h"
+#include "io/json_private.h"
 #include "io/write.h"
 
 /* 17 digits: reading gives back the same double. */
@@ -66,6 +67,48 @@ static json_t *array(int count, json_t *(*make)(const void *user, int i), const 
 /* What a piece of a sweep that failed has more. */
 static bool failure(json_t *object, int failed, const char *note) {
   return !failed || (put(object, "note", text(note)) && put(object, "failed", json_true()));
+}
+
+/* ---- the same for the other files ---- */
+
+json_t *pk_json_object(void) {
+  return json_object();
+}
+
+json_t *pk_json_list(void) {
+  return json_array();
+}
+
+bool pk_json_put(json_t *object, const char *key, json_t *value) {
+  return put(object, key, value);
+}
+
+bool pk_json_append(json_t *list, json_t *value) {
+  return json_array_append_new(list, value) == 0;
+}
+
+json_t *pk_json_finish(json_t *value, bool good) {
+  return finish(value, good);
+}
+
+json_t *pk_json_number(double value) {
+  return number(value);
+}
+
+json_t *pk_json_whole(int value) {
+  return json_integer(value);
+}
+
+json_t *pk_json_text(const char *value) {
+  return text(value);
+}
+
+json_t *pk_json_verdict(int known) {
+  return known < 0 ? json_null() : json_boolean(known);
+}
+
+json_t *pk_json_quantity(picket_quantity q, double scale) {
+  return quantity(q, scale);
 }
 
 /* ---- edges ---- */
@@ -351,6 +394,7 @@ static const writer WRITER[] = {
     [PK_RESULT_INDEX] = {"index", index_answer},
     [PK_RESULT_MODES] = {"modes", modes_answer},
     [PK_RESULT_SUMMARY] = {"check", summary_item},
+    [PK_RESULT_AIM] = {"aim", pk_json_aim},
     [PK_RESULT_EDGE_DERIVATIVES] = {"edge derivatives", edge_derivatives},
     [PK_RESULT_INDEX_DERIVATIVES] = {"index derivatives", index_derivatives},
 };

@@ -82,6 +82,9 @@ picket_status pk_read_cell(pk_reader *reader, const pk_node *node);
 picket_status pk_read_section(pk_reader *reader, const pk_node *node);
 picket_status pk_read_channel(pk_reader *reader, const pk_node *node);
 picket_status pk_read_path(pk_reader *reader, const pk_node *node);
+/* After all blocks that can be varied. */
+picket_status pk_read_aim(pk_reader *reader, const pk_document *document, const pk_node *node);
+picket_status pk_read_rules(pk_reader *reader, const pk_node *node);
 
 /* The number of the material that a value names. */
 picket_status pk_read_material(const pk_reader *reader, const pk_node *node, int *out);

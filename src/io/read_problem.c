@@ -23,8 +23,10 @@ enum {
   KEY_SLAB,
   KEY_SECTION,
   KEY_CHANNEL,
+  KEY_AIM,
+  KEY_RULES,
   KEY_LATER, /* blocks of the format that no command reads yet: any content is let through */
-  KEY_COUNT = KEY_LATER + 4
+  KEY_COUNT = KEY_LATER + 2
 };
 static const pk_key keys[KEY_COUNT] = {
     [KEY_FORMAT] = {"format", false},
@@ -37,10 +39,10 @@ static const pk_key keys[KEY_COUNT] = {
     [KEY_SLAB] = {"slab", false},
     [KEY_SECTION] = {"section", false},
     [KEY_CHANNEL] = {"channel", false},
-    [KEY_LATER] = {"aim", false},
-    {"tolerance", false},
+    [KEY_AIM] = {"aim", false},
+    [KEY_RULES] = {"rules", false},
+    [KEY_LATER] = {"tolerance", false},
     {"taper", false},
-    {"rules", false},
 };
 
 static picket_status check_format(picket_context *context, const pk_node *root,
@@ -72,7 +74,8 @@ static picket_status read_temperature(pk_reader *reader, const pk_node *node) {
 }
 
 /* Blocks in the order in which they need each other. */
-static picket_status read_blocks(pk_reader *reader, const pk_node *const *values) {
+static picket_status read_blocks(pk_reader *reader, const pk_document *document,
+                                 const pk_node *const *values) {
   picket_status status = read_name(reader, values[KEY_NAME]);
   if (status == PICKET_OK && values[KEY_LIGHT]) {
     status = pk_read_light(reader, values[KEY_LIGHT]);
@@ -98,6 +101,12 @@ static picket_status read_blocks(pk_reader *reader, const pk_node *const *values
   if (status == PICKET_OK && values[KEY_CHANNEL]) {
     status = pk_read_channel(reader, values[KEY_CHANNEL]);
   }
+  if (status == PICKET_OK && values[KEY_AIM]) {
+    status = pk_read_aim(reader, document, values[KEY_AIM]);
+  }
+  if (status == PICKET_OK && values[KEY_RULES]) {
+    status = pk_read_rules(reader, values[KEY_RULES]);
+  }
   return status;
 }
 
@@ -121,7 +130,7 @@ picket_status pk_problem_read(picket_context *context, const pk_document *docume
   problem->light.wanted[PK_EY] = problem->light.wanted[PK_HY] = true;
   problem->smallest_um = INFINITY;
   pk_reader reader = {context, pk_document_folder(document), values[KEY_MATERIALS], problem, false};
-  status = read_blocks(&reader, values);
+  status = read_blocks(&reader, document, values);
   if (status != PICKET_OK) {
     pk_problem_free(problem);
     return status;

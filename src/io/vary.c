@@ -1,6 +1,7 @@
 /* See vary.h. */
 #include "io/vary.h"
 
+#include <assert.h>
 #include <math.h>
 
 #include "io/number.h"
@@ -26,10 +27,21 @@ picket_status pk_vary_value(pk_document *document, const char *path, pk_node **n
 
 picket_status pk_vary_read(picket_context *context, pk_document *document, pk_node *node,
                            double value, pk_problem **out) {
-  char text[PK_NUMBER_TEXT], *kept = node->text;
-  pk_number_write(value, text);
-  node->text = text; /* for the length of this call */
+  return pk_vary_read_all(context, document, 1, &node, &value, out);
+}
+
+picket_status pk_vary_read_all(picket_context *context, pk_document *document, int count,
+                               pk_node *const *nodes, const double *values, pk_problem **out) {
+  char text[PK_VARIED][PK_NUMBER_TEXT], *kept[PK_VARIED];
+  assert(count <= PK_VARIED);
+  for (int i = 0; i < count; i++) { /* for the length of this call */
+    kept[i] = nodes[i]->text;
+    pk_number_write(values[i], text[i]);
+    nodes[i]->text = text[i];
+  }
   picket_status status = pk_problem_read(context, document, out);
-  node->text = kept;
+  for (int i = count - 1; i >= 0; i--) { /* backwards: a node may be there twice */
+    nodes[i]->text = kept[i];
+  }
   return status;
 }

@@ -10,29 +10,9 @@
 #include <picket/options.h>
 #include <picket/quantity.h>
 
+#include "study/measured.h"
 #include "study/problem.h"
 #include "study/variants.h"
-
-typedef enum pk_measured {
-  PK_MEASURED_CLEARANCE,  /* clearance_nm: shortest wavelength of light minus the long edge */
-  PK_MEASURED_LONG,       /* long_nm: long-wavelength edge of the first stop band */
-  PK_MEASURED_SHORT,      /* short_nm */
-  PK_MEASURED_EDGE_DRIFT, /* edge_drift_nm_per_k: of the long edge */
-  PK_MEASURED_BLOCH_INDEX,
-  PK_MEASURED_GROUP_INDEX,
-  PK_MEASURED_DISPERSION, /* dispersion_ps_per_nm_km */
-  PK_MEASURED_INDEX,      /* index: of a mode of a section */
-  PK_MEASURED_INDEX_RATE, /* dn_dt_per_k: of the Bloch index, or of a section's index */
-  PK_MEASURED_DRIFT,      /* drift_pm_per_k: λ (dn/dT)/n_g, of a resonance */
-  PK_MEASURED_COUNT
-} pk_measured;
-
-/* Its key in a file, e.g. "clearance_nm". Static text. */
-const char *pk_measured_name(pk_measured what);
-/* Its unit for people, "" for a pure number. */
-const char *pk_measured_unit(pk_measured what);
-/* Whether it is a quantity at one wavelength (at_nm). */
-bool pk_measured_at_wavelength(pk_measured what);
 
 /* What of a problem is measured. */
 typedef enum pk_structure {
@@ -116,5 +96,10 @@ bool pk_measured_has_slope(pk_measured what, pk_structure structure);
 picket_status pk_measure_slope(const pk_variants *variants, const double *values, int i,
                                const pk_question *question, const picket_options *options,
                                const pk_measure_memory *memory, pk_measured_slope *out);
+
+/* The same by the analytic derivative only: where there is none the value is NaN. */
+picket_status pk_measure_slope_analytic(const pk_variants *variants, const double *values, int i,
+                                        const pk_question *question, const picket_options *options,
+                                        pk_measured_slope *out);
 
 #endif

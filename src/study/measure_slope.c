@@ -136,6 +136,26 @@ static picket_status try_analytic(const pk_variants *variants, const double *val
   return status;
 }
 
+picket_status pk_measure_slope_analytic(const pk_variants *variants, const double *values, int i,
+                                        const pk_question *question, const picket_options *options,
+                                        pk_measured_slope *out) {
+  picket_options chosen = *options;
+  chosen.count = 0;
+  chosen.jobs = 1;
+  bool done = false;
+  pk_measured_slope slope = {.q = {NAN, NAN, NULL}, .way = PK_SLOPE_NONE};
+  picket_status status = PICKET_OK;
+  if (pk_measured_has_slope(question->what, question->structure)) {
+    status = try_analytic(variants, values, i, question, &chosen, &slope, &done);
+    slope.way = done ? PK_SLOPE_ANALYTIC : PK_SLOPE_NONE;
+  }
+  if (status == PICKET_OK) {
+    *out = slope;
+    out->q.note = isfinite(slope.q.value) ? NULL : out->reason;
+  }
+  return status;
+}
+
 /* --- Differences ------------------------------------------------------------------------------
  */
 
@@ -228,14 +248,9 @@ picket_status pk_measure_slope(const pk_variants *variants, const double *values
   picket_options chosen = *options;
   chosen.count = 0;
   chosen.jobs = 1;
-  bool done = false;
-  pk_measured_slope slope = {.q = {NAN, NAN, NULL}, .way = PK_SLOPE_NONE};
-  picket_status status = PICKET_OK;
-  if (pk_measured_has_slope(question->what, question->structure)) {
-    status = try_analytic(variants, values, i, question, &chosen, &slope, &done);
-    slope.way = done ? PK_SLOPE_ANALYTIC : PK_SLOPE_NONE;
-  }
-  if (status == PICKET_OK && !done) {
+  pk_measured_slope slope;
+  picket_status status = pk_measure_slope_analytic(variants, values, i, question, &chosen, &slope);
+  if (status == PICKET_OK && slope.way == PK_SLOPE_NONE) {
     status = difference(variants, values, i, question, &chosen, memory, &slope);
   }
   if (status == PICKET_OK) {

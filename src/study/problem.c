@@ -30,6 +30,9 @@ void pk_problem_free(pk_problem *problem) {
   pk_geometry_free(problem->section.geometry);
   pk_free(context, problem->section.used);
   clear_channel(context, &problem->channel);
+  for (int i = 0; i < PK_AIM_PARTS; i++) {
+    pk_free(context, problem->aim.part[i].vary);
+  }
   pk_free(context, problem);
   pk_context_release(context);
 }

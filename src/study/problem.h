@@ -9,6 +9,7 @@
 #include "geometry/cell.h"
 #include "material/material.h"
 #include "operator/operator.h"
+#include "study/measured.h"
 
 typedef struct pk_light {
   bool given;
@@ -62,6 +63,31 @@ typedef struct pk_channel_block {
   pk_section_block outline; /* all slices at once; its planes are the slices' */
 } pk_channel_block;
 
+/* One number of the file that is varied until a quantity meets its target. */
+typedef struct pk_aim_part {
+  char *vary;        /* its dotted path */
+  double between[2]; /* rising, in the unit of the file */
+  pk_measured quantity;
+  double target;  /* in the unit of the quantity */
+  double at_um;   /* for quantities at one wavelength, else NaN */
+  pk_place place; /* of the quantity */
+} pk_aim_part;
+
+enum { PK_AIM_PARTS = 2 };
+typedef struct pk_aim_block {
+  bool given;
+  int count; /* of parts: as many targets as numbers */
+  pk_aim_part part[PK_AIM_PARTS];
+  bool wanted[2]; /* families of a section or a channel: te-like, tm-like */
+} pk_aim_block;
+
+/* What a mask allows. */
+typedef struct pk_rules_block {
+  bool given;
+  double smallest_um; /* 0: not given */
+  double grid_um;     /* 0: not given */
+} pk_rules_block;
+
 typedef struct pk_problem {
   picket_context *context; /* held */
   char *name;              /* "" if not given */
@@ -76,6 +102,8 @@ typedef struct pk_problem {
   pk_slab_block slab;
   pk_section_block section;
   pk_channel_block channel;
+  pk_aim_block aim;
+  pk_rules_block rules;
 } pk_problem;
 
 /* Accepts null and half-built problems. */

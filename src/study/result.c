@@ -147,6 +147,13 @@ static void free_summary(picket_result *result) {
   pk_free(result->context, result->lines);
 }
 
+static void free_aim(picket_context *context, int count, picket_aim_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    pk_free(context, (void *)answers[i].parts);
+  }
+  pk_free(context, answers);
+}
+
 void pk_result_free(picket_result *result) {
   if (!result) {
     return;
@@ -159,6 +166,7 @@ void pk_result_free(picket_result *result) {
   free_index(context, result->count, result->index);
   free_derivatives(result);
   free_summary(result);
+  free_aim(context, result->count, result->aim);
   for (int i = 0; i < result->text_count; i++) {
     pk_free(context, result->texts[i]);
   }

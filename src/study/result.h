@@ -3,6 +3,7 @@
 #ifndef PK_STUDY_RESULT_H
 #define PK_STUDY_RESULT_H
 
+#include <picket/aim.h>
 #include <picket/bands.h>
 #include <picket/derivative.h>
 #include <picket/edges.h>
@@ -14,6 +15,7 @@
 
 typedef enum pk_result_kind {
   PK_RESULT_EDGES,
+  PK_RESULT_AIM,
   PK_RESULT_BANDS,
   PK_RESULT_SLAB,
   PK_RESULT_MODES,
@@ -41,6 +43,7 @@ struct picket_result {
   int count;                  /* answers; for a summary: items */
   picket_edges_answer *edges; /* arrays inside the answers are owned by the result */
   picket_bands_answer *bands;
+  picket_aim_answer *aim;
   picket_slab_answer *slab;
   picket_modes_answer *modes;
   picket_index_answer *index;

@@ -5,7 +5,7 @@ import unittest
 import tool
 
 COMMANDS = ('check', 'edges', 'bands', 'index', 'modes', 'slab')
-LATER = ('aim', 'tolerance', 'match', 'taper', 'report', 'start')
+LATER = ('tolerance', 'match', 'taper', 'report', 'start')
 
 
 class CommandLine(tool.ToolTest):
