@@ -1,0 +1,3 @@
+"""The version of the binding: that of the library it was written for."""
+
+__version__ = '0.1.0'

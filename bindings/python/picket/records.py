@@ -1,0 +1,436 @@
+"""What the library answers with. Each class mirrors a struct of the C headers, member by member.
+
+Lengths are in µm (the suffix says so), k in units of π/pitch, angles in radians. A number that could not be
+obtained is NaN. Arrays are tuples of records; `Result.columns` makes NumPy arrays of them.
+"""
+
+import ctypes
+import enum
+import math
+from typing import Optional, Tuple
+
+import numpy as np
+
+from ._layout import many, record, stored
+
+
+class _Word(enum.IntEnum):
+    """An enumeration whose members have a word: that of problem files and documents."""
+
+    @property
+    def word(self):
+        return self.name.lower().replace('_', '-')
+
+    @classmethod
+    def of(cls, value):
+        """The member for a member, its number or its word."""
+        for member in cls:
+            if value == member or value == member.word:
+                return member
+        words = ', '.join(repr(member.word) for member in cls)
+        raise ValueError(f'{cls.__name__.lower()} is {value!r}, must be one of {words}')
+
+
+class Polarization(_Word):
+    """Of a cell, by the field normal to the drawing."""
+    EY = 0
+    HY = 1
+
+
+class SlabPolarization(_Word):
+    """Of a slab: te has E along the films."""
+    TE = 0
+    TM = 1
+
+
+class Regime(_Word):
+    """How a segmented guide works at a wavelength."""
+    UNKNOWN = 0
+    SUBWAVELENGTH = 1
+    STOP_BAND = 2
+    RADIATING = 3
+
+
+class Side(_Word):
+    """The lateral sides of a cell: towards -x and towards +x."""
+    LOW = 0
+    HIGH = 1
+
+
+class LogLevel(_Word):
+    """How much is said through the log."""
+    WARNING = 0
+    INFO = 1
+    DETAIL = 2
+
+
+class Verdict(enum.IntEnum):
+    """The answer of a progress callable; None is CONTINUE, too."""
+    CONTINUE = 0
+    STOP = 1
+
+
+class Question(_Word):
+    """What a sweep asks at each value."""
+    EDGES = 0
+    INDEX = 1
+    MODES = 2
+    SLAB = 3
+
+
+class Component(enum.IntEnum):
+    """Components of a field, E in V/m and H in A/m."""
+    EX = 0
+    EY = 1
+    EZ = 2
+    HX = 3
+    HY = 4
+    HZ = 5
+
+
+@record('picket_quantity')
+class Quantity:
+    """A number with its error bar; float() gives the value, str() both."""
+    value: float
+    """NaN when the number could not be obtained"""
+    uncertainty: float
+    """half-width of the error bar in the unit of the value; NaN when no bar can be vouched for"""
+    note: Optional[str]
+    """why value or uncertainty is missing, or None"""
+
+    def __float__(self):
+        return self.value
+
+    def __str__(self):
+        if not self.uncertainty > 0 or math.isinf(self.uncertainty):
+            bar = 'unknown' if math.isnan(self.uncertainty) else f'{self.uncertainty:g}'
+            return f'{self.value:.10g} ± {bar}'
+        places = 1 - math.floor(math.log10(self.uncertainty))
+        if not 0 <= places <= 12:
+            return f'{self.value:.6g} ± {self.uncertainty:.2g}'
+        return f'{self.value:.{places}f} ± {self.uncertainty:.{places}f}'
+
+
+# --- edges.h
+
+@record('picket_stop_band')
+class StopBand:
+    """One stop band of the fundamental guided mode's own family; vacuum wavelengths."""
+    order: int
+    """m: the band opens at k = mπ/pitch"""
+    short_um: Quantity
+    """short-wavelength edge, µm"""
+    long_um: Quantity
+    """long-wavelength edge, µm"""
+    short_confined: bool
+    """the edge is below the light line of every open side"""
+    long_confined: bool
+    attenuation_db_per_pitch: Quantity
+    """the largest inside"""
+
+
+@record('picket_operating_band')
+class OperatingBand:
+    """The operating band (`light` of the problem) against the first stop band."""
+    given: bool
+    from_um: float
+    to_um: float
+    regime: Regime
+    """the worst over the band"""
+    clearance_um: Quantity
+    """from_um minus the long edge of order 1, µm; negative: reaches into it"""
+
+
+@record('picket_edge_estimate')
+class EdgeEstimate:
+    """Second-order Rytov homogenisation of the core, the slab of that core, and the Bragg condition."""
+    method: Optional[str]
+    """None if the estimate does not apply"""
+    centre_um: float
+    """estimated centre of the first stop band, µm; NaN if there is none"""
+    error_um: Quantity
+    """estimate minus the centre found, µm"""
+
+
+@record('picket_edges_answer')
+class EdgesAnswer:
+    """The stop bands of one polarization."""
+    polarization: Polarization
+    bands: Tuple[StopBand, ...] = many('band_count', rows=True)
+    operating: OperatingBand
+    estimate: EdgeEstimate
+    note: Optional[str]
+    """why the answer could not be computed, in a sweep; None otherwise"""
+    failed: bool = stored(ctypes.c_int)
+    """True if it could not: there are no bands then"""
+
+
+# --- bands.h
+
+@record('picket_band_point')
+class BandPoint:
+    """The frequencies at one wavenumber."""
+    kz: float
+    """in π/pitch"""
+    kx: float
+    """in π/lateral span"""
+    label: Optional[str]
+    """of the path point, or None"""
+    frequency: Tuple[Quantity, ...] = many('band_count', rows=True, above=True, number='band')
+    """[band_count] pitch/λ, rising; NaN: not guided, or a material is unknown there"""
+
+
+@record('picket_gap')
+class Gap:
+    """A range of frequencies without a mode at any point of the path."""
+    below: int
+    """number of bands below the gap"""
+    start: Quantity = stored(name='from')
+    """pitch/λ, top of band `below`"""
+    to: Quantity
+    """pitch/λ, bottom of the next band"""
+
+
+@record('picket_bands_answer')
+class BandsAnswer:
+    """The bands of one polarization along a path."""
+    polarization: Polarization
+    band_count: int
+    points: Tuple[BandPoint, ...] = many('point_count', rows=True)
+    gaps: Tuple[Gap, ...] = many('gap_count')
+
+    @property
+    def wavenumbers(self):
+        """[point_count, 2]: k_z in π/pitch and k_x in π/lateral span."""
+        return np.array([(p.kz, p.kx) for p in self.points]).reshape(-1, 2)
+
+    @property
+    def frequencies(self):
+        """[point_count, band_count]: pitch/λ."""
+        return self._table('value')
+
+    @property
+    def uncertainties(self):
+        """[point_count, band_count]: of the frequencies."""
+        return self._table('uncertainty')
+
+    def _table(self, which):
+        return np.array([[getattr(q, which) for q in p.frequency] for p in self.points]).reshape(-1, self.band_count)
+
+
+# --- index.h
+
+@record('picket_radiated_order')
+class RadiatedOrder:
+    """A plane wave that a Bloch mode sends into an open side."""
+    order: int
+    """m: its wavenumber along z is k + 2πm/pitch"""
+    side: Side
+    angle_rad: float
+    """from the lateral direction towards +z, -π/2 to π/2"""
+    share: float
+    """of all radiated power, 0 to 1"""
+
+
+@record('picket_bloch_mode')
+class BlochMode:
+    """One Bloch mode, forward: its power flows or decays along +z."""
+    order: int
+    """lateral nodes of the field: 0 is the fundamental mode"""
+    bloch_index: Quantity
+    """Re k/k0, unfolded; inside a stop band mπ/(pitch k0)"""
+    group_index: Quantity
+    """material dispersion included; NaN inside a stop band"""
+    dispersion_ps_per_nm_km: Quantity
+    loss_db_per_cm: Quantity
+    """of power, from Im k; inside a stop band the attenuation"""
+    loss_db_per_pitch: Quantity
+    absorption_db_per_cm: Quantity
+    """the part of the loss that heats the media"""
+    radiation_db_per_cm: Quantity
+    """the part that leaves through open sides"""
+    radiation_per_mm: Quantity
+    """the same as a power coefficient, 1/mm"""
+    upward_share: Quantity
+    """of the radiated power, into the side of +x; NaN if none"""
+    regime: Regime
+    radiated: Tuple[RadiatedOrder, ...] = many('radiated_count')
+
+
+@record('picket_index_point')
+class IndexPoint:
+    """The modes at one wavelength."""
+    wavelength_um: float
+    modes: Tuple[BlochMode, ...] = many('mode_count', rows=True)
+    """by rising order"""
+    estimate: float
+    """index of the homogenised guide (second-order Rytov); NaN if none"""
+    note: Optional[str]
+    """why there is no mode, or why the point failed; None otherwise"""
+    failed: bool = stored(ctypes.c_int)
+    """True if the point could not be computed"""
+
+
+@record('picket_index_answer')
+class IndexAnswer:
+    """The sweep of one polarization."""
+    polarization: Polarization
+    points: Tuple[IndexPoint, ...] = many('point_count', rows=True)
+
+
+# --- slab.h
+
+@record('picket_slab_mode')
+class SlabMode:
+    """A guided mode of a film stack."""
+    order: int
+    """number of zeros of the field"""
+    index: Quantity
+    group_index: Quantity
+    """with material dispersion"""
+
+
+@record('picket_slab_point')
+class SlabPoint:
+    """The modes at one wavelength."""
+    wavelength_um: float
+    modes: Tuple[SlabMode, ...] = many('mode_count', rows=True)
+    """by falling index"""
+
+
+@record('picket_slab_answer')
+class SlabAnswer:
+    """The modes of one polarization."""
+    polarization: SlabPolarization
+    points: Tuple[SlabPoint, ...] = many('point_count', rows=True)
+    note: Optional[str]
+    """why the answer could not be computed, in a sweep; None otherwise"""
+    failed: bool = stored(ctypes.c_int)
+    """True if it could not: there are no points then"""
+
+
+# --- modes.h
+
+@record('picket_confinement')
+class Confinement:
+    """Share of the electric energy of a mode that is in a material."""
+    material: Optional[str]
+    share: float
+    """0 to 1; the shares of a mode add up to 1"""
+
+
+@record('picket_mode_diameters')
+class ModeDiameters:
+    """Mode-field diameters, µm, each by its own definition; NaN with a note where a mode has none. All are 2w for a
+    Gaussian beam with an intensity as exp(-2r²/w²)."""
+    petermann_um: Quantity
+    """Petermann II: from the spread of the far field; then along x and along y"""
+    petermann_x_um: Quantity
+    petermann_y_um: Quantity
+    rms_um: Quantity
+    """2√2 √⟨r²⟩ about the centroid of the power flow; then along x and along y: 4σ"""
+    rms_x_um: Quantity
+    rms_y_um: Quantity
+    e2_x_um: Quantity
+    """where the power flow falls to 1/e² of its largest value, on the line through its centroid"""
+    e2_y_um: Quantity
+    gaussian_um: Quantity
+    """of the round Gaussian beam that resembles the mode most"""
+    gaussian_overlap: Quantity
+    """how much it does, 0 to 1"""
+    gaussian_x_um: Quantity
+    """of the beam with a diameter along x and one along y"""
+    gaussian_y_um: Quantity
+    gaussian_xy_overlap: Quantity
+
+
+@record('picket_section_mode')
+class SectionMode:
+    """A full-vector mode of a section."""
+    order: int
+    """by falling index, from 0"""
+    index: Quantity
+    """Re β/k0"""
+    group_index: Quantity
+    """dβ/dk0, material dispersion included"""
+    loss_db_per_cm: Quantity
+    """of power: absorption and leakage"""
+    effective_area_um2: Quantity
+    """(∫S_z dA)² / ∫S_z² dA, µm²"""
+    diameters: ModeDiameters
+    ex_share: float
+    """of the transverse electric energy, that along x: 1 te-like, 0 tm-like"""
+    nodes_x: int
+    nodes_y: int
+    """zeros of the stronger of E_x and E_y along x and y"""
+    confinement: Tuple[Confinement, ...] = many('material_count')
+
+
+@record('picket_modes_point')
+class ModesPoint:
+    """The modes at one wavelength."""
+    wavelength_um: float
+    modes: Tuple[SectionMode, ...] = many('mode_count', rows=True)
+    """by falling index"""
+    note: Optional[str]
+    """why there is no mode, or why the point failed; None otherwise"""
+    failed: bool = stored(ctypes.c_int)
+    """True if the point could not be computed"""
+
+
+@record('picket_modes_answer')
+class ModesAnswer:
+    """The modes of a section at each wavelength."""
+    points: Tuple[ModesPoint, ...] = many('point_count', rows=True)
+
+
+# --- derivative.h
+
+@record('picket_edge_derivative')
+class EdgeDerivative:
+    """Derivatives of the edges of one stop band, µm per unit of the varied value."""
+    order: int
+    short_um: Quantity
+    long_um: Quantity
+
+
+@record('picket_edge_derivatives')
+class EdgeDerivatives:
+    """Of one polarization."""
+    polarization: Polarization
+    bands: Tuple[EdgeDerivative, ...] = many('band_count', rows=True)
+
+
+@record('picket_index_derivative')
+class IndexDerivative:
+    """Derivative of the fundamental mode's Bloch index, per unit of the varied value."""
+    wavelength_um: float
+    bloch_index: Quantity
+
+
+@record('picket_index_derivatives')
+class IndexDerivatives:
+    """Of one polarization."""
+    polarization: Polarization
+    points: Tuple[IndexDerivative, ...] = many('point_count', rows=True)
+
+
+# --- field.h
+
+@record('picket_field_description')
+class FieldDescription:
+    """What a field is of."""
+    polarization: Polarization
+    order: int
+    """lateral nodes at this wavelength: 0 is the fundamental mode"""
+    wavelength_um: float
+    """in vacuum"""
+    pitch_um: float
+    index_re: float
+    """the Bloch index k/k0 on this grid"""
+    index_im: float
+    propagates: bool
+    """False: scaled to a largest value of 1 instead of unit power"""
+    x_from_um: float
+    x_to_um: float
+    """lines outside lie in absorbing layers, where the field is not that of the cell"""
