@@ -118,6 +118,7 @@ STUDIES = {
     'index': (records.IndexAnswer,),
     'slab': (records.SlabAnswer,),
     'modes': (records.ModesAnswer,),
+    'aim': (records.AimAnswer,),
     'edge_derivatives': (records.EdgeDerivatives, Text),
     'index_derivatives': (records.IndexDerivatives, Text),
 }

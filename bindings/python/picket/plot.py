@@ -3,6 +3,7 @@
 import numpy as np
 
 from .records import Polarization
+from .result import word
 
 
 def _axes(axes):
@@ -21,35 +22,30 @@ def draw(result, axes=None):
         raise ValueError(f'there is no picture of {result.study}')
     axes = _axes(axes)
     for i, answer in enumerate(result):
-        _PICTURES[result.study](axes, answer, _word(answer), i)
+        _PICTURES[result.study](axes, answer, word(answer), i)
     if axes.get_legend_handles_labels()[1]:
         axes.legend()
     return axes
 
 
-def _word(answer):
-    polarization = getattr(answer, 'polarization', None)
-    return '' if polarization is None else polarization.word
-
-
-def _bands(axes, answer, word, _):
+def _bands(axes, answer, label, _):
     steps = np.hypot(*np.diff(answer.wavenumbers, axis=0).T)
     along = np.concatenate([[0], np.cumsum(steps)])
     lines = axes.plot(along, answer.frequencies)
-    lines[0].set_label(word)
+    lines[0].set_label(label)
     for line in lines[1:]:
         line.set_color(lines[0].get_color())
     for gap in answer.gaps:
         axes.axhspan(gap.start.value, gap.to.value, color=lines[0].get_color(), alpha=0.15)
     marks = [(x, p.label) for x, p in zip(along, answer.points) if p.label]
     if marks:
-        axes.set_xticks([x for x, _ in marks], [label for _, label in marks])
+        axes.set_xticks([x for x, _ in marks], [mark for _, mark in marks])
     else:
         axes.set_xlabel('k along the path, π/pitch')
     axes.set_ylabel('pitch/λ')
 
 
-def _edges(axes, answer, word, height):
+def _edges(axes, answer, label, height):
     for band in answer.bands:
         left, right = 1000 * band.short_um.value, 1000 * band.long_um.value
         axes.barh(height, right - left, left=left, height=0.4, color='0.4',
@@ -60,7 +56,7 @@ def _edges(axes, answer, word, height):
                   left=1000 * answer.operating.from_um, height=0.4, color='tab:green',
                   label=None if height else 'operating band')
     axes.set_yticks([*axes.get_yticks()[:height], height] if height else [0])
-    axes.set_yticklabels([*[t.get_text() for t in axes.get_yticklabels()][:height], word])
+    axes.set_yticklabels([*[t.get_text() for t in axes.get_yticklabels()][:height], label])
     axes.set_ylim(-0.5, height + 0.5)
     axes.use_sticky_edges = False
     axes.set_xlabel('wavelength, nm')
@@ -68,14 +64,14 @@ def _edges(axes, answer, word, height):
 
 def _against_wavelength(name):
     """A picture of a quantity of modes against the wavelength, a line for each order."""
-    def picture(axes, answer, word, _):
+    def picture(axes, answer, label, _):
         orders = sorted({mode.order for point in answer.points for mode in point.modes})
         for order in orders:
             found = [(1000 * point.wavelength_um, getattr(mode, name)) for point in answer.points
                      for mode in point.modes if mode.order == order]
             axes.errorbar([w for w, _ in found], [q.value for _, q in found],
                           yerr=[np.nan_to_num(q.uncertainty) for _, q in found], marker='.',
-                          label=f'{word} {order}'.strip())
+                          label=f'{label} {order}'.strip())
         axes.set_xlabel('wavelength, nm')
         axes.set_ylabel(name.replace('_', ' '))
     return picture

@@ -14,7 +14,7 @@ from ._text import flow, is_number
 from .context import Context, Owned, ProgressCallable
 from .field import Field
 from .options import packed
-from .records import (BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, ModesAnswer,
+from .records import (AimAnswer, BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, ModesAnswer,
                       Polarization, Question, SlabAnswer)
 from .result import Result, Summary
 
@@ -148,6 +148,11 @@ class Problem(Owned):
         request.journal_path = None if journal is None else os.fsencode(journal)
         return self.context._call(lib.picket_sweep_find, self, ctypes.byref(request), packed(options),
                                   progress=progress, wrap=lambda p: Result(self.context, p, asked.word))
+
+    def aim(self, *, progress: Optional[ProgressCallable] = None, **options: float) -> Result[AimAnswer]:
+        """The value of `aim.vary` between its bounds at which `aim.quantity` meets `aim.target`, for each polarization
+        of `light` or each family of modes. That there is none is an outcome: `found` is False, `reason` says why."""
+        return self._study('aim', progress=progress, options=options)
 
     def edge_derivatives(self, path: str, *, progress: Optional[ProgressCallable] = None,
                          **options: float) -> Result[EdgeDerivatives]:

@@ -415,6 +415,77 @@ class IndexDerivatives:
     points: Tuple[IndexDerivative, ...] = many('point_count', rows=True)
 
 
+# --- aim.h
+
+class DerivativeWay(_Word):
+    """How a derivative was found."""
+    NONE = 0
+    ANALYTIC = 1
+    DIFFERENCE = 2
+    SAMPLES = 3
+
+
+@record('picket_aim_part')
+class AimPart:
+    """One varied number and its target; the number is in the unit of the problem file."""
+    vary: str
+    """dotted path"""
+    start: float = stored(name='from')
+    """its lower bound"""
+    to: float
+    """its upper bound"""
+    quantity: str
+    unit: str
+    """of the quantity; '' for a pure number"""
+    target: float
+    at_um: float
+    """for a quantity at one wavelength, else NaN"""
+    value: Quantity
+    """of the number; NaN with a note if there is no solution between the bounds"""
+    achieved: Quantity
+    """the quantity by a direct solve at `value`"""
+    derivative: Quantity
+    """of the quantity per unit of the number, at `value`"""
+    derivative_way: DerivativeWay
+    at_from: Quantity
+    """the quantity at the bounds, with one target; may be coarse"""
+    at_to: Quantity
+    snapped: float
+    """value on the mask grid; NaN without a grid or for no length"""
+    snapped_achieved: Quantity
+    """the quantity there, by a direct solve"""
+
+
+@record('picket_aim_answer')
+class AimAnswer:
+    """What was found for one polarization."""
+    polarization: str
+    """'ey', 'hy', 'te-like' or 'tm-like'"""
+    parts: Tuple[AimPart, ...] = many('part_count', rows=True)
+    """1 or 2"""
+    found: bool = stored(ctypes.c_int)
+    """True if the targets are met between the bounds"""
+    reason: Optional[str]
+    """why not; None if found"""
+    solves: int
+    """direct solves of a quantity, those on the mask grid included"""
+    derivative_passes: int
+    """passes over the grids for analytic derivatives"""
+    unique: int
+    """1: monotone over what was sampled; 0: the target is met more than once; -1: not shown either way"""
+    unique_basis: Optional[str]
+    """how that was judged"""
+    smallest_feature_um: float
+    """of the structure at `value`; NaN if there is none"""
+    respects_rules: int
+    """1 or 0 against rules.smallest_feature_nm; -1 without one"""
+    snapped: bool = stored(ctypes.c_int)
+    """True if there is a mask grid and a length to put on it"""
+    snapped_smallest_feature_um: float
+    snapped_respects_rules: int
+    """as above, on the mask grid"""
+
+
 # --- field.h
 
 @record('picket_field_description')

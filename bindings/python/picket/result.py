@@ -109,7 +109,7 @@ class Result(_Document, Generic[Answer]):
         if not isinstance(which, str):
             return self.answers[which]
         for answer in self.answers:
-            if getattr(answer, 'polarization', None) is not None and answer.polarization.word == which:
+            if word(answer) == which:
                 return answer
         raise KeyError(which)
 
@@ -146,6 +146,12 @@ class Result(_Document, Generic[Answer]):
 
     def __repr__(self):
         return f'<picket.Result {self.study}{" (closed)" if self.closed else ""}>'
+
+
+def word(answer):
+    """The word of an answer's polarization; '' if it has none."""
+    polarization = getattr(answer, 'polarization', '')
+    return getattr(polarization, 'word', polarization)
 
 
 # --- Columns

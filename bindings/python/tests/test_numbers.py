@@ -139,6 +139,22 @@ def test_index_derivative_against_a_difference_quotient():
     assert answer.points[0].bloch_index.value == pytest.approx(slope, rel=1e-6)
 
 
+def test_aim():
+    problem = picket.Problem({**stack(), 'aim': {'vary': 'materials.high.constant.index', 'between': [1.8, 2.2],
+                                                 'quantity': 'long_nm', 'target': 1150}})
+    [answer] = problem.aim(accuracy=1e-6)
+    [part] = answer.parts
+    exact = brentq(lambda n: half_trace(1.15, n1=n) + 1, 1.9, 2.2, xtol=1e-14)
+    assert answer.found and answer.reason is None and answer.polarization == 'ey'
+    assert (part.vary, part.start, part.to, part.target) == ('materials.high.constant.index', 1.8, 2.2, 1150)
+    assert abs(part.value.value - exact) <= part.value.uncertainty < 1e-4
+    assert part.achieved.value == pytest.approx(1150, rel=1e-6)
+    problem['aim.target'] = 2000
+    result = problem.aim()
+    assert not result.complete and not result['ey'].found and result['ey'].reason
+    assert math.isnan(result['ey'].parts[0].value.value) and result.columns()['found'][0] == False  # noqa: E712
+
+
 def test_modes_of_a_section():
     # A film from wall to wall: between electric walls across x, E along x is uniform, so the section's first mode is
     # the film's te mode. Above and below the walls are 2 µm away, where that mode is down to exp(-16).

@@ -17,13 +17,13 @@ HEADERS = {path.name: re.sub(r'/\*.*?\*/', '', path.read_text(encoding='utf-8'),
            for path in sorted((INCLUDE / 'picket').glob('*.h'))}
 
 # Headers whose every function the binding has.
-BOUND = ('bands.h', 'context.h', 'derivative.h', 'edges.h', 'field.h', 'index.h', 'modes.h', 'options.h',
+BOUND = ('aim.h', 'bands.h', 'context.h', 'derivative.h', 'edges.h', 'field.h', 'index.h', 'modes.h', 'options.h',
          'problem.h', 'result.h', 'slab.h', 'status.h', 'summary.h', 'sweep.h')
 
 ENUMERATIONS = {
     'PICKET_': (picket.Status, records.SlabPolarization, records.Verdict),
     'PICKET_COMPONENT_': (records.Component,), 'PICKET_LOG_': (records.LogLevel,),
-    'PICKET_QUESTION_': (records.Question,), 'PICKET_REGIME_': (records.Regime,), 'PICKET_SIDE_': (records.Side,)}
+    'PICKET_DERIVATIVE_': (records.DerivativeWay,), 'PICKET_QUESTION_': (records.Question,), 'PICKET_REGIME_': (records.Regime,), 'PICKET_SIDE_': (records.Side,)}
 
 
 def structs():
