@@ -14,8 +14,18 @@ extern "C" {
 
 typedef struct picket_result picket_result;
 
-/* Polarization of a cell, by the field normal to the drawing plane. */
-typedef enum picket_polarization { PICKET_EY = 0, PICKET_HY = 1 } picket_polarization;
+/* Polarization of a cell, by the field normal to the drawing plane; of the modes of a channel, by
+ * the larger transverse electric component, in x (te-like) or in y (tm-like). Seen from above, the
+ * drawing plane of a cell (z, x) has the normal y: te-like is then its hy, tm-like its ey. */
+typedef enum picket_polarization {
+  PICKET_EY = 0,
+  PICKET_HY = 1,
+  PICKET_TM_LIKE = 2,
+  PICKET_TE_LIKE = 3
+} picket_polarization;
+
+/* The word of a polarization: "ey", "hy", "tm-like", "te-like". Static text. */
+PICKET_EXPORT const char *picket_polarization_name(picket_polarization polarization);
 
 /* How a segmented guide works at a wavelength. */
 typedef enum picket_regime {

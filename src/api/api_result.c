@@ -2,6 +2,16 @@
 #include "api/border.h"
 #include "io/write.h"
 
+const char *picket_polarization_name(picket_polarization polarization) {
+  switch (polarization) {
+    case PICKET_EY: return "ey";
+    case PICKET_HY: return "hy";
+    case PICKET_TM_LIKE: return "tm-like";
+    case PICKET_TE_LIKE: return "te-like";
+  }
+  return "unknown";
+}
+
 const char *picket_regime_name(picket_regime regime) {
   switch (regime) {
     case PICKET_REGIME_SUBWAVELENGTH: return "subwavelength";

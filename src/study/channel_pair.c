@@ -1,0 +1,233 @@
+/* See channel_pair.h. */
+#include "study/channel_pair.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "channel/forms.h"
+
+static const double PI = 3.141592653589793238;
+
+/* Modes asked for at a time, and kept of a search. */
+enum { AT_ONCE = 4, MOST_KEPT = 16, MOST_STEPS = 60 };
+
+/* A search goes on above what it has seen by this factor of k0²: less than 2, so that the solutions
+ * at k0 = 0, which hold no field, stay farther away than any missed mode. */
+static const double STEP = 1.5;
+
+/* Two modes of one channel differ by more than this in k0². */
+static const double SAME = 1e-7;
+
+/* Waves that differ by a lateral node have a likeness near 0. Edges of one stop band have one near
+ * 1, less where the short one lies at the light line and reaches far out: 0.4 was met. */
+static const double ALIKE = 0.2;
+
+typedef struct search {
+  const pk_channel_survey *survey;
+  pk_channel_level *level;
+  int harmonics;
+  double k;
+  int count;
+  pk_channel_mode mode[MOST_KEPT]; /* by rising k0² */
+} search;
+
+bool pk_channel_is_alike(const pk_channel_survey *s, const pk_channel_level *level,
+                         const double complex *e) {
+  pk_channel_looks looks;
+  pk_channel_look(level->channel, e, &looks);
+  return (looks.ex_share > 0.5) == (s->polarization == PK_HY);
+}
+
+double pk_channel_likeness(const pk_channel_level *level, int harmonics, const double complex *a,
+                           const double complex *b) {
+  int64_t n = pk_channel_size(level->channel);
+  int step = 2 * harmonics + 2;
+  double complex both = 0;
+  double aa = 0, bb = 0;
+  for (int64_t i = harmonics + 1; i < n; i += step) {
+    both += conj(a[i]) * b[i];
+    aa += creal(a[i] * conj(a[i]));
+    bb += creal(b[i] * conj(b[i]));
+  }
+  return creal(both * conj(both)) / (aa * bb);
+}
+
+static void clear(search *s) {
+  pk_channel_modes_clear(s->level->context, s->count, s->mode);
+  s->count = 0;
+}
+
+/* Takes over a mode that is new and of the polarization. */
+static void keep(search *s, pk_channel_mode *mode) {
+  double square = creal(mode->k0_square);
+  bool seen = s->count == MOST_KEPT;
+  for (int i = 0; i < s->count; i++) {
+    seen = seen || fabs(creal(s->mode[i].k0_square) - square) < SAME * square;
+  }
+  if (seen || !pk_channel_is_alike(s->survey, s->level, mode->right)) {
+    return;
+  }
+  int at = s->count++;
+  for (; at > 0 && creal(s->mode[at - 1].k0_square) > square; at--) {
+    s->mode[at] = s->mode[at - 1];
+  }
+  s->mode[at] = *mode;
+  *mode = (pk_channel_mode){0};
+}
+
+/* Modes nearest to a value of k0²; *covered is the highest value below which none is missed. */
+static picket_status look_at(search *s, double shift, double least, double *covered) {
+  picket_context *context = s->level->context;
+  pk_channel_mode found[AT_ONCE] = {{0}};
+  int count = 0;
+  picket_status status =
+      pk_channel_modes_at_k(s->level->channel, s->k, shift, AT_ONCE, NULL, found, &count);
+  if (status == PICKET_ERROR_NUMERIC) {
+    pk_message_clear(context);
+    status = PICKET_OK;
+    count = 0;
+  }
+  double reach = 0;
+  for (int i = 0; status == PICKET_OK && i < count; i++) {
+    double square = creal(found[i].k0_square);
+    reach = fmax(reach, cabs(found[i].k0_square - shift));
+    if (square > least) {
+      keep(s, &found[i]);
+    }
+  }
+  pk_channel_modes_clear(context, count, found);
+  *covered = shift + (count > 0 ? reach : shift * (STEP - 1));
+  return status;
+}
+
+/* The partner of the lowest mode, or -1. */
+static int partner_of(const search *s, int first) {
+  for (int i = first + 1; i < s->count; i++) {
+    double likeness =
+        pk_channel_likeness(s->level, s->harmonics, s->mode[first].right, s->mode[i].right);
+    if (likeness > ALIKE) {
+      return i;
+    }
+  }
+  return -1;
+}
+
+picket_status pk_channel_pair_search(const pk_channel_survey *survey, pk_channel_level *level,
+                                     int harmonics, double most, pk_channel_pair *out) {
+  search s = {.survey = survey, .level = level, .harmonics = harmonics};
+  s.k = PI / survey->problem->channel.pitch_um;
+  double least = s.k * s.k / (survey->section.top * survey->section.top);
+  picket_status status = PICKET_OK;
+  double shift = least, covered = least;
+  int second = -1;
+  for (int i = 0; status == PICKET_OK && i < MOST_STEPS && covered < most * most; i++) {
+    status = look_at(&s, shift, 0.5 * least, &covered);
+    second = status == PICKET_OK && s.count > 1 ? partner_of(&s, 0) : -1;
+    if (second >= 0) {
+      break;
+    }
+    shift = fmin(covered * (1 + 0.5 * (STEP - 1)), most * most);
+    shift = fmax(shift, covered);
+  }
+  *out = (pk_channel_pair){.known = {true, true}};
+  for (int e = 0; status == PICKET_OK && e < 2; e++) {
+    int i = e == PK_LONG ? (s.count > 0 ? 0 : -1) : second;
+    double k0 = i >= 0 ? sqrt(creal(s.mode[i].k0_square)) : NAN;
+    out->found[e] = k0 < most;
+    out->k0[e] = out->found[e] ? k0 : NAN;
+  }
+  clear(&s);
+  return status;
+}
+
+/* The two kept modes that lie nearest to a guess and belong together; or the one. */
+static bool choose(const search *s, const pk_channel_pair *guess, int chosen[2]) {
+  double best = INFINITY;
+  bool both = guess->found[PK_LONG] && guess->found[PK_SHORT];
+  int only = guess->found[PK_LONG] ? PK_LONG : PK_SHORT;
+  for (int i = 0; i < s->count; i++) {
+    double first = sqrt(creal(s->mode[i].k0_square));
+    double away = fabs(first - guess->k0[both ? PK_LONG : only]);
+    if (!both && away < best) {
+      best = away;
+      chosen[only] = i;
+    }
+    for (int j = i + 1; both && j < s->count; j++) {
+      double other = fabs(sqrt(creal(s->mode[j].k0_square)) - guess->k0[PK_SHORT]);
+      if (away + other < best &&
+          pk_channel_likeness(s->level, s->harmonics, s->mode[i].right, s->mode[j].right) > ALIKE) {
+        best = away + other;
+        chosen[PK_LONG] = i;
+        chosen[PK_SHORT] = j;
+      }
+    }
+  }
+  return isfinite(best);
+}
+
+/* The mode with the media at its own frequency. */
+static picket_status settle(search *s, int i, pk_channel_mode *mode, bool *known) {
+  if (!s->level->media.dispersive && !s->level->media.clamped) {
+    *mode = s->mode[i];
+    s->mode[i].right = s->mode[i].left = NULL;
+    return PICKET_OK;
+  }
+  return pk_channel_mode_near_k0(s->level->channel, &s->level->media, s->k,
+                                 sqrt(creal(s->mode[i].k0_square)), s->mode[i].right, mode, known);
+}
+
+static picket_status settle_pair(search *s, const pk_channel_pair *guess, pk_channel_mode *modes,
+                                 pk_channel_pair *out) {
+  int chosen[2] = {-1, -1};
+  if (!choose(s, guess, chosen)) {
+    return pk_fail(s->level->context, PICKET_ERROR_NUMERIC,
+                   "the edges of the stop band were not recognised near %.6g/µm",
+                   guess->k0[PK_LONG]);
+  }
+  picket_status status = PICKET_OK;
+  for (int e = 0; status == PICKET_OK && e < 2; e++) {
+    out->found[e] = chosen[e] >= 0;
+    out->known[e] = true;
+    out->k0[e] = NAN;
+    if (chosen[e] < 0) {
+      continue;
+    }
+    pk_channel_mode mode = {0};
+    status = settle(s, chosen[e], &mode, &out->known[e]);
+    if (status == PICKET_OK) {
+      out->k0[e] = creal(csqrt(mode.k0_square));
+    }
+    if (status == PICKET_OK && modes) {
+      modes[e] = mode;
+    } else {
+      pk_channel_modes_clear(s->level->context, 1, &mode);
+    }
+  }
+  return status;
+}
+
+picket_status pk_channel_pair_near(const pk_channel_survey *survey, pk_channel_level *level,
+                                   int harmonics, const pk_channel_pair *guess,
+                                   pk_channel_mode *modes, pk_channel_pair *out) {
+  search s = {.survey = survey, .level = level, .harmonics = harmonics};
+  s.k = PI / survey->problem->channel.pitch_um;
+  double sum = 0, count = 0, covered = 0;
+  for (int e = 0; e < 2; e++) {
+    sum += guess->found[e] ? guess->k0[e] : 0;
+    count += guess->found[e] ? 1 : 0;
+  }
+  double middle = sum / count;
+  picket_status status = pk_channel_media_set(&level->media, middle, level->channel);
+  if (status == PICKET_OK) {
+    status = look_at(&s, middle * middle, 0, &covered);
+  }
+  pk_channel_pair found = {0};
+  if (status == PICKET_OK) {
+    status = settle_pair(&s, guess, modes, &found);
+  }
+  clear(&s);
+  if (status == PICKET_OK) {
+    *out = found;
+  }
+  return status;
+}
