@@ -10,6 +10,7 @@
 #include <picket/edges.h>
 #include <picket/field.h>
 #include <picket/index.h>
+#include <picket/match.h>
 #include <picket/modes.h>
 #include <picket/options.h>
 #include <picket/problem.h>

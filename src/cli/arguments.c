@@ -15,6 +15,7 @@ typedef enum option_kind {
   OPTION_FIELDS,
   OPTION_SET,
   OPTION_SWEEP,
+  OPTION_MATCH, /* of match_option.c */
   OPTION_QUIET,
   OPTION_VERBOSE,
   OPTION_HELP,
@@ -41,6 +42,13 @@ static const option OPTIONS[] = {
     {"figure", OPTION_LATER, NULL},
     {"fields", OPTION_FIELDS, "a file name"},
     {"sweep", OPTION_SWEEP, "PATH=FROM:TO:COUNT"},
+    {"mode", OPTION_MATCH, "a number"},
+    {"mode-b", OPTION_MATCH, "a number"},
+    {"gaussian-um", OPTION_MATCH, "a diameter"},
+    {"along", OPTION_MATCH, "x or y"},
+    {"medium-index", OPTION_MATCH, "a number"},
+    {"offset-nm", OPTION_MATCH, "X,Y"},
+    {"tilt-deg", OPTION_MATCH, "X,Y"},
 };
 enum { OPTION_COUNT = sizeof OPTIONS / sizeof OPTIONS[0], NAME_LENGTH = 40 };
 
@@ -122,6 +130,7 @@ static int apply(pk_arguments *a, const option *o, const char *value) {
     case OPTION_VERSION: a->version = true; break;
     case OPTION_SET: return add_set(a, value);
     case OPTION_SWEEP: return pk_sweep_parse(&a->sweep, value);
+    case OPTION_MATCH: return pk_match_option(&a->match, o->name, value);
     case OPTION_NUMBER: return set_number(a, o->name, value);
     case OPTION_LATER:
       return pk_complain(PK_EXIT_WRONG, "--%s is not in this version (%s)", o->name,
@@ -178,9 +187,13 @@ static int parse_word(pk_arguments *a, const char *word) {
   if (!a->command) {
     return set_command(a, word);
   }
+  if (a->file && pk_is_match(a->command) && !a->match.file) {
+    a->match.file = word;
+    return PK_EXIT_DONE;
+  }
   if (a->file) {
-    return pk_complain(PK_EXIT_WRONG, "\"%.100s\" is one file too many: picket %s takes one", word,
-                       a->command->name);
+    return pk_complain(PK_EXIT_WRONG, "\"%.100s\" is one file too many: picket %s takes %s", word,
+                       a->command->name, pk_is_match(a->command) ? "two" : "one");
   }
   a->file = word;
   return PK_EXIT_DONE;
@@ -237,6 +250,14 @@ static int check_whole(const pk_arguments *a) {
   if (status != PK_EXIT_DONE) {
     return status;
   }
+  int match = pk_match_check(a);
+  if (match != PK_EXIT_DONE) {
+    return match;
+  }
+  if (is_same_file(a->match.file, a->csv)) {
+    return pk_complain(PK_EXIT_WRONG, "%s is a problem file; name another file for the answer",
+                       a->csv);
+  }
   if (is_same_file(a->file, a->csv) || is_same_file(a->file, a->fields)) {
     return pk_complain(PK_EXIT_WRONG, "%s is the problem file; name another file for the answer",
                        a->file);
@@ -250,6 +271,7 @@ static int check_whole(const pk_arguments *a) {
 int pk_arguments_parse(int argc, char **argv, pk_arguments *out) {
   *out = (pk_arguments){0};
   picket_options_init(&out->options);
+  pk_match_words_init(&out->match);
   out->options.jobs = PK_USUAL_JOBS;
   out->sets = calloc((size_t)argc + 1, sizeof *out->sets);
   if (!out->sets) {

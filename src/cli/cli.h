@@ -30,6 +30,13 @@ typedef struct pk_sweep_words {
   double *values; /* [count], owned */
 } pk_sweep_words;
 
+/* What picket match is asked besides its first file. */
+typedef struct pk_match_words {
+  const char *given; /* the last of its options, or null */
+  const char *file;  /* the second file, or null */
+  picket_match_request request;
+} pk_match_words;
+
 typedef struct pk_arguments {
   const pk_command *command; /* null with --version and --help alone */
   const char *file;          /* null until given; "-" is standard input */
@@ -38,6 +45,7 @@ typedef struct pk_arguments {
   const char *resume; /* a journal, or null */
   const char *fields; /* an HDF5 file of mode fields, or null */
   pk_sweep_words sweep;
+  pk_match_words match;
   picket_options options;
   int set_count;
   const char **sets; /* [set_count] KEY=VALUE, borrowed from argv; the array is owned */
@@ -61,6 +69,7 @@ void pk_edges_print(const pk_arguments *arguments, const picket_result *result);
 void pk_bands_print(const pk_arguments *arguments, const picket_result *result);
 void pk_index_print(const pk_arguments *arguments, const picket_result *result);
 void pk_modes_print(const pk_arguments *arguments, const picket_result *result);
+void pk_match_print(const pk_arguments *arguments, const picket_result *result);
 void pk_slab_print(const pk_arguments *arguments, const picket_result *result);
 picket_status pk_check_find(picket_problem *problem, const picket_options *options,
                             picket_result **out);
@@ -82,6 +91,20 @@ bool pk_sweep_question(const pk_command *command, picket_question *out);
 /* The sweep of the arguments, with their journal. */
 picket_status pk_sweep_ask(const pk_arguments *arguments, picket_problem *problem,
                            picket_result **out);
+
+/* ---- match_option.c ---- */
+
+void pk_match_words_init(pk_match_words *words);
+/* One option of picket match; an exit status, complains. */
+int pk_match_option(pk_match_words *words, const char *name, const char *text);
+/* Whether what was given fits together, for any command. */
+int pk_match_check(const pk_arguments *arguments);
+bool pk_is_match(const pk_command *command);
+/* Stands in the table of commands; the question is asked by pk_match_ask. */
+picket_status pk_match_find(picket_problem *problem, const picket_options *options,
+                            picket_result **out);
+picket_status pk_match_ask(const pk_arguments *arguments, picket_context *context,
+                           picket_problem *problem, picket_result **out);
 
 /* ---- help.c ---- */
 

@@ -28,6 +28,20 @@ static void print_options(void) {
       "  --help           this text, or that of a command\n\n");
 }
 
+static void print_match(void) {
+  printf(
+      "Options of match (first file: mode A; second file or beam: B; --set changes the first):\n"
+      "  --mode N         order of mode A by falling index, usually 0\n"
+      "  --mode-b N       of mode B; usually the better of the two of highest index\n"
+      "  --gaussian-um W  or WX,WY: no second file but a beam of this mode-field diameter (1/e2 "
+      "of\n"
+      "                   its intensity), its front flat where the two meet\n"
+      "  --along x        or y: the beam's E; usually whichever couples more\n"
+      "  --medium-index N of the medium the beam comes from, for its tilt; usually the cladding\n"
+      "  --offset-nm X,Y  B against A; usually none, and the best offset is sought too\n"
+      "  --tilt-deg X,Y   B leans towards +x, +y, -30 to 30\n\n");
+}
+
 static void print_status(void) {
   printf(
       "Exit status: 0 done; 1 the numbers could not be obtained to the accuracy asked (what there\n"
@@ -55,9 +69,12 @@ void pk_help_print(const pk_arguments *arguments) {
     print_tool();
     return;
   }
-  printf("picket %s: %s\n\nUsage: picket %s [OPTIONS] FILE.yaml     (- reads standard input)\n",
-         c->name, c->answers, c->name);
+  printf("picket %s: %s\n\nUsage: picket %s [OPTIONS] FILE.yaml%s     (- reads standard input)\n",
+         c->name, c->answers, c->name, pk_is_match(c) ? " [SECOND.yaml]" : "");
   printf("Needs in the file: %s\n\n", c->needs);
+  if (pk_is_match(c)) {
+    print_match();
+  }
   print_options();
   print_status();
 }

@@ -24,7 +24,8 @@ const pk_command pk_commands[] = {
     {"aim", "the dimension that meets a target, with its bar and what a mask makes of it",
      "aim, and a cell or a section", picket_aim_find, pk_aim_print},
     {"tolerance", NULL, NULL, NULL, NULL},
-    {"match", NULL, NULL, NULL, NULL},
+    {"match", "what a mode of a section shares with a Gaussian beam, or a mode of a second section",
+     "section, light; a second file needs section", pk_match_find, pk_match_print},
     {"taper", NULL, NULL, NULL, NULL},
     {"report", NULL, NULL, NULL, NULL},
     {"start", NULL, NULL, NULL, NULL},
@@ -77,7 +78,11 @@ static int deliver(const pk_arguments *a, picket_context *context, picket_result
   return file_status != PK_EXIT_DONE ? file_status : status;
 }
 
-static picket_status ask(const pk_arguments *a, picket_problem *problem, picket_result **out) {
+static picket_status ask(const pk_arguments *a, picket_context *context, picket_problem *problem,
+                         picket_result **out) {
+  if (pk_is_match(a->command)) {
+    return pk_match_ask(a, context, problem, out);
+  }
   if (a->sweep.path) {
     return pk_sweep_ask(a, problem, out);
   }
@@ -93,7 +98,7 @@ static picket_status ask(const pk_arguments *a, picket_problem *problem, picket_
 static int ask_and_deliver(const pk_arguments *a, picket_context *context, picket_problem *problem,
                            pk_csv_file *csv) {
   picket_result *result = NULL;
-  picket_status found = ask(a, problem, &result);
+  picket_status found = ask(a, context, problem, &result);
   pk_session_quiet();
   int status = PK_EXIT_DONE;
   if (found != PICKET_OK) {

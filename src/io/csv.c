@@ -244,6 +244,31 @@ static void write_modes(sheet *s, const picket_result *result) {
   }
 }
 
+static void write_coupling(sheet *s, const picket_coupling *c) {
+  put_quantity(s, c->share, 1);
+  put_quantity(s, c->share_db, 1);
+  put_quantity(s, c->offset_x_um, PK_NM_OF_UM);
+  put_quantity(s, c->offset_y_um, PK_NM_OF_UM);
+}
+
+static void write_match(sheet *s, const picket_result *result) {
+  static const char *const header[] = {PK_CSV_MATCH, NULL};
+  put_header(s, header);
+  end_row(s);
+  for (int p = 0; p < result->match->point_count; p++) {
+    const picket_match_point *point = &result->match->points[p];
+    put_number(s, PK_NM_OF_UM * point->wavelength_um);
+    put_number(s, result->match->request.mode);
+    put_number(s, point->mode_b < 0 ? NAN : point->mode_b);
+    put_quantity(s, point->index, 1);
+    put_quantity(s, point->index_b, 1);
+    write_coupling(s, &point->coupling);
+    write_coupling(s, &point->best);
+    put_text(s, point->note);
+    end_row(s);
+  }
+}
+
 /* Columns of an index row besides polarization, wavelength, order and what follows the regime. */
 static const picket_quantity *index_quantity(const picket_bloch_mode *mode, int i) {
   const picket_quantity *const all[] = {&mode->bloch_index,
@@ -340,6 +365,7 @@ picket_status pk_csv_write(const picket_result *result, char **out) {
       [PK_RESULT_SLAB] = write_slab,
       [PK_RESULT_INDEX] = write_index,
       [PK_RESULT_MODES] = write_modes,
+      [PK_RESULT_MATCH] = write_match,
       [PK_RESULT_SUMMARY] = write_summary,
       [PK_RESULT_AIM] = pk_csv_aim,
       [PK_RESULT_EDGE_DERIVATIVES] = write_edge_derivatives,

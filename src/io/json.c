@@ -284,6 +284,49 @@ static json_t *modes_answer(const void *user, int i) {
   return finish(object, good);
 }
 
+/* ---- match ---- */
+
+static json_t *coupling(const picket_coupling *c) {
+  json_t *object = json_object();
+  bool good = put(object, "share", quantity(c->share, 1)) &&
+              put(object, "share_db", quantity(c->share_db, 1)) &&
+              put(object, "offset_x_nm", quantity(c->offset_x_um, PK_NM_OF_UM)) &&
+              put(object, "offset_y_nm", quantity(c->offset_y_um, PK_NM_OF_UM));
+  return finish(object, good);
+}
+
+static json_t *match_point(const void *user, int i) {
+  const picket_match_point *point = (const picket_match_point *)user + i;
+  static const char *const along[] = {NULL, "x", "y"};
+  json_t *object = json_object();
+  bool good =
+      put(object, "wavelength_nm", number(PK_NM_OF_UM * point->wavelength_um)) &&
+      put(object, "coupling", coupling(&point->coupling)) &&
+      put(object, "best", coupling(&point->best)) &&
+      put(object, "index", quantity(point->index, 1)) &&
+      put(object, "index_b", quantity(point->index_b, 1)) &&
+      put(object, "mode_b", point->mode_b < 0 ? json_null() : json_integer(point->mode_b)) &&
+      put(object, "along", text(along[point->along])) &&
+      (!point->note || put(object, "note", text(point->note)));
+  return finish(object, good);
+}
+
+static json_t *match_answer(const void *user, int i) {
+  const picket_match_answer *answer = ((const picket_result *)user)->match + i;
+  const picket_match_request *r = &answer->request;
+  double beam = r->gaussian_x_um > 0 ? 1 : NAN; /* null without one */
+  json_t *object = json_object();
+  bool good = put(object, "with", text(answer->with ? answer->with : "gaussian")) &&
+              put(object, "mode", json_integer(r->mode)) &&
+              put(object, "gaussian_x_um", number(beam * r->gaussian_x_um)) &&
+              put(object, "gaussian_y_um", number(beam * r->gaussian_y_um)) &&
+              put(object, "tilt_x_deg", number(PK_DEGREES * r->tilt_x_rad)) &&
+              put(object, "tilt_y_deg", number(PK_DEGREES * r->tilt_y_rad)) &&
+              put(object, "limits", text(PK_MATCH_LIMITS)) &&
+              put(object, "points", array(answer->point_count, match_point, answer->points));
+  return finish(object, good);
+}
+
 /* ---- index ---- */
 
 static json_t *radiated_order(const void *user, int i) {
@@ -393,6 +436,7 @@ static const writer WRITER[] = {
     [PK_RESULT_SLAB] = {"slab", slab_answer},
     [PK_RESULT_INDEX] = {"index", index_answer},
     [PK_RESULT_MODES] = {"modes", modes_answer},
+    [PK_RESULT_MATCH] = {"match", match_answer},
     [PK_RESULT_SUMMARY] = {"check", summary_item},
     [PK_RESULT_AIM] = {"aim", pk_json_aim},
     [PK_RESULT_EDGE_DERIVATIVES] = {"edge derivatives", edge_derivatives},

@@ -11,7 +11,7 @@
 enum { CORNERS = PK_CLIMB_VARIABLES + 1, MOST_MOVES = 200, ROUNDS = 2 };
 
 /* Heights near a summit are flat: places closer than this part of a stride can't be told apart. */
-static const double NEAR = 1e-6;
+static const double NEAR = 1e-5;
 static const double SECOND_ROUND = 0.05; /* its strides */
 
 typedef struct simplex {

@@ -8,8 +8,9 @@
  * the plane joins two media is not counted.
  *
  * Each integral runs over the grid that its E lives on, where the jumps of E lie on lines or in
- * middles as they should; h, which has none, is interpolated there by cubics. Two fields of one
- * grid are taken at their own places, so that the overlap of a mode with itself is 1 to rounding.
+ * middles as they should; h, which has none, is interpolated there by cubics. Where h
+ * is finer, E is continued from its places by its slope. Two fields of one grid are taken at their
+ * own places, so that the overlap of a mode with itself is 1 to rounding.
  */
 #ifndef PK_SECTION_OVERLAP_H
 #define PK_SECTION_OVERLAP_H
@@ -35,9 +36,9 @@ typedef struct pk_overlap {
   picket_context *context;
   const pk_section_whole *a, *b; /* borrowed */
   double complex a_power, b_power;
-  double a_field;                     /* ∫|h_t|² of a */
-  struct pk_overlap_stencil *stencil; /* [rows] */
-  double complex *column, *phase;     /* [rows] */
+  double a_field;                      /* ∫|h_t|² of a */
+  struct pk_overlap_sample *sample[2]; /* along x, y */
+  double complex *column, *phase;      /* [rows] */
 } pk_overlap;
 
 /* b: null if only beams are to be met. pk_overlap_close. */

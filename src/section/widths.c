@@ -64,6 +64,16 @@ static void take_moments(const pk_section_whole *w, pk_section_widths *out, doub
   out->rms = sqrt(8 * (variance[0] + variance[1]));
 }
 
+void pk_section_centre(const pk_section_whole *w, double centroid[2], double rms_along[2]) {
+  pk_section_widths moments = {0};
+  double peak;
+  take_moments(w, &moments, &peak);
+  for (int axis = 0; axis < 2; axis++) {
+    centroid[axis] = moments.centroid[axis];
+    rms_along[axis] = moments.rms_along[axis];
+  }
+}
+
 /* --- Slopes ----------------------------------------------------------------------------------- */
 
 /* Samples of a component along an axis. */

@@ -26,6 +26,9 @@ typedef struct pk_section_widths {
   double centroid[2];
 } pk_section_widths;
 
+/* The centroid of S_z and 4σ about it, along x and y. */
+void pk_section_centre(const pk_section_whole *whole, double centroid[2], double rms_along[2]);
+
 picket_status pk_section_widths_take(const pk_section_whole *whole, pk_section_widths *out);
 
 #endif

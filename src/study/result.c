@@ -108,6 +108,13 @@ static void free_modes(picket_context *context, int count, picket_modes_answer *
   pk_free(context, answers);
 }
 
+static void free_match(picket_context *context, int count, picket_match_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    pk_free(context, (void *)answers[i].points);
+  }
+  pk_free(context, answers);
+}
+
 static void free_index(picket_context *context, int count, picket_index_answer *answers) {
   for (int i = 0; answers && i < count; i++) {
     picket_index_point *points = (picket_index_point *)answers[i].points;
@@ -163,6 +170,7 @@ void pk_result_free(picket_result *result) {
   free_bands(context, result->count, result->bands);
   free_slab(context, result->count, result->slab);
   free_modes(context, result->count, result->modes);
+  free_match(context, result->count, result->match);
   free_index(context, result->count, result->index);
   free_derivatives(result);
   free_summary(result);

@@ -8,6 +8,7 @@
 #include <picket/derivative.h>
 #include <picket/edges.h>
 #include <picket/index.h>
+#include <picket/match.h>
 #include <picket/modes.h>
 #include <picket/slab.h>
 
@@ -22,7 +23,8 @@ typedef enum pk_result_kind {
   PK_RESULT_INDEX,
   PK_RESULT_EDGE_DERIVATIVES,
   PK_RESULT_INDEX_DERIVATIVES,
-  PK_RESULT_SUMMARY
+  PK_RESULT_SUMMARY,
+  PK_RESULT_MATCH
 } pk_result_kind;
 
 /* One line of a summary: a dotted name, and a number with a unit or a text. */
@@ -46,6 +48,7 @@ struct picket_result {
   picket_aim_answer *aim;
   picket_slab_answer *slab;
   picket_modes_answer *modes;
+  picket_match_answer *match;
   picket_index_answer *index;
   picket_edge_derivatives *edge_derivatives;
   picket_index_derivatives *index_derivatives;

@@ -16,6 +16,10 @@ picket_status pk_study_slab(const pk_problem *problem, const picket_options *opt
                             picket_result **out);
 picket_status pk_study_modes(const pk_problem *problem, const picket_options *options,
                              picket_result **out);
+/* `other` null: a beam. The request has been checked. */
+picket_status pk_study_match(const pk_problem *problem, const pk_problem *other,
+                             const picket_match_request *request, const picket_options *options,
+                             picket_result **out);
 picket_status pk_study_index(const pk_problem *problem, const picket_options *options,
                              picket_result **out);
 picket_status pk_study_summary(const pk_problem *problem, picket_result **out);

@@ -4,8 +4,8 @@ import unittest
 
 import tool
 
-COMMANDS = ('check', 'edges', 'bands', 'index', 'modes', 'slab')
-LATER = ('tolerance', 'match', 'taper', 'report', 'start')
+COMMANDS = ('check', 'edges', 'bands', 'index', 'modes', 'slab', 'match')
+LATER = ('tolerance', 'taper', 'report', 'start')
 
 
 class CommandLine(tool.ToolTest):
