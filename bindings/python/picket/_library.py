@@ -82,6 +82,7 @@ FUNCTIONS = {
     'picket_problem_free': (None, Object),
     # result.h, summary.h
     'picket_regime_name': (Text, Int),
+    'picket_polarization_name': (Text, Int),
     'picket_result_complete': (Bool, Object),
     'picket_result_shortfall': (Text, Object),
     'picket_result_json': (Text, Object),

@@ -32,9 +32,12 @@ class _Word(enum.IntEnum):
 
 
 class Polarization(_Word):
-    """Of a cell, by the field normal to the drawing."""
+    """Of a cell, by the field normal to the drawing; of a channel, by the larger transverse electric component, in
+    y (tm-like) or in x (te-like)."""
     EY = 0
     HY = 1
+    TM_LIKE = 2
+    TE_LIKE = 3
 
 
 class SlabPolarization(_Word):
@@ -355,6 +358,8 @@ class SectionMode:
     """dβ/dk0, material dispersion included"""
     loss_db_per_cm: Quantity
     """of power: absorption and leakage"""
+    bend_loss_db_per_90_deg: Quantity
+    """loss_db_per_cm over a quarter turn of a bend; NaN without a note where it is straight"""
     effective_area_um2: Quantity
     """(∫S_z dA)² / ∫S_z² dA, µm²"""
     diameters: ModeDiameters

@@ -278,12 +278,15 @@ def test_every_status_has_a_class():
     assert len(kinds) == len(picket.Status) - 1 and picket.PicketError not in kinds
     unknown = picket.errors.error(-99, 'of a later version')
     assert type(unknown) is picket.PicketError and unknown.status == -99
+    for words, name in ((picket.Polarization, 'polarization'), (picket.Regime, 'regime')):
+        for member in words:
+            assert getattr(picket._lib, f'picket_{name}_name')(member).decode() == member.word
     for status in picket.Status:
         assert picket._lib.picket_status_name(status).decode() == f'PICKET_{status.name}'
 
 
 def test_words_that_are_no_polarization(mirror):
-    with pytest.raises(ValueError, match="polarization is 'te', must be one of 'ey', 'hy'"):
+    with pytest.raises(ValueError, match="polarization is 'te', must be one of 'ey', 'hy', 'tm-like', 'te-like'"):
         mirror.field('te', 1.4)
     with mirror.field('ey', 1.4) as field, pytest.raises(KeyError):
         field['Fx']
