@@ -58,7 +58,8 @@ class SweepRequest(ctypes.Structure):
 
 
 # Structs with a size stamp, by their init functions; compared when the library is loaded.
-STAMPED = {'picket_context_options_init': ContextOptions, 'picket_sweep_request_init': SweepRequest}
+STAMPED = {'picket_context_options_init': ContextOptions, 'picket_sweep_request_init': SweepRequest,
+           'picket_match_request_init': records.MatchRequest.C}
 
 FUNCTIONS = {
     # context.h, status.h
@@ -104,7 +105,8 @@ FUNCTIONS = {
     # index.h, modes.h, besides what every study has
     'picket_index_find_resumable': (Status, Object, Object, Text, Out),
     'picket_modes_find_resumable': (Status, Object, Object, Text, Out),
-    # sweep.h
+    # match.h, sweep.h
+    'picket_match_request_init': (None, Object),
     'picket_sweep_request_init': (None, Object),
     'picket_sweep_spread': (Status, Double, Double, Int, Doubles),
     'picket_sweep_find': (Status, Object, Object, Object, Out),
@@ -120,6 +122,7 @@ STUDIES = {
     'slab': (records.SlabAnswer,),
     'modes': (records.ModesAnswer,),
     'aim': (records.AimAnswer,),
+    'match': (records.MatchAnswer,),
     'edge_derivatives': (records.EdgeDerivatives, Text),
     'index_derivatives': (records.IndexDerivatives, Text),
 }
@@ -128,6 +131,7 @@ for _study, (_answer, *_before) in STUDIES.items():
     FUNCTIONS[f'picket_{_study}_find'] = (Status, Object, *_before, Object, Out)
     FUNCTIONS[f'picket_{_study}_count'] = (Int, Object)
     FUNCTIONS[f'picket_{_study}_get'] = (Status, Object, Int, Object)
+FUNCTIONS['picket_match_find'] = (Status, Object, Object, Object, Object, Out)
 
 
 # --- Finding and checking it -------------------------------------------------------------------------

@@ -12,10 +12,11 @@ import numpy as np
 from ._library import lib, stamped
 from ._text import flow, is_number
 from .context import Context, Owned, ProgressCallable
+from .errors import ArgumentError, Status
 from .field import Field
 from .options import packed
-from .records import (AimAnswer, BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, ModesAnswer,
-                      Polarization, Question, SlabAnswer)
+from .records import (AimAnswer, BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, MatchAlong, MatchAnswer,
+                      ModesAnswer, Polarization, Question, SlabAnswer)
 from .result import Result, Summary
 
 Path = Union[str, 'os.PathLike[str]']
@@ -153,6 +154,33 @@ class Problem(Owned):
         """The value of `aim.vary` between its bounds at which `aim.quantity` meets `aim.target`, for each polarization
         of `light` or each family of modes. That there is none is an outcome: `found` is False, `reason` says why."""
         return self._study('aim', progress=progress, options=options)
+
+    def match(self, other: Optional[Problem] = None, *, gaussian_um: Union[float, tuple[float, float], None] = None,
+              mode: int = 0, mode_b: int = -1, along: Union[MatchAlong, str] = MatchAlong.BEST,
+              medium_index: float = 0, offset_um: Optional[tuple[float, float]] = None,
+              tilt_rad: tuple[float, float] = (0, 0), progress: Optional[ProgressCallable] = None,
+              **options: float) -> Result[MatchAnswer]:
+        """Share of the power that goes from a mode of a second section, or a Gaussian beam, into a mode of the
+        `section`, at each wavelength of `light`.
+
+        other         a problem of the same context, or this one
+        gaussian_um   instead of it: the beam's mode-field diameter, or those along x and y, µm
+        mode, mode_b  orders by falling index; mode_b -1: the one of the first two that couples more
+        along         E of the beam: 'x', 'y' or 'best'
+        medium_index  of the medium the beam comes from, for its tilt; 0: that of the cladding
+        offset_um     (x, y) of the other side, µm; None: as the files have it, and the best is sought too
+        tilt_rad      the other side leans towards +x, +y"""
+        request = stamped('picket_match_request_init')
+        request.mode, request.mode_b, request.along = mode, mode_b, MatchAlong.of(along)
+        request.medium_index = medium_index
+        if gaussian_um is not None:
+            request.gaussian_x_um, request.gaussian_y_um = np.broadcast_to(gaussian_um, 2)
+        if offset_um is not None:
+            request.offset_given, (request.offset_x_um, request.offset_y_um) = 1, offset_um
+        request.tilt_x_rad, request.tilt_y_rad = tilt_rad
+        if other is not None and other.context is not self.context:
+            raise ArgumentError('the other problem is of another context, must be of the same', Status.ERROR_ARGUMENT)
+        return self._study('match', other, ctypes.byref(request), progress=progress, options=options)
 
     def edge_derivatives(self, path: str, *, progress: Optional[ProgressCallable] = None,
                          **options: float) -> Result[EdgeDerivatives]:

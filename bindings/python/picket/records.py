@@ -358,8 +358,6 @@ class SectionMode:
     """dβ/dk0, material dispersion included"""
     loss_db_per_cm: Quantity
     """of power: absorption and leakage"""
-    bend_loss_db_per_90_deg: Quantity
-    """loss_db_per_cm over a quarter turn of a bend; NaN without a note where it is straight"""
     effective_area_um2: Quantity
     """(∫S_z dA)² / ∫S_z² dA, µm²"""
     diameters: ModeDiameters
@@ -489,6 +487,82 @@ class AimAnswer:
     snapped_smallest_feature_um: float
     snapped_respects_rules: int
     """as above, on the mask grid"""
+
+
+# --- match.h
+
+class MatchAlong(_Word):
+    """Of the E of a linearly polarized beam; best: whichever couples more."""
+    BEST = 0
+    ALONG_X = 1
+    ALONG_Y = 2
+
+    @property
+    def word(self):
+        return self.name.lower().replace('along_', '')
+
+
+@record('picket_match_request')
+class MatchRequest:
+    """What was asked of a match."""
+    size: int = stored(ctypes.c_size_t)
+    mode: int
+    """order of the mode of the first section, by falling index from 0"""
+    mode_b: int
+    """of the second section; -1: the one of its first two that couples more"""
+    gaussian_x_um: float
+    """mode-field diameters of the beam, 1/e² of the intensity; both 0: a second section"""
+    gaussian_y_um: float
+    along: MatchAlong
+    medium_index: float
+    """of the medium the beam comes from, for its tilt; 0: that of the cladding"""
+    offset_given: bool = stored(ctypes.c_int)
+    offset_x_um: float
+    """the other side against the first"""
+    offset_y_um: float
+    tilt_x_rad: float
+    """the other side leans towards +x, +y"""
+    tilt_y_rad: float
+
+
+@record('picket_coupling')
+class Coupling:
+    """A share of the power, and the same as 10 log10, at an offset."""
+    share: Quantity
+    """0 to 1"""
+    share_db: Quantity
+    """0 or less; missing where nothing is coupled"""
+    offset_x_um: Quantity
+    offset_y_um: Quantity
+
+
+@record('picket_match_point')
+class MatchPoint:
+    """The coupling at one wavelength."""
+    wavelength_um: float
+    coupling: Coupling
+    """at the offset given, or none"""
+    best: Coupling
+    """at the best offset; missing if one was given"""
+    index: Quantity
+    """of the first section's mode"""
+    index_b: Quantity
+    """of the second's; missing for a beam"""
+    mode_b: int
+    """the one taken; -1 for a beam"""
+    along: MatchAlong
+    """of the beam taken; BEST for a section"""
+    note: Optional[str]
+    """why the point has no numbers; None otherwise"""
+
+
+@record('picket_match_answer')
+class MatchAnswer:
+    """What two guides, or a guide and a beam, pass on at each wavelength."""
+    request: MatchRequest
+    other: Optional[str] = stored(name='with')
+    """name of the second problem; None for a beam"""
+    points: Tuple[MatchPoint, ...] = many('point_count', rows=True)
 
 
 # --- field.h

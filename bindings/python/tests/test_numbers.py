@@ -155,6 +155,34 @@ def test_aim():
     assert math.isnan(result['ey'].parts[0].value.value) and result.columns()['found'][0] == False  # noqa: E712
 
 
+def strip(width_nm=600, **cladding):
+    return {'light': {'wavelength_nm': 1550},
+            'materials': {'core': {'constant': {'index': HIGH}}, 'around': {'constant': {'index': LOW}}},
+            'section': {'cladding': 'around', 'shapes': [{'rect': {'fill': 'core', 'width_nm': width_nm,
+                                                                   'height_nm': 500}}]}}
+
+
+def test_match():
+    context = picket.Context()
+    wide, narrow = (picket.Problem(strip(w), context=context) for w in (700, 600))
+    share = [a.match(b, mode_b=0, offset_um=(0, 0), accuracy=1e-2)[0].points[0].coupling.share
+             for a, b in ((wide, narrow), (narrow, wide), (wide, wide))]
+    assert abs(share[0].value - share[1].value) <= share[0].uncertainty + share[1].uncertainty    # reciprocity
+    assert 0.9 < share[0].value < 1
+    assert abs(share[2].value - 1) <= share[2].uncertainty + 1e-12                                # with itself
+    [answer] = wide.match(gaussian_um=(1.0, 0.8), along='x', offset_um=(0.5, 0), accuracy=1e-2)
+    [point] = answer.points
+    assert answer.other is None and answer.request.gaussian_y_um == 0.8 and answer.request.offset_given
+    assert point.along.word == 'x' and point.mode_b == -1
+    [centred] = wide.match(gaussian_um=(1.0, 0.8), along='x', offset_um=(0, 0), accuracy=1e-2)[0].points
+    assert 0 < point.coupling.share.value < centred.coupling.share.value < 1
+    assert centred.coupling.share_db.value == pytest.approx(10 * math.log10(centred.coupling.share.value))
+    with pytest.raises(picket.ArgumentError, match='of another context'):
+        wide.match(picket.Problem(strip()))
+    with pytest.raises(picket.ArgumentError):
+        wide.match()
+
+
 def test_modes_of_a_section():
     # A film from wall to wall: between electric walls across x, E along x is uniform, so the section's first mode is
     # the film's te mode. Above and below the walls are 2 µm away, where that mode is down to exp(-16).

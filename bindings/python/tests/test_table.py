@@ -17,7 +17,7 @@ HEADERS = {path.name: re.sub(r'/\*.*?\*/', '', path.read_text(encoding='utf-8'),
            for path in sorted((INCLUDE / 'picket').glob('*.h'))}
 
 # Headers whose every function the binding has.
-BOUND = ('aim.h', 'bands.h', 'context.h', 'derivative.h', 'edges.h', 'field.h', 'index.h', 'modes.h', 'options.h',
+BOUND = ('aim.h', 'bands.h', 'context.h', 'derivative.h', 'edges.h', 'field.h', 'index.h', 'match.h', 'modes.h', 'options.h',
          'problem.h', 'result.h', 'slab.h', 'status.h', 'summary.h', 'sweep.h')
 
 ENUMERATIONS = {
@@ -133,6 +133,8 @@ def test_enumerators_have_the_numbers_of_c():
             for member in kind:
                 assert numbers[prefix + member.name] == member, prefix + member.name
                 seen.add(prefix + member.name)
+    for member in records.MatchAlong:
+        assert numbers['PICKET_MATCH_ALONG_' + member.word.upper()] == member
     for member in records.Polarization:
         assert numbers['PICKET_' + member.name] == member
     statuses = {name for name in numbers if name.startswith('PICKET_ERROR_')}
