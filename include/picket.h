@@ -16,6 +16,7 @@
 #include <picket/problem.h>
 #include <picket/quantity.h>
 #include <picket/result.h>
+#include <picket/section_field.h>
 #include <picket/slab.h>
 #include <picket/status.h>
 #include <picket/summary.h>

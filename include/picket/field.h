@@ -31,7 +31,7 @@ extern "C" {
 
 typedef struct picket_field picket_field;
 
-typedef enum picket_axis { PICKET_AXIS_Z = 0, PICKET_AXIS_X = 1 } picket_axis;
+typedef enum picket_axis { PICKET_AXIS_Z = 0, PICKET_AXIS_X = 1, PICKET_AXIS_Y = 2 } picket_axis;
 
 typedef enum picket_component {
   PICKET_COMPONENT_EX = 0,

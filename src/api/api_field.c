@@ -148,7 +148,7 @@ static picket_status miss(void *user, pk_polarization polarization, double wavel
 static picket_status write_fields(const pk_problem *problem, const picket_options *options,
                                   const char *path) {
   pk_field_file *file = NULL;
-  picket_status status = pk_field_file_open(problem->context, path, problem->name, &file);
+  picket_status status = pk_field_file_open(problem->context, path, problem->name, false, &file);
   if (status != PICKET_OK) {
     return status;
   }

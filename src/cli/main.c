@@ -117,7 +117,9 @@ static int ask_and_deliver(const pk_arguments *a, picket_context *context, picke
 /* Mode fields, on a grid of their own; before the answer, for a file that cannot be written is to
  * show before the work. */
 static int write_fields(const pk_arguments *a, picket_context *context, picket_problem *problem) {
-  picket_status written = picket_fields_write(problem, &a->options, a->fields);
+  picket_status written = a->command->find == picket_modes_find
+                              ? picket_section_fields_write(problem, &a->options, a->fields)
+                              : picket_fields_write(problem, &a->options, a->fields);
   pk_session_quiet();
   return written == PICKET_OK
              ? PK_EXIT_DONE

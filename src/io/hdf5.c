@@ -6,6 +6,10 @@
  *   /hy/1550nm/mode0/Hy ...    components [nz][nx], x fastest, with unit and description
  *   /hy/1550nm/mode0/permittivity, z_um [nz], x_um [nx]
  *
+ *   /section/1550nm/mode0      of a section instead: components [nx][ny], y fastest, on places of
+ *                              their own, permittivity_xx, _yy, _zz, x_lines_um, x_middles_um,
+ *                              y_lines_um, y_middles_um
+ *
  * Complex numbers are compounds {r, i} of doubles, which Python reads as complex. Numbers are
  * little endian and no times are kept, so the same fields give the same bytes. HDF5 puts the file
  * together in its own memory and the bytes are written here: a file of its own that cannot be
@@ -27,29 +31,12 @@
 
 #include "base/memory.h"
 #include "io/field_file.h"
+#include "io/field_text.h"
 #include "io/number.h"
 #include "io/write.h"
 
 enum { NAME_BYTES = 64, TRIES = 100, GROWTH = 1 << 20 /* of the file in memory, bytes */ };
 static const double TWO_PI = 6.283185307179586477;
-
-static const char WHAT[] =
-    "Fields of Bloch modes over one pitch of a segmented guide. Groups: polarization / vacuum "
-    "wavelength / mode. Datasets are [z][x] on the lines z_um, x_um and hold the periodic part.";
-static const char CONVENTIONS[] =
-    "Field at (z, x) = dataset * exp(i k_per_um z), z and x in micrometres, times exp(-i omega t). "
-    "z runs along the guide, x across, y out of the drawing; (z, x, y) are right-handed. The last "
-    "line along z repeats the first one of the next pitch. Lines outside reliable_x_um lie in "
-    "absorbing layers. E in V/m, H in A/m; permittivity is relative, the mean over the cell around "
-    "each node. On an interface the component of E normal to it is the mean of both sides.";
-static const char UNIT_POWER[] =
-    "1 W per metre of height (y) towards +z: half the real part of the integral of (E x H*)_z over "
-    "reliable_x_um, averaged over a pitch";
-static const char UNIT_DENSITY[] =
-    "1 W per square metre towards +z: half the real part of (E x H*)_z, averaged over a pitch";
-static const char UNIT_PEAK[] =
-    "the wave does not propagate: the largest stored magnitude of the components, in V/m and A/m, "
-    "is 1";
 
 struct pk_field_file {
   picket_context *context; /* borrowed */
@@ -129,10 +116,10 @@ static hid_t complex_of(hid_t part) {
   return type;
 }
 
-/* Values of any type that HDF5 converts from `held`; unit and description may be null. */
+/* Values of any type that HDF5 converts from `held`; axes may be null. */
 static bool put_array(hid_t group, const char *name, hid_t stored, hid_t held, int rank,
                       const hsize_t *size, const void *values, const char *unit,
-                      const char *description) {
+                      const char *description, const char *axes) {
   hid_t plan = H5Pcreate(H5P_DATASET_CREATE);
   hid_t space = H5Screate_simple(rank, size, NULL);
   hid_t set = -1;
@@ -141,7 +128,7 @@ static bool put_array(hid_t group, const char *name, hid_t stored, hid_t held, i
   }
   bool good = set >= 0 && H5Dwrite(set, held, H5S_ALL, H5S_ALL, H5P_DEFAULT, values) >= 0 &&
               put_text(set, "unit", unit) && put_text(set, "description", description) &&
-              (rank == 1 || put_text(set, "axes", "z_um, x_um"));
+              (!axes || put_text(set, "axes", axes));
   good = (set < 0 || H5Dclose(set) >= 0) && good;
   good = H5Sclose(space) >= 0 && good;
   return H5Pclose(plan) >= 0 && good;
@@ -162,13 +149,12 @@ static double clean_nm(double wavelength_um) {
   return round(PK_NM_OF_UM * wavelength_um * 1e9) / 1e9;
 }
 
-/* The group of a wavelength. */
-static hid_t wavelength_group(const pk_field_file *file, picket_polarization polarization,
-                              double wavelength_um) {
+/* The group of a wavelength below that of a polarization, or of the section. */
+static hid_t wavelength_group(const pk_field_file *file, const char *word, double wavelength_um) {
   char number[PK_NUMBER_TEXT], name[NAME_BYTES];
   pk_number_write(clean_nm(wavelength_um), number);
   snprintf(name, sizeof name, "%snm", number);
-  hid_t parent = group_of(file->file, pk_word_polarization(polarization));
+  hid_t parent = group_of(file->file, word);
   hid_t group = parent < 0 ? -1 : group_of(parent, name);
   if (parent >= 0) {
     H5Gclose(parent);
@@ -184,7 +170,7 @@ static bool put_about(const pk_field_file *file, hid_t group, const picket_field
   double reliable[2] = {a->x_from_um, a->x_to_um};
   double index[2] = {a->index_re, a->index_im};
   double k[2] = {TWO_PI / a->wavelength_um * a->index_re, TWO_PI / a->wavelength_um * a->index_im};
-  const char *power = field->nx > 1 ? UNIT_POWER : UNIT_DENSITY;
+  const char *power = field->nx > 1 ? PK_UNIT_POWER : PK_UNIT_DENSITY;
   return put_text(group, "polarization", pk_word_polarization(a->polarization)) &&
          put_number(group, "wavelength_nm", clean_nm(a->wavelength_um)) &&
          put(group, "order", H5T_STD_I32LE, H5T_NATIVE_INT, 0, &a->order) &&
@@ -192,60 +178,64 @@ static bool put_about(const pk_field_file *file, hid_t group, const picket_field
          put(group, "bloch_index", file->complex_type, file->complex_type, 0, index) &&
          put(group, "k_per_um", file->complex_type, file->complex_type, 0, k) &&
          put(group, "reliable_x_um", H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 2, reliable) &&
-         put_text(group, "normalisation", a->propagates ? power : UNIT_PEAK);
+         put_text(group, "normalisation", a->propagates ? power : PK_UNIT_PEAK);
 }
 
 static bool put_lines(hid_t group, const picket_field *field) {
   hsize_t nz = (hsize_t)field->nz, nx = (hsize_t)field->nx;
   return put_array(group, "z_um", H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 1, &nz, field->z, "um",
-                   "lines along the guide, both ends of the pitch among them") &&
+                   "lines along the guide, both ends of the pitch among them", NULL) &&
          put_array(group, "x_um", H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 1, &nx, field->x, "um",
-                   "lines across the guide; one at 0 where nothing varies along x");
+                   "lines across the guide; one at 0 where nothing varies along x", NULL);
 }
 
 static bool put_values(const pk_field_file *file, hid_t group, const picket_field *field) {
   hsize_t size[2] = {(hsize_t)field->nz, (hsize_t)field->nx};
-  bool good = put_array(group, "permittivity", file->complex_type, file->complex_type, 2, size,
-                        field->permittivity, "1", "relative permittivity around each node");
+  bool good =
+      put_array(group, "permittivity", file->complex_type, file->complex_type, 2, size,
+                field->permittivity, "1", "relative permittivity around each node", "z_um, x_um");
   for (int c = PICKET_COMPONENT_EX; good && c <= PICKET_COMPONENT_HZ; c++) {
     picket_component which = (picket_component)c;
     const double complex *values = pk_mode_field_values(field, which);
     if (values) {
       good = put_array(group, picket_component_name(which), file->complex_type, file->complex_type,
                        2, size, values, picket_component_unit(which),
-                       "periodic part: times exp(i k_per_um z_um) it is the field");
+                       "periodic part: times exp(i k_per_um z_um) it is the field", "z_um, x_um");
     }
   }
   return good;
 }
 
+typedef bool (*put_contents)(const pk_field_file *file, hid_t group, const void *field);
+
 /* Wavelengths closer than the digits of their names share a group: the first one stays. */
-static bool put_mode(const pk_field_file *file, hid_t parent, const picket_field *field) {
+static bool put_mode(const pk_field_file *file, hid_t parent, int order, put_contents put_all,
+                     const void *field) {
   char name[NAME_BYTES];
-  snprintf(name, sizeof name, "mode%d", field->about.order);
+  snprintf(name, sizeof name, "mode%d", order);
   htri_t there = H5Lexists(parent, name, H5P_DEFAULT);
   if (there != 0) {
     return there > 0;
   }
   hid_t group = group_of(parent, name);
-  bool good = group >= 0 && put_about(file, group, field) && put_lines(group, field) &&
-              put_values(file, group, field);
+  bool good = group >= 0 && put_all(file, group, field);
   return (group < 0 || H5Gclose(group) >= 0) && good;
 }
 
-picket_status pk_field_file_add(pk_field_file *file, const picket_field *field) {
+static picket_status add(pk_field_file *file, const char *word, double wavelength_um, int order,
+                         put_contents put_all, const void *field) {
   quiet before = enter();
-  hid_t parent = wavelength_group(file, field->about.polarization, field->about.wavelength_um);
-  bool good = parent >= 0 && put_mode(file, parent, field);
+  hid_t parent = wavelength_group(file, word, wavelength_um);
+  bool good = parent >= 0 && put_mode(file, parent, order, put_all, field);
   good = (parent < 0 || H5Gclose(parent) >= 0) && good;
   leave(before);
   return good ? PICKET_OK : unwritable(file->context, file->name);
 }
 
-picket_status pk_field_file_miss(pk_field_file *file, pk_polarization polarization,
-                                 double wavelength_um, const char *why) {
+static picket_status miss(pk_field_file *file, const char *word, double wavelength_um,
+                          const char *why) {
   quiet before = enter();
-  hid_t group = wavelength_group(file, (picket_polarization)polarization, wavelength_um);
+  hid_t group = wavelength_group(file, word, wavelength_um);
   bool good = group >= 0;
   if (good && H5Aexists(group, "note") == 0) {
     good = put_text(group, "note", why);
@@ -253,6 +243,85 @@ picket_status pk_field_file_miss(pk_field_file *file, pk_polarization polarizati
   good = (group < 0 || H5Gclose(group) >= 0) && good;
   leave(before);
   return good ? PICKET_OK : unwritable(file->context, file->name);
+}
+
+static bool put_bloch(const pk_field_file *file, hid_t group, const void *field) {
+  return put_about(file, group, field) && put_lines(group, field) && put_values(file, group, field);
+}
+
+picket_status pk_field_file_add(pk_field_file *file, const picket_field *field) {
+  return add(file, pk_word_polarization(field->about.polarization), field->about.wavelength_um,
+             field->about.order, put_bloch, field);
+}
+
+picket_status pk_field_file_miss(pk_field_file *file, pk_polarization polarization,
+                                 double wavelength_um, const char *why) {
+  return miss(file, pk_word_polarization((picket_polarization)polarization), wavelength_um, why);
+}
+
+/* --- A field of a section ----------------------------------------------------------------------
+ */
+
+static bool put_section_about(const pk_field_file *file, hid_t group,
+                              const picket_section_field_description *a) {
+  double x[2] = {a->x_from_um, a->x_to_um}, y[2] = {a->y_from_um, a->y_to_um};
+  double k0 = TWO_PI / a->wavelength_um;
+  double index[2] = {a->index_re, a->index_im}, k[2] = {k0 * a->index_re, k0 * a->index_im};
+  return put_number(group, "wavelength_nm", clean_nm(a->wavelength_um)) &&
+         put(group, "order", H5T_STD_I32LE, H5T_NATIVE_INT, 0, &a->order) &&
+         put(group, "index", file->complex_type, file->complex_type, 0, index) &&
+         put(group, "k_per_um", file->complex_type, file->complex_type, 0, k) &&
+         put(group, "reliable_x_um", H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 2, x) &&
+         put(group, "reliable_y_um", H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 2, y) &&
+         put_text(group, "normalisation", PK_UNIT_WATT);
+}
+
+static bool put_section_places(hid_t group, const pk_section_whole *w) {
+  static const char *const line[2] = {"x_lines_um", "y_lines_um"};
+  static const char *const middle[2] = {"x_middles_um", "y_middles_um"};
+  bool good = true;
+  for (int a = 0; good && a < 2; a++) {
+    hsize_t lines = (hsize_t)w->lines[a], middles = lines - 1;
+    good = put_array(group, line[a], H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 1, &lines, w->line[a], "um",
+                     "lines of the grid", NULL) &&
+           put_array(group, middle[a], H5T_IEEE_F64LE, H5T_NATIVE_DOUBLE, 1, &middles, w->middle[a],
+                     "um", "middles between the lines", NULL);
+  }
+  return good;
+}
+
+static bool put_section(const pk_field_file *file, hid_t group, const void *of) {
+  static const char *const entry[PK_ELECTRIC] = {"permittivity_xx", "permittivity_yy",
+                                                 "permittivity_zz"};
+  const picket_section_field *field = of;
+  const pk_section_whole *w = &field->whole;
+  hid_t type = file->complex_type;
+  bool good = put_section_about(file, group, &field->about) && put_section_places(group, w);
+  for (int c = 0; good && c < PK_WHOLE_NAMES; c++) {
+    pk_whole_name n = (pk_whole_name)c;
+    picket_component which = (picket_component)c; /* in the same order */
+    hsize_t size[2] = {(hsize_t)pk_whole_count(w, n, PK_U), (hsize_t)pk_whole_count(w, n, PK_V)};
+    char axes[NAME_BYTES];
+    snprintf(axes, sizeof axes, "x_%s_um, y_%s_um",
+             pk_whole_on_middles(n, PK_U) ? "middles" : "lines",
+             pk_whole_on_middles(n, PK_V) ? "middles" : "lines");
+    good = put_array(group, picket_component_name(which), type, type, 2, size, w->field[c],
+                     picket_component_unit(which), "times exp(i k_per_um z) it is the field", axes);
+    if (good && c < PK_ELECTRIC) {
+      good = put_array(group, entry[c], type, type, 2, size, field->permittivity[c], "1",
+                       "relative permittivity that this component of E has", axes);
+    }
+  }
+  return good;
+}
+
+picket_status pk_field_file_add_section(pk_field_file *file, const picket_section_field *field) {
+  return add(file, "section", field->about.wavelength_um, field->about.order, put_section, field);
+}
+
+picket_status pk_field_file_miss_section(pk_field_file *file, double wavelength_um,
+                                         const char *why) {
+  return miss(file, "section", wavelength_um, why);
 }
 
 /* --- The file ----------------------------------------------------------------------------------
@@ -301,7 +370,7 @@ static picket_status make_temporary(pk_field_file *file) {
   return unwritable(file->context, file->name);
 }
 
-static picket_status start(pk_field_file *file, const char *name) {
+static picket_status start(pk_field_file *file, const char *name, bool section) {
   quiet before = enter();
   hid_t driver = H5Pcreate(H5P_FILE_ACCESS);
   file->complex_type = complex_of(H5T_IEEE_F64LE);
@@ -309,16 +378,18 @@ static picket_status start(pk_field_file *file, const char *name) {
     file->file = H5Fcreate(file->temporary, H5F_ACC_TRUNC, H5P_DEFAULT, driver);
   }
   H5Pclose(driver);
-  bool good =
-      file->complex_type >= 0 && file->file >= 0 && put_text(file->file, "description", WHAT) &&
-      put_text(file->file, "conventions", CONVENTIONS) && put_text(file->file, "name", name) &&
-      put_text(file->file, "picket_version", picket_version());
+  bool good = file->complex_type >= 0 && file->file >= 0 &&
+              put_text(file->file, "description", section ? PK_SECTION_WHAT : PK_FIELD_WHAT) &&
+              put_text(file->file, "conventions",
+                       section ? PK_SECTION_CONVENTIONS : PK_FIELD_CONVENTIONS) &&
+              put_text(file->file, "name", name) &&
+              put_text(file->file, "picket_version", picket_version());
   leave(before);
   return good ? PICKET_OK : unwritable(file->context, file->name);
 }
 
 picket_status pk_field_file_open(picket_context *context, const char *path, const char *name,
-                                 pk_field_file **out) {
+                                 bool section, pk_field_file **out) {
   pk_field_file *file = PK_NEW(context, 1, pk_field_file);
   if (!file) {
     return PICKET_ERROR_MEMORY;
@@ -329,7 +400,7 @@ picket_status pk_field_file_open(picket_context *context, const char *path, cons
     status = make_temporary(file);
   }
   if (status == PICKET_OK) {
-    status = start(file, name);
+    status = start(file, name, section);
   }
   if (status != PICKET_OK) {
     pk_field_file_drop(file);
