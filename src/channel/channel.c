@@ -74,10 +74,7 @@ static picket_status build(pk_channel *c, const pk_channel_plan *plan) {
     status = pk_channel_take_places(c);
   }
   if (status == PICKET_OK) {
-    status = pk_channel_take_corners(c, plan);
-  }
-  if (status == PICKET_OK) {
-    status = pk_channel_take_blocks(c, plan);
+    status = pk_channel_take_blocks(c);
   }
   return status == PICKET_OK ? pk_channel_take_pattern(c) : status;
 }
@@ -105,13 +102,16 @@ picket_status pk_channel_create(picket_context *context, const pk_channel_plan *
 
 static void free_slices(pk_channel *c) {
   for (int k = 0; k < c->classes; k++) {
+    if (c->sites) {
+      pk_sites_free(c->section[k], &c->sites[k]);
+    }
     pk_section_free(c->section[k]);
   }
   pk_free(c->context, c->section);
+  pk_free(c->context, c->sites);
   pk_free(c->context, c->coefficient);
   pk_free(c->context, c->from);
   pk_free(c->context, c->class_of);
-  pk_free(c->context, c->example);
 }
 
 void pk_channel_free(pk_channel *c) {
@@ -120,7 +120,6 @@ void pk_channel_free(pk_channel *c) {
   }
   picket_context *context = c->context;
   pk_channel_drop_factors(c);
-  pk_channel_drop_corners(c);
   free_slices(c);
   pk_axis_clear(context, &c->x);
   pk_axis_clear(context, &c->y);
@@ -132,7 +131,6 @@ void pk_channel_free(pk_channel *c) {
   pk_free(context, c->area);
   pk_free(context, c->block_of);
   pk_free(context, c->curl);
-  pk_channel_drop_profiles(c);
   pk_blocks_free(c, c->block);
   pk_free(context, c->node);
   pk_free(context, c->permittivity);
@@ -179,7 +177,13 @@ bool pk_channel_uses(const pk_channel *c, int medium) {
 }
 
 picket_status pk_channel_load(pk_channel *c, const double complex *permittivity) {
-  picket_status status = pk_blocks_fill(c, permittivity, c->mean_z, c->block);
+  picket_status status = PICKET_OK;
+  for (int k = 0; k < c->classes && status == PICKET_OK; k++) {
+    status = pk_sites_fill(c->section[k], permittivity, &c->sites[k]);
+  }
+  if (status == PICKET_OK) {
+    status = pk_blocks_fill(c, c->sites, c->block);
+  }
   if (status != PICKET_OK) {
     return status;
   }

@@ -3,7 +3,6 @@
 #define PK_CHANNEL_CHANNEL_PRIVATE_H
 
 #include "channel/modes.h"
-#include "operator/corner_cache.h"
 #include "section/sites.h"
 
 /* One component of Ce at its place: Σ (plain + turn β) e over its terms. */
@@ -16,30 +15,14 @@ typedef struct pk_curl {
   double complex weight; /* W: the stretched area of the place */
 } pk_curl;
 
-/* What the box of a site holds all along z: parts of it that differ in any slice. */
-typedef struct pk_profile {
-  int count;
-  int *medium;      /* [count][classes] */
-  double *fraction; /* [count] adding up to 1 */
-  double facing[3]; /* of the interfaces, as in pk_mixture */
-} pk_profile;
-
-/* Sites of one kind with the same profile share a block. */
-typedef enum pk_kind { PK_KIND_X, PK_KIND_Y, PK_KIND_Z, PK_KIND_XY } pk_kind;
+/* Sites of one kind that hold the same in every slice share a block. */
 typedef struct pk_block {
-  pk_kind kind;
   int site;               /* one of them, counted as in pk_section_marks */
+  bool inverse;           /* inverse rule */
   bool varied;            /* not the same in all slices; else scalar */
   double complex scalar;  /* of a uniform one */
   double complex *matrix; /* [count][count] of a varied one */
 } pk_block;
-
-/* An edge parallel to z that meets the grid at a crossing of lines. */
-typedef struct pk_channel_corner {
-  int line[2];
-  int *medium; /* [classes][4] of the quadrants, as in pk_grid_corner */
-  double spacing[4];
-} pk_channel_corner;
 
 /* A node whose ε_xy couples e_x and e_y around it. */
 typedef struct pk_node {
@@ -70,6 +53,7 @@ struct pk_channel {
   int media;
   int classes;                 /* slices that differ */
   pk_section **section;        /* [classes] */
+  pk_sites *sites;             /* [classes] of the last load */
   double complex *coefficient; /* [classes][2 count - 1] of n = -(count-1) .. count-1 */
   int slices;                  /* neighbours of one class merged */
   double *from;                /* [slices] where they begin, within a pitch of each other */
@@ -86,18 +70,9 @@ struct pk_channel {
   int curl_count;
   pk_curl *curl; /* [curl_count]: h_x places, then h_y, then h_z */
   int block_count;
-  pk_block *block;        /* [block_count] */
-  pk_profile *profile;    /* [block_count] */
-  double complex *mean_z; /* [block_count][classes] ⟨ε_zz⟩ of a block at z sites */
+  pk_block *block; /* [block_count] */
   int node_count;
-  pk_node *node; /* [node_count] */
-  int *example;  /* [classes] a slice of each */
-  int corner_count;
-  pk_channel_corner *corner;    /* [corner_count] */
-  int *corner_of;               /* [sites][2] corners at the ends of an edge, or -1 */
-  pk_corner_cache *cures;       /* null without correction */
-  double *share;                /* [count] eigenvalues of [[χ]] of class 1, if there are two */
-  double complex *eigenvector;  /* [count][count] its eigenvectors */
+  pk_node *node;                /* [node_count] */
   double complex *permittivity; /* [3][media] of the last load */
   pk_site_graph graph;
   pk_pattern pattern;
@@ -116,46 +91,23 @@ picket_status pk_channel_take_slices(pk_channel *channel, const pk_channel_plan 
 
 /* places.c: sites, curls and nodes; blocks.c: groups of sites. */
 picket_status pk_channel_take_places(pk_channel *channel);
-picket_status pk_channel_take_blocks(pk_channel *channel, const pk_channel_plan *plan);
-
-/* corners.c */
-picket_status pk_channel_take_corners(pk_channel *channel, const pk_channel_plan *plan);
-void pk_channel_drop_corners(pk_channel *channel);
-/* What the corners at a site are, and whether they come and go along z. */
-uint64_t pk_channel_corner_mark(const pk_channel *channel, int site, bool *varied);
-bool pk_channel_corner_at(const pk_channel *channel, int site);
-/* Products of 1 + c over the corners at a site: of each class, and, for two classes, as a matrix
- * that commutes with [[ε]]. */
-picket_status pk_channel_class_factors(const pk_channel *channel, int site,
-                                       const double complex *permittivity, double complex *factor);
-picket_status pk_channel_matrix_factor(const pk_channel *channel, int site,
-                                       const double complex *permittivity, double complex *matrix);
+picket_status pk_channel_take_blocks(pk_channel *channel);
 
 /* The marks of all classes: [classes][pk_section_site_count]. */
 picket_status pk_channel_take_marks(const pk_channel *channel, uint64_t **out);
 
-/* blocks.c: blocks [count × count] for given permittivities [3][media], into blocks of the channel
- * or copies of them; mean_z [block_count][classes] receives ⟨ε_zz⟩. */
-picket_status pk_blocks_fill(const pk_channel *channel, const double complex *permittivity,
-                             double complex *mean_z, pk_block *block);
+/* blocks.c: blocks [count × count] of given values of all classes, into blocks of the channel
+ * or copies of them. */
+picket_status pk_blocks_fill(const pk_channel *channel, const pk_sites *sites, pk_block *block);
 picket_status pk_blocks_create(const pk_channel *channel, pk_block **out);
 void pk_blocks_free(const pk_channel *channel, pk_block *block);
-
-void pk_channel_drop_profiles(pk_channel *channel);
 
 /* [[f]] for the values f of the classes. */
 void pk_channel_toeplitz(const pk_channel *channel, const double complex *f,
                          double complex *matrix);
-
-/* profiles.c: profiles of sites (counted as in pk_section_marks; a node has that of its z site),
- * into arrays of PK_PROFILE_PARTS parts. */
-enum { PK_PROFILE_PARTS = 64 };
-typedef struct pk_profiler pk_profiler;
-picket_status pk_profiler_create(const pk_channel *channel, const pk_channel_plan *plan,
-                                 pk_profiler **out);
-void pk_profiler_free(pk_profiler *profiler); /* accepts null */
-picket_status pk_profiler_take(pk_profiler *profiler, int site, pk_profile *out);
-pk_kind pk_channel_kind(const pk_channel *channel, int site);
+/* The values of the classes at a site (counted as in pk_section_marks). */
+void pk_channel_site_values(const pk_channel *channel, const pk_sites *sites, int site,
+                            double complex *f);
 
 /* pattern.c */
 picket_status pk_channel_take_pattern(pk_channel *channel);

@@ -89,9 +89,9 @@ void pk_channel_fields_at(const pk_channel *c, double complex k, double complex 
   sum_waves(c, f, c->nx * c->my, 1, e + (int64_t)c->first_y * c->count, f->ey);
   flux(c, e, f);
   sum_waves(c, f, c->nx * c->ny, I, f->work, f->ez);
-  int class = class_at(c, z);
+  const double complex *permittivity = c->sites[class_at(c, z)].z;
   for (int p = 0; p < c->nx * c->ny; p++) {
-    f->ez[p] /= c->mean_z[(ptrdiff_t)c->block_of[c->first_z + p] * c->classes + class];
+    f->ez[p] /= permittivity[p];
   }
   pk_channel_curl(c, k, PK_CURL_WHOLE, e, f->work);
   int first_hy = c->nx * c->my, first_hz = first_hy + c->mx * c->ny;

@@ -62,39 +62,74 @@ static void add_blocks(const pk_channel *c, double factor, const pk_block *from,
   }
 }
 
+/* The mass for permittivities ε + step × direction, in blocks of its own. */
+static picket_status mass_at(pk_channel *c, double step, const double complex *direction,
+                             double complex *moved, pk_sites *sites, pk_block *block) {
+  for (int m = 0; m < 3 * c->media; m++) {
+    moved[m] = c->permittivity[m] + step * direction[m];
+  }
+  picket_status status = PICKET_OK;
+  for (int k = 0; status == PICKET_OK && k < c->classes; k++) {
+    status = pk_sites_fill(c->section[k], moved, &sites[k]);
+  }
+  return status == PICKET_OK ? pk_blocks_fill(c, sites, block) : status;
+}
+
 /* d(mass)/dt into `slope`, of zeros. */
-static picket_status mass_slope(pk_channel *c, const double complex *direction, pk_block *slope) {
+static picket_status mass_slope(pk_channel *c, const double complex *direction, pk_sites *sites,
+                                pk_block *slope) {
   double complex *moved = PK_NEW(c->context, 3 * c->media, double complex);
-  double complex *mean_z = PK_NEW(c->context, c->block_count * c->classes, double complex);
   pk_block *block = NULL;
-  picket_status status = moved && mean_z ? pk_blocks_create(c, &block) : PICKET_ERROR_MEMORY;
+  picket_status status = moved ? pk_blocks_create(c, &block) : PICKET_ERROR_MEMORY;
   for (int i = 0; status == PICKET_OK && i < NEIGHBOURS; i++) {
-    for (int m = 0; m < 3 * c->media; m++) {
-      moved[m] = c->permittivity[m] + AT[i] * STEP * direction[m];
-    }
-    status = pk_blocks_fill(c, moved, mean_z, block);
+    status = mass_at(c, AT[i] * STEP, direction, moved, sites, block);
     if (status == PICKET_OK) {
       add_blocks(c, WEIGHT[i] / STEP, block, slope);
     }
   }
   pk_free(c->context, moved);
-  pk_free(c->context, mean_z);
   pk_blocks_free(c, block);
   return status;
+}
+
+static void free_sites(pk_channel *c, pk_sites *sites) {
+  for (int k = 0; sites && k < c->classes; k++) {
+    pk_sites_free(c->section[k], &sites[k]);
+  }
+  pk_free(c->context, sites);
+}
+
+static picket_status make_sites(pk_channel *c, pk_sites **out) {
+  pk_sites *sites = PK_NEW(c->context, c->classes, pk_sites);
+  picket_status status = sites ? PICKET_OK : PICKET_ERROR_MEMORY;
+  for (int k = 0; status == PICKET_OK && k < c->classes; k++) {
+    status = pk_sites_create(c->section[k], &sites[k]);
+  }
+  if (status != PICKET_OK) {
+    free_sites(c, sites);
+    return status;
+  }
+  *out = sites;
+  return PICKET_OK;
 }
 
 picket_status pk_channel_media_form(pk_channel *c, double complex k0_square,
                                     const double complex *direction, const double complex *l,
                                     const double complex *r, double complex *out) {
   pk_block *slope = NULL;
-  picket_status status = pk_blocks_create(c, &slope);
+  pk_sites *sites = NULL;
+  picket_status status = make_sites(c, &sites);
   if (status == PICKET_OK) {
-    status = mass_slope(c, direction, slope);
+    status = pk_blocks_create(c, &slope);
+  }
+  if (status == PICKET_OK) {
+    status = mass_slope(c, direction, sites, slope);
   }
   if (status == PICKET_OK) {
     *out = -k0_square * pk_channel_block_form(c, slope, l, r);
   }
   pk_blocks_free(c, slope);
+  free_sites(c, sites);
   return status;
 }
 

@@ -40,8 +40,11 @@ static bool same_marks(const uint64_t *a, const uint64_t *b, int count) {
 
 static picket_status make_section(pk_channel *channel, const pk_channel_plan *plan, int slice,
                                   pk_section **out) {
-  pk_section_plan section = {
-      .geometry = plan->geometry[slice], .x = plan->x, .y = plan->y, .media = plan->media};
+  pk_section_plan section = {.geometry = plan->geometry[slice],
+                             .x = plan->x,
+                             .y = plan->y,
+                             .media = plan->media,
+                             .correct_corners = plan->correct_corners};
   return pk_section_create(channel->context, &section, out);
 }
 
@@ -71,7 +74,6 @@ static picket_status take_classes(pk_channel *c, const pk_channel_plan *plan, in
     if (status == PICKET_OK) {
       class[i] = class_of(c, section, marks);
       if (class[i] == c->classes) {
-        c->example[c->classes] = i;
         c->section[c->classes++] = section;
         section = NULL;
       }
@@ -180,9 +182,8 @@ static void take_origin(pk_channel *c, const pk_channel_plan *plan, const sequen
 picket_status pk_channel_take_slices(pk_channel *c, const pk_channel_plan *plan) {
   int *class = PK_NEW(c->context, plan->slices, int);
   c->section = PK_NEW(c->context, plan->slices, pk_section *);
-  c->example = PK_NEW(c->context, plan->slices, int);
   sequence s = {0};
-  picket_status status = class && c->section && c->example ? PICKET_OK : PICKET_ERROR_MEMORY;
+  picket_status status = class && c->section ? PICKET_OK : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
     status = take_classes(c, plan, class);
   }
@@ -191,7 +192,8 @@ picket_status pk_channel_take_slices(pk_channel *c, const pk_channel_plan *plan)
   }
   if (status == PICKET_OK) {
     c->coefficient = PK_NEW(c->context, (ptrdiff_t)c->classes * (2 * c->count - 1), double complex);
-    status = c->coefficient ? PICKET_OK : PICKET_ERROR_MEMORY;
+    c->sites = PK_NEW(c->context, c->classes, pk_sites);
+    status = c->coefficient && c->sites ? PICKET_OK : PICKET_ERROR_MEMORY;
   }
   if (status == PICKET_OK) {
     take_origin(c, plan, &s);
@@ -203,6 +205,9 @@ picket_status pk_channel_take_slices(pk_channel *c, const pk_channel_plan *plan)
     s.class = NULL;
   }
   sequence_close(&s);
+  for (int i = 0; status == PICKET_OK && i < c->classes; i++) {
+    status = pk_sites_create(c->section[i], &c->sites[i]);
+  }
   pk_free(c->context, class);
   return status;
 }

@@ -56,14 +56,3 @@ void pk_section_marks(const pk_section *s, uint64_t *marks) {
     mark_corner(s, &s->corner[c], x, y);
   }
 }
-
-const pk_mixture *pk_section_mixture(const pk_section *s, int site) {
-  const int *numbers[4] = {s->mixture_x, s->mixture_y, s->mixture_z, s->mixed};
-  int counts[4] = {s->mx * s->ny, s->nx * s->my, s->nx * s->ny, s->nx * s->ny};
-  int kind = 0;
-  while (site >= counts[kind]) {
-    site -= counts[kind++];
-  }
-  int number = numbers[kind][site];
-  return number < 0 ? NULL : &s->mixtures.list[number];
-}

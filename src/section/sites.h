@@ -3,7 +3,6 @@
 #ifndef PK_SECTION_SITES_H
 #define PK_SECTION_SITES_H
 
-#include "operator/mixture.h"
 #include "section/section.h"
 
 /* Numbers of one kind of site for every site. Sites are counted over intervals or lines that carry
@@ -32,9 +31,5 @@ picket_status pk_sites_fill(pk_section *section, const double complex *permittiv
  * interface. */
 int pk_section_site_count(const pk_section *section);
 void pk_section_marks(const pk_section *section, uint64_t *marks);
-
-/* What a site holds, counted in the order of the marks; null for a node without oblique interface.
- */
-const pk_mixture *pk_section_mixture(const pk_section *section, int site);
 
 #endif
