@@ -17,12 +17,27 @@ cell: {pitch_nm: 200, cladding: oxide, shapes: [{rect: {fill: core, length_nm: 1
 '''
 
 
+# The same of a section: two wavelengths at each of four widths.
+WIRE = tool.MATERIALS.format(name='wire') + '''light: {wavelength_nm: [1500, 1550]}
+section:
+  cladding: oxide
+  shapes:
+    - rect: {fill: core, width_nm: 450, height_nm: 220, at_nm: [0, 110]}
+'''
+WIDTHS = ['--count', '1', '--sweep', 'section.shapes.0.width_nm=400:460:4']
+
+
 class Interrupted(tool.ToolTest):
-    """Runs that are ended at random moments (the seed is fixed, the machine's speed is not)."""
+    """Runs that are ended at random moments (the seed is fixed, the machine's speed is not). Eight pieces."""
+
+    COMMAND, WORDS, TEXT = 'index', [], SLOW
+
+    def words(self, *more):
+        return [self.COMMAND, '--json', ROUGH, self.path, *self.WORDS, *more]
 
     def start(self, *words):
-        return subprocess.Popen([tool.TOOL, 'index', '--json', ROUGH, self.path, *words], stdout=subprocess.PIPE,
-                                stderr=subprocess.PIPE, cwd=self.folder)
+        return subprocess.Popen([tool.TOOL, *self.words(*words)], stdout=subprocess.PIPE, stderr=subprocess.PIPE,
+                                cwd=self.folder)
 
     def lines(self):
         journal = self.folder / 'j'
@@ -34,8 +49,8 @@ class Interrupted(tool.ToolTest):
 
     def setUp(self):
         super().setUp()
-        self.path = self.write(SLOW)
-        self.whole = self.run_tool('index', '--json', self.path, ROUGH).stdout
+        self.path = self.write(self.TEXT)
+        self.whole = self.run_tool(*self.words()).stdout
 
     def test_killed_and_taken_up(self):
         chance = random.Random(7)
@@ -50,7 +65,7 @@ class Interrupted(tool.ToolTest):
                 process.communicate(timeout=60)
             before = self.lines()
             self.assertGreater(before, 1)
-            done = self.run_tool('index', '--json', self.path, ROUGH, '--resume', 'j', '--jobs', '2')
+            done = self.run_tool(*self.words('--resume', 'j', '--jobs', '2'))
             self.assertEqual(done.stdout, self.whole)
             self.assertEqual(self.lines(), 1 + 8)
 
@@ -63,13 +78,13 @@ class Interrupted(tool.ToolTest):
             said, complained = process.communicate(timeout=60)
             self.assertEqual(process.returncode, 130, complained)
             self.assertIn(b'stopped on request', complained)
-            document = tool.document(said.decode(), 'index')
+            document = tool.document(said.decode(), self.COMMAND)
             self.assertFalse(document['complete'])
             finished = [p for a in document['results'] for p in a['points'] if 'failed' not in p]
             self.assertEqual(len(finished), self.lines() - 1)
             self.assertGreaterEqual(len(finished), 2)
             self.assertIn('stopped before', (self.folder / f'{jobs}.csv').read_text(encoding='utf-8'))
-            done = self.run_tool('index', '--json', self.path, ROUGH, '--resume', 'j')
+            done = self.run_tool(*self.words('--resume', 'j'))
             self.assertEqual(done.stdout, self.whole)
 
     def test_two_runs_do_not_share_a_journal(self):
@@ -77,7 +92,7 @@ class Interrupted(tool.ToolTest):
         self.wait_for_lines(process, 2)
         process.send_signal(signal.SIGSTOP)  # so that it is not done before the other one looks
         self.assertIsNone(process.poll())
-        self.assert_refused('index', self.path, ROUGH, '--resume', 'j', status=3, says=['another run'])
+        self.assert_refused(*self.words('--resume', 'j'), status=3, says=['another run'])
         process.send_signal(signal.SIGCONT)
         process.communicate(timeout=60)
         self.assertEqual(process.returncode, 0)
@@ -90,13 +105,19 @@ class Interrupted(tool.ToolTest):
         os.kill(worker, signal.SIGKILL)
         said, _ = process.communicate(timeout=60)
         self.assertEqual(process.returncode, 1)
-        document = tool.document(said.decode(), 'index')
+        document = tool.document(said.decode(), self.COMMAND)
         failed = [p for a in document['results'] for p in a['points'] if 'failed' in p]
         self.assertEqual(len(failed), 1)
         self.assertIn('signal 9', failed[0]['note'])
         # It is not held against the point the next time.
-        done = self.run_tool('index', '--json', self.path, ROUGH, '--resume', 'j')
+        done = self.run_tool(*self.words('--resume', 'j'))
         self.assertEqual(done.stdout, self.whole)
+
+
+class InterruptedSection(Interrupted):
+    """The same engine with other pieces."""
+
+    COMMAND, WORDS, TEXT = 'modes', WIDTHS, WIRE
 
 
 if __name__ == '__main__':

@@ -3,6 +3,8 @@ grid, closed forms and the C interface."""
 
 import ctypes
 import os
+import subprocess
+import sys
 import unittest
 
 import h5py
@@ -212,6 +214,13 @@ class Fields(tool.ToolTest):
         self.run_tool('modes', '--fields', 'a.h5', none, status=1)
         self.assert_refused('modes', '--fields', 'a.h5', self.write(tool.film(), 'film.yaml'), says=['section'])
         self.assertEqual(sorted(p.name for p in self.folder.iterdir()), ['film.yaml', 'none.yaml', 'problem.yaml'])
+
+    def test_the_example(self):
+        self.fields(BOX, '--count=1').close()
+        done = subprocess.run([sys.executable, str(tool.SOURCE / 'examples' / 'read_fields.py'), 'fields.h5'],
+                              cwd=self.folder, capture_output=True, text=True, check=False)
+        self.assertEqual(done.returncode, 0, done.stderr)
+        self.assertRegex(done.stdout, r'/section/1000nm/mode0: index 1\.35\d+.*largest \|Ey\| .* V/m\n')
 
     @unittest.skipIf(tool.INSTRUMENTED, 'the library cannot be loaded into a plain Python')
     def test_the_interface_gives_the_same_values(self):
