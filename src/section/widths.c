@@ -6,6 +6,7 @@
 #include "base/memory.h"
 #include "section/climb.h"
 #include "section/overlap.h"
+#include "section/section_private.h"
 
 static const double FALL = 0.13533528323661270; /* e⁻² */
 
@@ -36,41 +37,68 @@ static double flow(const pk_section_whole *w, int i, int j) {
   return 0.5 * (flow_x(w, i, j) + flow_x(w, i, j + 1) + flow_y(w, i, j) + flow_y(w, i + 1, j));
 }
 
+/* The part of an axis that a place stands for. */
+static double weight_of(const pk_section_whole *w, pk_whole_name name, pk_axis_name axis, int i) {
+  if (pk_whole_on_middles(name, axis)) {
+    return length_of(w, axis, i);
+  }
+  int last = w->lines[axis] - 1;
+  double before = i > 0 ? length_of(w, axis, i - 1) : 0;
+  return 0.5 * (before + (i < last ? length_of(w, axis, i) : 0));
+}
+
 /* --- Moments ---------------------------------------------------------------------------------- */
 
-static void take_moments(const pk_section_whole *w, pk_section_widths *out, double *peak) {
-  double power = 0, first[2] = {0}, second[2] = {0};
-  *peak = 0;
-  for (int i = 0; i + 1 < w->lines[PK_U]; i++) {
-    double width = length_of(w, PK_U, i), x = w->middle[PK_U][i];
-    for (int j = 0; j + 1 < w->lines[PK_V]; j++) {
-      double height = length_of(w, PK_V, j), y = w->middle[PK_V][j];
-      double s = flow(w, i, j), part = width * height * s;
-      *peak = fmax(*peak, s);
-      power += part;
-      first[0] += part * x;
-      first[1] += part * y;
-      /* The mean of x² over a cell. */
-      second[0] += part * (x * x + width * width / 12);
-      second[1] += part * (y * y + height * height / 12);
+typedef struct moments {
+  double power, first[2], second[2];
+} moments;
+
+/* Sums of one part of S_z where it lives: such sums over a smooth field err far less than h². */
+static void add_moments(const pk_section_whole *w, pk_whole_name name, moments *m) {
+  const double *x = pk_whole_places(w, name, PK_U), *y = pk_whole_places(w, name, PK_V);
+  for (int i = 0; i < pk_whole_count(w, name, PK_U); i++) {
+    double width = weight_of(w, name, PK_U, i);
+    for (int j = 0; j < pk_whole_count(w, name, PK_V); j++) {
+      double s = name == PK_WHOLE_EX ? flow_x(w, i, j) : flow_y(w, i, j);
+      double part = width * weight_of(w, name, PK_V, j) * s;
+      m->power += part;
+      m->first[0] += part * x[i];
+      m->first[1] += part * y[j];
+      m->second[0] += part * x[i] * x[i];
+      m->second[1] += part * y[j] * y[j];
     }
   }
+}
+
+static void take_moments(const pk_section_whole *w, pk_section_widths *out) {
+  moments m = {0};
   double variance[2];
+  add_moments(w, PK_WHOLE_EX, &m);
+  add_moments(w, PK_WHOLE_EY, &m);
   for (int axis = 0; axis < 2; axis++) {
-    out->centroid[axis] = first[axis] / power;
-    variance[axis] = second[axis] / power - out->centroid[axis] * out->centroid[axis];
+    out->centroid[axis] = m.first[axis] / m.power;
+    variance[axis] = m.second[axis] / m.power - out->centroid[axis] * out->centroid[axis];
     out->rms_along[axis] = 4 * sqrt(variance[axis]);
   }
   out->rms = sqrt(8 * (variance[0] + variance[1]));
 }
 
+static double peak_of(const pk_section_whole *w) {
+  double peak = 0;
+  for (int i = 0; i + 1 < w->lines[PK_U]; i++) {
+    for (int j = 0; j + 1 < w->lines[PK_V]; j++) {
+      peak = fmax(peak, flow(w, i, j));
+    }
+  }
+  return peak;
+}
+
 void pk_section_centre(const pk_section_whole *w, double centroid[2], double rms_along[2]) {
-  pk_section_widths moments = {0};
-  double peak;
-  take_moments(w, &moments, &peak);
+  pk_section_widths all = {0};
+  take_moments(w, &all);
   for (int axis = 0; axis < 2; axis++) {
-    centroid[axis] = moments.centroid[axis];
-    rms_along[axis] = moments.rms_along[axis];
+    centroid[axis] = all.centroid[axis];
+    rms_along[axis] = all.rms_along[axis];
   }
 }
 
@@ -89,40 +117,17 @@ static double complex slope(const row *r, int i) {
          (r->place[i + 1] - r->place[i]);
 }
 
-static double complex beyond(const row *r, int near, int far, double to) {
-  double a = 0.5 * (r->place[near] + r->place[near + 1]);
-  double b = 0.5 * (r->place[far] + r->place[far + 1]);
-  double complex s = slope(r, near);
-  return s + (to - a) / (a - b) * (s - slope(r, far));
-}
-
 static double square(double complex v) {
   return creal(v) * creal(v) + cimag(v) * cimag(v);
 }
 
-/* ∫|∂f|² along a row. Between lines a slope is plain; across a line on which an interface may lie
- * it has a jump, so that the slopes on its two sides are continued to it. */
-static double slope_squares(const row *r, bool across_lines, const double *line) {
+/* ∫|∂f|² along a row. */
+static double slope_squares(const row *r) {
   double sum = 0;
   for (int i = 0; i + 1 < r->count; i++) {
-    double length = r->place[i + 1] - r->place[i], value = square(slope(r, i));
-    if (across_lines && i >= 2 && i + 3 < r->count) {
-      double to = line[i + 1];
-      value = 0.5 * (square(beyond(r, i - 1, i - 2, to)) + square(beyond(r, i + 1, i + 2, to)));
-    }
-    sum += length * value;
+    sum += (r->place[i + 1] - r->place[i]) * square(slope(r, i));
   }
   return sum;
-}
-
-/* Weight of a place across the direction of the slope: its part of the plane. */
-static double weight_of(const pk_section_whole *w, pk_whole_name name, pk_axis_name axis, int i) {
-  if (pk_whole_on_middles(name, axis)) {
-    return length_of(w, axis, i);
-  }
-  int last = w->lines[axis] - 1;
-  double before = i > 0 ? length_of(w, axis, i - 1) : 0;
-  return 0.5 * (before + (i < last ? length_of(w, axis, i) : 0));
 }
 
 static double slopes(const pk_section_whole *w, pk_whole_name name, pk_axis_name axis) {
@@ -134,8 +139,7 @@ static double slopes(const pk_section_whole *w, pk_whole_name name, pk_axis_name
              .stride = axis == PK_U ? rows : 1,
              .count = pk_whole_count(w, name, axis),
              .place = pk_whole_places(w, name, axis)};
-    sum += weight_of(w, name, other, k) *
-           slope_squares(&r, pk_whole_on_middles(name, axis), w->line[axis]);
+    sum += weight_of(w, name, other, k) * slope_squares(&r);
   }
   return sum;
 }
@@ -151,15 +155,36 @@ static double squares(const pk_section_whole *w, pk_whole_name name) {
   return sum;
 }
 
-static void take_petermann(const pk_section_whole *w, pk_section_widths *out) {
+static void take_petermann(const pk_section_whole *w, const double kinks[2],
+                           pk_section_widths *out) {
   double field = squares(w, PK_WHOLE_HX) + squares(w, PK_WHOLE_HY), all = 0;
   for (int axis = 0; axis < 2; axis++) {
     double s =
         slopes(w, PK_WHOLE_HX, (pk_axis_name)axis) + slopes(w, PK_WHOLE_HY, (pk_axis_name)axis);
+    s += kinks ? kinks[axis] : 0;
     out->petermann_along[axis] = 2 * sqrt(field / s);
     all += s;
   }
   out->petermann = 2 * sqrt(2 * field / all);
+}
+
+static double step_of(const double complex *e, int below, int above) {
+  return below < 0 || above < 0 ? 0 : square(e[above] - e[below]);
+}
+
+void pk_section_kinks(const pk_section *s, double k0, const pk_section_fields *f, double kinks[2]) {
+  kinks[0] = kinks[1] = 0;
+  for (int i = 0; i < s->nx; i++) {
+    int left = pk_interval_below(&s->x, i), right = pk_interval_above(&s->x, i);
+    for (int j = 0; j < s->ny; j++) {
+      int down = pk_interval_below(&s->y, j), up = pk_interval_above(&s->y, j);
+      double part = 0.25 * k0 * k0 * s->width_x[i] * s->width_y[j] * square(f->ez[i * s->ny + j]);
+      kinks[0] += part * step_of(s->sites.x, left < 0 ? -1 : left * s->ny + j,
+                                 right < 0 ? -1 : right * s->ny + j);
+      kinks[1] += part * step_of(s->sites.y, down < 0 ? -1 : i * s->my + down,
+                                 up < 0 ? -1 : i * s->my + up);
+    }
+  }
 }
 
 /* --- 1/e² ------------------------------------------------------------------------------------- */
@@ -296,13 +321,13 @@ static void take_beams(const pk_overlap *o, pk_section_widths *out) {
   out->oval_overlap = like ? oval : NAN;
 }
 
-picket_status pk_section_widths_take(const pk_section_whole *w, pk_section_widths *out) {
+picket_status pk_section_widths_take(const pk_section_whole *w, const double kinks[2],
+                                     pk_section_widths *out) {
   pk_section_widths found = {0};
   pk_overlap overlap = {0};
-  double peak;
-  take_moments(w, &found, &peak);
-  take_petermann(w, &found);
-  picket_status status = take_falls(w, peak, &found);
+  take_moments(w, &found);
+  take_petermann(w, kinks, &found);
+  picket_status status = take_falls(w, peak_of(w), &found);
   if (status == PICKET_OK) {
     status = pk_overlap_open(w, NULL, &overlap);
   }

@@ -29,6 +29,15 @@ typedef struct pk_section_widths {
 /* The centroid of S_z and 4σ about it, along x and y. */
 void pk_section_centre(const pk_section_whole *whole, double centroid[2], double rms_along[2]);
 
-picket_status pk_section_widths_take(const pk_section_whole *whole, pk_section_widths *out);
+/* What the slopes of h_t across interfaces add to ∫|∂_x h_t|² and ∫|∂_y h_t|² of a part: the slope
+ * jumps there by k0 Δε E_z (from ∂_x h_y - ∂_y h_x = -i k0 ε E_z), and the difference across the
+ * line is the mean of both sides, whose square lacks (k0 Δε E_z)²/4. Without it the error is of
+ * first order in the spacing. */
+void pk_section_kinks(const pk_section *section, double k0, const pk_section_fields *part,
+                      double kinks[2]);
+
+/* kinks: of the whole plane; null for none. */
+picket_status pk_section_widths_take(const pk_section_whole *whole, const double kinks[2],
+                                     pk_section_widths *out);
 
 #endif

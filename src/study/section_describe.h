@@ -20,6 +20,9 @@ enum {
 /* How a number depends on the grid, where others follow `law`. */
 pk_error_law pk_section_number_law(const pk_error_law *law, int number);
 
+/* By what the bar of a number is to be widened. */
+double pk_section_number_caution(int number);
+
 /* Why a number may be missing; null if it can't be. */
 const char *pk_section_number_note(int number);
 

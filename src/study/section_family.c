@@ -152,6 +152,7 @@ static picket_quantity judge(const run *r, const int *m, int count, int number) 
   }
   pk_error_law law = pk_section_number_law(&r->law, number % PK_NUMBERS);
   picket_quantity q = pk_extrapolate(&law, count, m, column);
+  q.uncertainty *= pk_section_number_caution(number % PK_NUMBERS);
   q.uncertainty = zero ? 0 : q.uncertainty + r->span_error[number];
   q.note = zero ? NULL : isnan(q.value) ? pk_section_number_note(number % PK_NUMBERS) : q.note;
   return q;

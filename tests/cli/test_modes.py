@@ -23,6 +23,19 @@ section:
 '''
 
 
+# A step-index fibre of 8.2 um, 1.4492 in 1.4440.
+FIBRE = WIRE.replace('    - rect: {fill: core, width_nm: 450, height_nm: 220, at_nm: [0, 110]}',
+                     '    - disc: {fill: core, diameter_nm: 8200}').replace('3.476', '1.4492')
+
+# Its mode-field diameters, um. Closed forms, by quadrature of the fields of the fundamental mode:
+# scalar (the Bessel functions of the weakly guiding fibre), and of the exact vector mode (E. Snitzer,
+# J. Opt. Soc. Am. 51, 491 (1961)) with E along x, where they differ along x and y.
+SCALAR = {'petermann_um': 10.0152, 'rms_um': 10.3874, 'e2_x_um': 9.5345, 'e2_y_um': 9.5345,
+          'gaussian_um': 10.152, 'gaussian_overlap': 0.99236}
+VECTOR = {'petermann_um': 10.012585, 'rms_um': 10.394410, 'rms_x_um': 10.395415, 'rms_y_um': 10.393405,
+          'e2_x_um': 9.540218, 'e2_y_um': 9.533644, 'gaussian_um': 10.145534, 'gaussian_overlap': 0.9923007}
+
+
 class Modes(tool.ToolTest):
     def ask(self, text, *words, status=0):
         done = self.run_tool('modes', '--json', self.write(text), *words, status=status)
@@ -48,8 +61,34 @@ class Modes(tool.ToolTest):
             # Light that is slowed by geometry: the group index of a wire lies above its index.
             self.assertGreater(mode['group_index']['value'], mode['index']['value'])
         self.assertGreater(te['confinement']['core'], tm['confinement']['core'])
+        self.assertIn('Petermann II', done.stdout)
         rows = list(csv.DictReader(table.read_text(encoding='utf-8').splitlines()))
         self.assertEqual([float(row['index']) for row in rows], [te['index']['value'], tm['index']['value']])
+        self.assertEqual(float(rows[0]['e2_y_um']), te['diameters']['e2_y_um']['value'])
+
+    def test_diameters_of_a_fibre(self):
+        _, (point,) = self.ask(FIBRE, '--count', '2')
+        for mode in point['modes']:
+            found = mode['diameters']
+            swap = {'x': 'y', 'y': 'x'} if mode['polarization'] == 'tm-like' else {'x': 'x', 'y': 'y'}
+            for name, value in VECTOR.items():
+                for axis in 'xy':
+                    if f'_{axis}_' in name:
+                        name = name.replace(f'_{axis}_', f'_{swap[axis]}_')
+                        break
+                self.assertAlmostEqual(found[name]['value'], value, delta=found[name]['uncertainty'], msg=name)
+            for name, value in SCALAR.items():
+                self.assertAlmostEqual(found[name]['value'], value, delta=1e-3 * value, msg=name)
+
+    def test_diameters_that_do_not_exist(self):
+        # The third mode of a wide wire has a node through its middle.
+        text = WIRE.replace('width_nm: 450', 'width_nm: 900')
+        _, (point,) = self.ask(text, '--count', '3', '--accuracy', '1e-3')
+        mode = next(m for m in point['modes'] if m['nodes_x'] == 1)
+        self.assertIsNone(mode['diameters']['gaussian_um']['value'])
+        self.assertIn('centroid', mode['diameters']['gaussian_um']['note'])
+        self.assertIsNone(mode['diameters']['e2_y_um']['value'])
+        self.assertGreater(mode['diameters']['rms_um']['value'], 0.5)
 
     def test_a_box_of_metal(self):
         _, points = self.ask(FILLED, '--count', '3')
