@@ -36,11 +36,13 @@ typedef struct picket_mode_diameters {
 } picket_mode_diameters;
 
 typedef struct picket_section_mode {
-  int order;                          /* by falling index, from 0 */
-  picket_quantity index;              /* Re β/k0 */
-  picket_quantity group_index;        /* dβ/dk0, material dispersion included */
-  picket_quantity loss_db_per_cm;     /* of power, from Im β: absorption and leakage */
-  picket_quantity effective_area_um2; /* (∫S_z dA)² / ∫S_z² dA */
+  int order;                               /* by falling index, from 0 */
+  picket_quantity index;                   /* Re β/k0 */
+  picket_quantity group_index;             /* dβ/dk0, material dispersion included */
+  picket_quantity loss_db_per_cm;          /* of power, from Im β: absorption and leakage */
+  picket_quantity bend_loss_db_per_90_deg; /* loss_db_per_cm over a quarter turn; missing (NaN,
+                                              without a note) where the section is straight */
+  picket_quantity effective_area_um2;      /* (∫S_z dA)² / ∫S_z² dA */
   picket_mode_diameters diameters;
   double ex_share; /* of the transverse electric energy ∫ε(|E_x|² + |E_y|²), that along x; 1 is a
                       te-like mode of a flat guide, 0 a tm-like one. From the finest grid, as are

@@ -6,12 +6,21 @@
 
 static const double NM_PER_UM = 1000;
 
-static bool lossy(const picket_result *result) {
+static bool loses(const picket_section_mode *mode) {
+  return mode->loss_db_per_cm.value != 0;
+}
+
+/* A straight one says nothing of a quarter turn. */
+static bool bent(const picket_section_mode *mode) {
+  return !isnan(mode->bend_loss_db_per_90_deg.value) || mode->bend_loss_db_per_90_deg.note;
+}
+
+static bool any(const picket_result *result, bool (*is)(const picket_section_mode *)) {
   picket_modes_answer answer;
   for (int i = 0; picket_modes_get(result, i, &answer) == PICKET_OK; i++) {
     for (int p = 0; p < answer.point_count; p++) {
       for (int m = 0; m < answer.points[p].mode_count; m++) {
-        if (answer.points[p].modes[m].loss_db_per_cm.value != 0) {
+        if (is(&answer.points[p].modes[m])) {
           return true;
         }
       }
@@ -21,7 +30,7 @@ static bool lossy(const picket_result *result) {
 }
 
 static void print_mode(pk_text_table *t, pk_notes *notes, const picket_modes_point *point,
-                       const picket_section_mode *mode, bool loss) {
+                       const picket_section_mode *mode, bool loss, bool turn) {
   pk_table_cell(t, "%.10g", NM_PER_UM * point->wavelength_um);
   pk_table_cell(t, "%d", mode->order);
   pk_table_cell(t, "%s, %d %d", mode->ex_share > 0.5 ? "te-like" : "tm-like", mode->nodes_x,
@@ -31,13 +40,16 @@ static void print_mode(pk_text_table *t, pk_notes *notes, const picket_modes_poi
   if (loss) {
     pk_table_quantity(t, notes, mode->loss_db_per_cm, 1);
   }
+  if (turn) {
+    pk_table_quantity(t, notes, mode->bend_loss_db_per_90_deg, 1);
+  }
   pk_table_cell(t, "%.4f", mode->ex_share);
   pk_table_quantity(t, notes, mode->effective_area_um2, 1);
 }
 
 static void print_table(const picket_result *result, pk_notes *notes) {
-  bool loss = lossy(result);
-  pk_text_table t = {.columns = (loss ? 8 : 7) + pk_sweep_columns(result)};
+  bool loss = any(result, loses), turn = any(result, bent);
+  pk_text_table t = {.columns = 7 + loss + turn + pk_sweep_columns(result)};
   picket_modes_answer answer;
   pk_table_sweep(&t, result, -1);
   pk_table_cell(&t, "wavelength, nm");
@@ -48,13 +60,16 @@ static void print_table(const picket_result *result, pk_notes *notes) {
   if (loss) {
     pk_table_cell(&t, "loss, dB/cm");
   }
+  if (turn) {
+    pk_table_cell(&t, "loss, dB per 90 deg");
+  }
   pk_table_cell(&t, "Ex share");
   pk_table_cell(&t, "effective area, um2");
   for (int i = 0; picket_modes_get(result, i, &answer) == PICKET_OK; i++) {
     for (int p = 0; p < answer.point_count; p++) {
       for (int m = 0; m < answer.points[p].mode_count; m++) {
         pk_table_sweep(&t, result, i);
-        print_mode(&t, notes, &answer.points[p], &answer.points[p].modes[m], loss);
+        print_mode(&t, notes, &answer.points[p], &answer.points[p].modes[m], loss, turn);
       }
     }
   }

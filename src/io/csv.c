@@ -189,6 +189,7 @@ static void write_modes_point(sheet *s, const picket_modes_point *point) {
     put_quantity(s, mode->index, 1);
     put_quantity(s, mode->group_index, 1);
     put_quantity(s, mode->loss_db_per_cm, 1);
+    put_quantity(s, mode->bend_loss_db_per_90_deg, 1);
     put_number(s, mode->ex_share);
     put_quantity(s, mode->effective_area_um2, 1);
     put_number(s, mode->nodes_x);
@@ -220,6 +221,8 @@ static void write_modes(sheet *s, const picket_result *result) {
                                        "group_index_uncertainty",
                                        "loss_db_per_cm",
                                        "loss_uncertainty_db_per_cm",
+                                       "bend_loss_db_per_90_deg",
+                                       "bend_loss_uncertainty_db_per_90_deg",
                                        "ex_share",
                                        "effective_area_um2",
                                        "effective_area_uncertainty_um2",

@@ -257,6 +257,7 @@ static json_t *section_mode(const void *user, int i) {
               put(object, "index", quantity(mode->index, 1)) &&
               put(object, "group_index", quantity(mode->group_index, 1)) &&
               put(object, "loss_db_per_cm", quantity(mode->loss_db_per_cm, 1)) &&
+              put(object, "bend_loss_db_per_90_deg", quantity(mode->bend_loss_db_per_90_deg, 1)) &&
               put(object, "ex_share", number(mode->ex_share)) &&
               put(object, "polarization", text(mode->ex_share > 0.5 ? "te-like" : "tm-like")) &&
               put(object, "effective_area_um2", quantity(mode->effective_area_um2, 1)) &&

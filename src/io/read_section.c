@@ -13,10 +13,11 @@ const pk_shape_plane PK_PLANE_ACROSS = {.letter = {'x', 'y'},
                                         .farthest_nm = FARTHEST_NM,
                                         .largest_nm = 2 * FARTHEST_NM};
 
-enum { KEY_CLADDING, KEY_SPAN, KEY_SHAPES, KEY_COUNT };
+enum { KEY_CLADDING, KEY_SPAN, KEY_BEND, KEY_SHAPES, KEY_COUNT };
 static const pk_key keys[KEY_COUNT] = {
     [KEY_CLADDING] = {"cladding", true},
     [KEY_SPAN] = {"span_nm", false},
+    [KEY_BEND] = {"bend_radius_um", false},
     [KEY_SHAPES] = {"shapes", true},
 };
 
@@ -73,6 +74,27 @@ picket_status pk_read_plane_check(const pk_reader *reader, const pk_node *node, 
                     what);
 }
 
+/* --- Bend ------------------------------------------------------------------------------------- */
+
+/* The centre of curvature x = -radius must lie outside the shapes and the window: coordinates about
+ * it end there. Half a micrometre is less than any mode of light fits round; a metre is straight.
+ */
+static picket_status read_bend(picket_context *context, const pk_node *node,
+                               pk_section_block *block) {
+  const pk_limits limits = {0.5, 1e6, false, false, false, "um"};
+  double radius = 0;
+  picket_status status = pk_read_number(context, node, &limits, &radius);
+  double inside = block->span_um[0] > 0 ? 0.5 * block->span_um[0] : -block->low_um[0];
+  if (status == PICKET_OK && !(radius > inside)) {
+    status = pk_fail_at(context, PICKET_ERROR_INPUT, node->place,
+                        "%s is %s, must be above %.10g um: the %s reach the centre of the bend",
+                        pk_node_path(node).text, node->text, inside,
+                        block->span_um[0] > 0 ? "walls of span_nm" : "shapes of the section");
+  }
+  block->bend_radius_um = status == PICKET_OK ? radius : 0;
+  return status;
+}
+
 /* --- The block -------------------------------------------------------------------------------- */
 
 typedef struct canvas {
@@ -107,6 +129,9 @@ picket_status pk_read_section(pk_reader *reader, const pk_node *node) {
   }
   if (status == PICKET_OK) {
     status = pk_read_plane_check(reader, node, "section", section);
+  }
+  if (status == PICKET_OK && values[KEY_BEND]) {
+    status = read_bend(reader->context, values[KEY_BEND], section);
   }
   reader->layered = false;
   section->given = status == PICKET_OK;

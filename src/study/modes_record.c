@@ -20,15 +20,16 @@ typedef picket_quantity quantity_type;
 
 /* Every member of picket_section_mode that is a whole number, a number or a quantity; arrays of one
  * of these too. */
-#define MEMBERS(X)                               \
-  X(WHOLE, whole_type, order)                    \
-  X(QUANTITY, quantity_type, index)              \
-  X(QUANTITY, quantity_type, group_index)        \
-  X(QUANTITY, quantity_type, loss_db_per_cm)     \
-  X(QUANTITY, quantity_type, effective_area_um2) \
-  X(QUANTITY, quantity_type, diameters)          \
-  X(NUMBER, number_type, ex_share)               \
-  X(WHOLE, whole_type, nodes_x)                  \
+#define MEMBERS(X)                                    \
+  X(WHOLE, whole_type, order)                         \
+  X(QUANTITY, quantity_type, index)                   \
+  X(QUANTITY, quantity_type, group_index)             \
+  X(QUANTITY, quantity_type, loss_db_per_cm)          \
+  X(QUANTITY, quantity_type, bend_loss_db_per_90_deg) \
+  X(QUANTITY, quantity_type, effective_area_um2)      \
+  X(QUANTITY, quantity_type, diameters)               \
+  X(NUMBER, number_type, ex_share)                    \
+  X(WHOLE, whole_type, nodes_x)                       \
   X(WHOLE, whole_type, nodes_y)
 
 typedef struct member {

@@ -45,6 +45,7 @@ typedef struct pk_section_block {
   bool *used;                   /* [materials] named by the block */
   double span_um[2];            /* width and height of the window around (0, 0); 0: not given */
   double low_um[2], high_um[2]; /* extent of the shapes with ends; low above high: none */
+  double bend_radius_um;        /* about the line x = -radius; 0: straight */
   int others;                   /* of a channel's outline: further planes that it consists of */
   pk_geometry **other;          /* [others] borrowed */
 } pk_section_block;

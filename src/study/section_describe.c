@@ -9,6 +9,7 @@
 #include "section/forms.h"
 #include "section/nodes.h"
 #include "section/widths.h"
+#include "study/section_bend.h"
 
 /* dB/cm of a field that falls as exp(-x µm⁻¹): 20 log10(e) × 1e4. */
 static const double DB_PER_CM = 86858.896380650366;
@@ -97,7 +98,7 @@ picket_status pk_section_describe(const pk_section_family *f, pk_section *sectio
     int parts = (s->mirror[0] ? 2 : 1) * (s->mirror[1] ? 2 : 1);
     numbers[PK_NUMBER_INDEX] = creal(solved->beta) / s->k0;
     numbers[PK_NUMBER_GROUP] = creal(group);
-    numbers[PK_NUMBER_LOSS] = DB_PER_CM * cimag(solved->beta);
+    numbers[PK_NUMBER_LOSS] = DB_PER_CM * pk_section_bend_loss(f, section, solved, &fields);
     numbers[PK_NUMBER_AREA] = parts * looks.effective_area;
     status = take_diameters(s, section, &fields, numbers + PK_NUMBER_DIAMETERS);
     if (status == PICKET_OK && mode) {

@@ -6,6 +6,7 @@
 #include <string.h>
 
 #include "base/memory.h"
+#include "study/section_bend.h"
 #include "study/section_describe.h"
 #include "study/section_member.h"
 
@@ -48,9 +49,13 @@ static picket_status sample(run *r, const pk_axis *x, const pk_axis *y, int m, b
   pk_section_mode modes[PK_FAMILY_MODES] = {{0}};
   pk_section *section = NULL;
   int count = r->family->count;
-  picket_status status = pk_section_member_open(r->survey, x, y, m, &section);
+  pk_axis before = pk_section_bend_before(r->survey, x);
+  picket_status status = pk_section_member_open(r->survey, &before, y, m, &section);
   if (status == PICKET_OK) {
     status = pk_section_member_solve(r->survey, &r->x, &r->closed_y, m, section, count, modes);
+  }
+  if (status == PICKET_OK) {
+    status = pk_section_bend_follow(r->survey, x, y, m, &section, count, modes);
   }
   for (int i = 0; status == PICKET_OK && i < count; i++) {
     status = pk_section_describe(r->family, section, &modes[i], values + i * PK_NUMBERS,
@@ -97,7 +102,9 @@ static double reach_for(double accuracy) {
 }
 
 static pk_section_wish wish_of(const run *r, pk_end outer, bool closed) {
-  pk_section_wish wish = {.index = r->family->lowest[r->family->count - 1],
+  const pk_section_family *f = r->family;
+  pk_section_wish wish = {.index = f->lowest[f->count - 1],
+                          .leaking = pk_section_bend_leaking(f->survey, f->count, f->lowest),
                           .reach = reach_for(r->options->accuracy),
                           .closed = closed,
                           .accuracy = r->options->accuracy,
@@ -166,6 +173,7 @@ static double judge_all(run *r, const int *m, int count) {
     for (int k = 0; k < PK_NUMBERS; k++) {
       *pk_section_quantity(mode, k) = judge(r, m, count, i * PK_NUMBERS + k);
     }
+    pk_section_bend_judge(r->family, i, mode);
     const picket_quantity *held[2] = {&mode->index, &mode->group_index};
     for (int k = 0; k < 2; k++) {
       if (isfinite(held[k]->uncertainty)) {

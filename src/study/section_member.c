@@ -9,8 +9,8 @@ static const double ABOVE_TOP = 1.0005;
 /* Candidates among which a leaking mode is looked for: it is the one that is absorbed least. */
 enum { CANDIDATES = 3 };
 
-picket_status pk_section_member_open(const pk_section_survey *s, const pk_axis *x, const pk_axis *y,
-                                     int m, pk_section **out) {
+picket_status pk_section_member_bent(const pk_section_survey *s, const pk_axis *x, const pk_axis *y,
+                                     int m, double curvature, pk_section **out) {
   picket_context *context = s->problem->context;
   pk_axis fine_x = {0}, fine_y = {0};
   pk_section *section = NULL;
@@ -19,7 +19,7 @@ picket_status pk_section_member_open(const pk_section_survey *s, const pk_axis *
     status = pk_axis_divide(context, y, m, &fine_y);
   }
   if (status == PICKET_OK) {
-    pk_section_plan plan = {s->block->geometry, &fine_x, &fine_y, s->media, true};
+    pk_section_plan plan = {s->block->geometry, &fine_x, &fine_y, s->media, true, curvature};
     status = pk_section_create(context, &plan, &section);
   }
   if (status == PICKET_OK) {
@@ -33,6 +33,11 @@ picket_status pk_section_member_open(const pk_section_survey *s, const pk_axis *
   }
   *out = section;
   return PICKET_OK;
+}
+
+picket_status pk_section_member_open(const pk_section_survey *s, const pk_axis *x, const pk_axis *y,
+                                     int m, pk_section **out) {
+  return pk_section_member_bent(s, x, y, m, 0, out);
 }
 
 picket_status pk_section_member_uppermost(const pk_section_survey *s, pk_section *section,

@@ -7,7 +7,9 @@
 
 enum { PK_FAMILY_MODES = 200 };
 
-/* The section on member m of the family of base axes x and y, loaded. */
+/* The section on member m of the family of base axes x and y, loaded; and bent (1/µm). */
+picket_status pk_section_member_bent(const pk_section_survey *survey, const pk_axis *x,
+                                     const pk_axis *y, int m, double curvature, pk_section **out);
 picket_status pk_section_member_open(const pk_section_survey *survey, const pk_axis *x,
                                      const pk_axis *y, int m, pk_section **out);
 

@@ -8,6 +8,7 @@
 #include "operator/corner_exponent.h"
 #include "operator/corner_list.h"
 #include "slab/slab.h"
+#include "study/section_bend.h"
 #include "study/section_planes.h"
 
 static const double PI = 3.141592653589793238;
@@ -175,7 +176,8 @@ static picket_status take_extent(pk_section_survey *s) {
     s->high[axis] = given ? 0.5 * block->span_um[axis] : block->high_um[axis];
     bool found = false;
     status = pk_planes_mirror(s->problem->context, block, axis, &found, &s->centre[axis]);
-    s->mirror[axis] = found && (!given || s->centre[axis] == 0);
+    bool bent = axis == PK_U && pk_section_bent(s);
+    s->mirror[axis] = found && !bent && (!given || s->centre[axis] == 0);
   }
   return status;
 }
@@ -309,14 +311,21 @@ static void place_ends(const pk_section_survey *s, const pk_section_wish *wish, 
   w->inner_from = s->block->low_um[axis];
   w->inner_to = s->block->high_um[axis];
   w->low = w->high = wish->outer;
-  for (int end = 0; end < 2 && s->block->span_um[axis] == 0; end++) {
+  bool open = s->block->span_um[axis] == 0;
+  bool bent = open && axis == PK_U && pk_section_bent(s) && !wish->closed;
+  if (bent) {
+    pk_section_bend_place(s, wish, w);
+  }
+  for (int end = 0; end < 2 && open && !bent; end++) {
     int side = 2 * axis + end;
     if (s->leaks[side]) {
       place_leak(s, wish, side, w);
       continue;
     }
     double decay = decay_of(s, side, wish->index);
-    *(end == 0 ? &w->from : &w->to) += (end == 0 ? -1 : 1) * wish->reach * decay;
+    double away = wish->reach * decay;
+    away = axis == PK_V ? fmax(away, pk_section_bend_height(s, wish)) : away;
+    *(end == 0 ? &w->from : &w->to) += end == 0 ? -away : away;
     w->outer_step = fmin(w->outer_step, decay / STEPS_PER_DECAY);
   }
   w->outer_step = isfinite(w->outer_step) ? fmax(w->step, w->outer_step) : 2 * w->step;

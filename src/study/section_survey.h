@@ -42,6 +42,7 @@ void pk_section_survey_clear(pk_section_survey *survey); /* accepts zeros */
 typedef struct pk_section_wish {
   double index;    /* lowest index of the modes wanted: how far they reach */
   double reach;    /* distance of the walls from the shapes in decay lengths */
+  double leaking;  /* index of the mode that the outer side of a bend is open for; 0: none */
   bool closed;     /* walls at the edges of leaking sides, not absorbing layers beyond them */
   double accuracy; /* of the absorbing layers */
   pk_end outer;    /* what stands in for infinity */

@@ -358,6 +358,8 @@ class SectionMode:
     """dβ/dk0, material dispersion included"""
     loss_db_per_cm: Quantity
     """of power: absorption and leakage"""
+    bend_loss_db_per_90_deg: Quantity
+    """loss_db_per_cm over a quarter turn of a bend; NaN without a note where it is straight"""
     effective_area_um2: Quantity
     """(∫S_z dA)² / ∫S_z² dA, µm²"""
     diameters: ModeDiameters

@@ -2,6 +2,12 @@
 #include "reading.h"
 #include "unit/near.h"
 
+#define BAD_BEND(value, message)                                        \
+  REFUSED("3:44", message,                                              \
+          MATERIALS "section: {cladding: oxide, bend_radius_um: " value \
+                    ", shapes: ["                                       \
+                    "{rect: {fill: si, width_nm: 1500, height_nm: 300}}]}\n")
+
 static const bad_text bad_section[] = {
     REFUSED("3:10", "section has no \"shapes\"", MATERIALS "section: {cladding: oxide}\n"),
     REFUSED("3:10", "section has no \"cladding\"",
@@ -22,6 +28,18 @@ static const bad_text bad_section[] = {
     REFUSED("3:43", "section.span_nm.1 is 0, must be above 0",
             MATERIALS "section: {cladding: oxide, span_nm: [100, 0], shapes: [{disc: {fill: si, "
                       "diameter_nm: 100}}]}\n"),
+    BAD_BEND("0", "section.bend_radius_um is 0, must be at least 0.5 and at most 1000000 um"),
+    BAD_BEND("-5", "section.bend_radius_um is -5, must be at least 0.5"),
+    BAD_BEND("2e6", "section.bend_radius_um is 2e6, must be at least 0.5"),
+    BAD_BEND(".nan", "section.bend_radius_um is \".nan\", must be a plain decimal number"),
+    BAD_BEND("tight", "section.bend_radius_um is \"tight\", must be a plain decimal number"),
+    BAD_BEND("0.6",
+             "section.bend_radius_um is 0.6, must be above 0.75 um: the shapes of the "
+             "section reach the centre of the bend"),
+    REFUSED("3:44", "section.bend_radius_um is 1.5, must be above 2 um: the walls of span_nm",
+            MATERIALS
+            "section: {cladding: oxide, bend_radius_um: 1.5, span_nm: [4000, 900], shapes: "
+            "[{disc: {fill: si, diameter_nm: 100}}]}\n"),
 };
 
 static void refuses_bad_sections(void **state) {
@@ -66,6 +84,7 @@ static void understands_a_section(void **state) {
                         "section:\n"
                         "  cladding: oxide\n"
                         "  span_nm: [4000, 3000]\n"
+                        "  bend_radius_um: 12.5\n"
                         "  shapes:\n"
                         "    - stripe: {fill: si, across: y, from_nm: -.inf, to_nm: "
                         "-2000}\n"
@@ -78,6 +97,7 @@ static void understands_a_section(void **state) {
   assert_true(p->section.given);
   assert_near(p->section.span_um[0], 4, 1e-12);
   assert_near(p->section.span_um[1], 3, 1e-12);
+  assert_near(p->section.bend_radius_um, 12.5, 1e-12);
   assert_near(p->section.low_um[0], -0.35, 1e-12);
   assert_near(p->section.high_um[0], 0.235, 1e-12);
   assert_near(p->section.low_um[1], -0.05, 1e-12);
