@@ -75,6 +75,13 @@ typedef struct picket_modes_answer {
  * substrate) has a higher index than the guide's modes, the modes of the guide without that side
  * are followed into it: they leak, and loss_db_per_cm says how much.
  *
+ * A section with a `bend_radius_um` is bent about the line x = -radius: its index is that of the
+ * arc at x = 0 (β s, s the length there), dβ/dk0 at a fixed radius is its group index. Each guided
+ * mode of the straight section is followed into the bend as the mode most like it. What leaves
+ * towards +x counts as loss; where it can't be told (walls given by span_nm, less than 1e-26 of the
+ * power per radian, a caustic more than 50 µm away, smaller than its bar) the losses are missing
+ * with a note.
+ *
  * A wavelength that cannot be computed is marked with the reason and does not stop the rest; if all
  * fail for the same reason, that is the failure of the call. What picket_index_find says on
  * `options->jobs` and PICKET_ERROR_STOPPED holds here too.
