@@ -19,7 +19,7 @@ from .context import CONTINUE, STOP, Context
 from .errors import (ArgumentError, BusyError, ClosedError, FileError, InputError, InternalError, MachineError,
                      MaterialRangeError, NoModeError, NumbersError, NumericError, OutOfMemory, OutputError,
                      PicketError, RequestError, Status, Stopped, UnsupportedError)
-from .field import Field
+from .field import Field, SectionField
 from .options import Option, options
 from .problem import Problem
 from .records import (Component, LogLevel, Polarization, Quantity, Question, Regime, Side, SlabPolarization,

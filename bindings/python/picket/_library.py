@@ -102,6 +102,15 @@ FUNCTIONS = {
     'picket_component_unit': (Text, Int),
     'picket_field_free': (None, Object),
     'picket_fields_write': (Status, Object, Object, Text),
+    # section_field.h
+    'picket_section_field_find': (Status, Object, Object, Double, Int, Out),
+    'picket_section_field_describe': (Status, Object, Object),
+    'picket_section_field_size': (Status, Object, Int, OutInt, OutInt),
+    'picket_section_field_places': (Status, Object, Int, Int, Doubles, Size),
+    'picket_section_field_component': (Status, Object, Int, Doubles, Size),
+    'picket_section_field_permittivity': (Status, Object, Int, Doubles, Size),
+    'picket_section_field_free': (None, Object),
+    'picket_section_fields_write': (Status, Object, Object, Text),
     # index.h, modes.h, besides what every study has
     'picket_index_find_resumable': (Status, Object, Object, Text, Out),
     'picket_modes_find_resumable': (Status, Object, Object, Text, Out),

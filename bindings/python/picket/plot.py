@@ -99,3 +99,15 @@ def draw_field(field, component=None, axes=None):
     axes.set_xlabel('z, µm')
     axes.set_title(f'Re {name}, {field.unit(name)}')
     return axes
+
+
+def draw_section_field(field, component='Ex', axes=None):
+    """The real part of a component over the section."""
+    axes = _axes(axes)
+    x, y = field.places(component)
+    axes.pcolormesh(x, y, field[component].real.T, shading='gouraud', cmap='RdBu')
+    axes.set_aspect('equal')
+    axes.set_xlabel('x, µm')
+    axes.set_ylabel('y, µm')
+    axes.set_title(f'Re {component}, {field.unit(component)}')
+    return axes

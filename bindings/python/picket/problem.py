@@ -13,7 +13,7 @@ from ._library import lib, stamped
 from ._text import flow, is_number
 from .context import Context, Owned, ProgressCallable
 from .errors import ArgumentError, Status
-from .field import Field
+from .field import Field, SectionField
 from .options import packed
 from .records import (AimAnswer, BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, MatchAlong, MatchAnswer,
                       ModesAnswer, Polarization, Question, SlabAnswer)
@@ -201,6 +201,19 @@ class Problem(Owned):
         order          lateral nodes, 0 to 199: 0 is the fundamental mode"""
         return self.context._call(lib.picket_field_find, self, packed(options), Polarization.of(polarization),
                                   wavelength_um, order, progress=progress, wrap=lambda p: Field(self.context, p))
+
+    def section_field(self, wavelength_um: float, order: int = 0, *, progress: Optional[ProgressCallable] = None,
+                      **options: float) -> SectionField:
+        """The field of a mode of the `section`, by falling index from order 0, at a wavelength in vacuum, µm."""
+        return self.context._call(lib.picket_section_field_find, self, packed(options), wavelength_um, order,
+                                  progress=progress, wrap=lambda p: SectionField(self.context, p))
+
+    def write_section_fields(self, path: Path, *, progress: Optional[ProgressCallable] = None,
+                             **options: float) -> None:
+        """Writes the fields of every wavelength of `light`, `count` modes each (default: all, up to 20), to an HDF5
+        file that names its own units and conventions."""
+        self.context._call(lib.picket_section_fields_write, self, packed(options), os.fsencode(path),
+                           progress=progress)
 
     def write_fields(self, path: Path, *, progress: Optional[ProgressCallable] = None, **options: float) -> None:
         """Writes the fields of every wavelength and polarization of `light`, `count` modes each (default 1), to an

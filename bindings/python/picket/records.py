@@ -586,3 +586,22 @@ class FieldDescription:
     x_from_um: float
     x_to_um: float
     """lines outside lie in absorbing layers, where the field is not that of the cell"""
+
+
+# --- section_field.h
+
+@record('picket_section_field_description')
+class SectionFieldDescription:
+    """What a section's field is of."""
+    order: int
+    """by falling index on this grid, from 0"""
+    wavelength_um: float
+    """in vacuum"""
+    index_re: float
+    """β/k0 on this grid; for one with a bar, ask for the modes"""
+    index_im: float
+    x_from_um: float
+    x_to_um: float
+    y_from_um: float
+    y_to_um: float
+    """outside of these lie absorbing layers, where the field is not that of the section"""

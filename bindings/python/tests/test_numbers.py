@@ -201,6 +201,34 @@ def test_modes_of_a_section():
     assert mode.effective_area_um2.value > 0 and mode.diameters.e2_y_um.value > 0.4
 
 
+def test_field_of_a_section():
+    # The film from wall to wall again: E_x is the film's te mode, cos κy inside and exp(-γ|y|) outside.
+    problem = picket.Problem({
+        'light': {'wavelength_nm': 1550},
+        'materials': {'film': {'constant': {'index': HIGH}}, 'around': {'constant': {'index': LOW}}},
+        'section': {'cladding': 'around', 'span_nm': [300, 5000],
+                    'shapes': [{'stripe': {'fill': 'film', 'across': 'y', 'from_nm': -200, 'to_nm': 200}}]}})
+    with problem.section_field(1.55, accuracy=1e-5) as field:
+        about = field.description
+        exact = slab_index(0, 'te', 1.55, 0.4, LOW)
+        assert about.order == 0 and about.index_re == pytest.approx(exact, rel=1e-3)
+        values, (x, y) = field['Ex'], field.places('Ex')
+        assert values.shape == field.shape('Ex') == (len(x), len(y)) and np.all(np.diff(y) > 0)
+        assert field.permittivity('Ex').shape == values.shape
+        assert field.permittivity('Ex').real.max() == pytest.approx(HIGH**2)
+        k0 = 2 * math.pi / 1.55
+        kappa, gamma = k0 * math.sqrt(HIGH**2 - exact**2), k0 * math.sqrt(exact**2 - LOW**2)
+        shape = np.where(np.abs(y) < 0.2, np.cos(kappa * y), math.cos(0.2 * kappa) * np.exp(-gamma * (abs(y) - 0.2)))
+        scaled = values.real / np.abs(values).max() * np.abs(shape).max()
+        np.testing.assert_allclose(scaled, np.broadcast_to(shape, scaled.shape), atol=1e-2)   # of the grid
+        with pytest.raises(KeyError):
+            field['Fx']
+        with pytest.raises(picket.ArgumentError):
+            field.permittivity('Hx')
+    with pytest.raises(picket.ClosedError):
+        field['Ex']
+
+
 @pytest.mark.parametrize('polarization', ['ey', 'hy'])
 def test_field_of_a_stack(polarization):
     problem = picket.Problem(stack(polarization=polarization))
