@@ -1,5 +1,5 @@
 """The first block of the README as a figure: the stop band of the strain cable's bus and its operating band, beside
-the bands that the stop band lies between.
+the band that the stop band lies above.
 
     python3 examples/p4_figure.py [picture.png]
 
@@ -41,7 +41,7 @@ def main():
         return
     matplotlib.use('Agg')           # a file, no window
     path = sys.argv[1] if len(sys.argv) > 1 else 'bus_section.png'
-    bands = problem.bands(count=2, points=6, accuracy=1e-2)
+    bands = problem.bands(count=1, points=5, accuracy=1e-2)
     draw(edges, bands, 0.345, path)
     print(path)
 
