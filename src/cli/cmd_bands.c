@@ -45,7 +45,7 @@ void pk_bands_print(const pk_arguments *arguments, const picket_result *result) 
   for (int i = 0; i < picket_bands_count(result); i++) {
     picket_bands_answer answer;
     if (picket_bands_get(result, i, &answer) == PICKET_OK) {
-      print_gaps(&answer, answer.polarization == PICKET_EY ? "ey" : "hy", &seen);
+      print_gaps(&answer, picket_polarization_name(answer.polarization), &seen);
       print_table(&answer, &seen);
       printf("\n");
     }

@@ -113,7 +113,7 @@ static void print_sweep_table(const picket_result *result, picket_polarization p
 
 static void print_sweep(const picket_result *result, pk_notes *notes) {
   picket_edges_answer answer;
-  for (int p = PICKET_EY; p <= PICKET_HY; p++) {
+  for (int p = PICKET_EY; p <= PICKET_TE_LIKE; p++) {
     int count = 0;
     for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
       count += (int)answer.polarization == p;
@@ -121,7 +121,7 @@ static void print_sweep(const picket_result *result, pk_notes *notes) {
     if (count == 0) {
       continue;
     }
-    printf("%s: stop bands\n", p == PICKET_EY ? "ey" : "hy");
+    printf("%s: stop bands\n", picket_polarization_name((picket_polarization)p));
     print_sweep_table(result, (picket_polarization)p, notes);
     for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
       if ((int)answer.polarization == p && answer.failed) {
@@ -135,7 +135,7 @@ static void print_sweep(const picket_result *result, pk_notes *notes) {
 static void print_answers(const picket_result *result, pk_notes *notes) {
   picket_edges_answer answer;
   for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
-    print_operating(&answer.operating, answer.polarization == PICKET_EY ? "ey" : "hy", notes);
+    print_operating(&answer.operating, picket_polarization_name(answer.polarization), notes);
     print_stop_bands(&answer, notes);
     print_estimate(&answer.estimate, notes);
     printf("\n");

@@ -54,7 +54,7 @@ static void print_head(const picket_result *result, picket_polarization polariza
   for (int i = 0; next_of(result, polarization, &i, &answer); i++) {
     widen(&r, &answer);
   }
-  printf("%s: ", polarization == PICKET_EY ? "ey" : "hy");
+  printf("%s: ", picket_polarization_name(polarization));
   if (r.least > r.most) {
     printf("no Bloch index found\n");
     return;
@@ -134,7 +134,7 @@ static void print_table(const picket_result *result, picket_polarization polariz
 
 void pk_index_print(const pk_arguments *arguments, const picket_result *result) {
   pk_notes seen = {0};
-  for (int p = PICKET_EY; p <= PICKET_HY; p++) {
+  for (int p = PICKET_EY; p <= PICKET_TE_LIKE; p++) {
     picket_index_answer answer;
     int first = 0;
     if (next_of(result, (picket_polarization)p, &first, &answer)) {

@@ -16,7 +16,7 @@
 enum { LAYOUT = JSON_INDENT(2) | JSON_REAL_PRECISION(17) };
 
 const char *pk_word_polarization(picket_polarization polarization) {
-  return polarization == PICKET_EY ? "ey" : "hy";
+  return picket_polarization_name(polarization);
 }
 
 const char *pk_word_slab_polarization(picket_slab_polarization polarization) {

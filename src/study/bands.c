@@ -8,6 +8,7 @@
 #include "base/memory.h"
 #include "bloch/phase.h"
 #include "bloch/resonance.h"
+#include "study/channel_bands.h"
 #include "study/converge.h"
 #include "study/level.h"
 #include "study/study.h"
@@ -305,6 +306,9 @@ static picket_status solve(band_study *s, const picket_options *options,
 static picket_status one_polarization(const pk_problem *problem, pk_polarization polarization,
                                       const picket_options *options, picket_bands_answer *answer,
                                       picket_result *result) {
+  if (pk_asks_channel(problem)) {
+    return pk_channel_bands_of(problem, polarization, options, answer, result);
+  }
   band_study s = {.problem = problem, .polarization = polarization};
   s.bands = options->count > 0 ? (int)options->count : USUAL_BANDS;
   picket_status status = pk_survey_take(problem, polarization, &s.survey);
@@ -320,8 +324,9 @@ static picket_status one_polarization(const pk_problem *problem, pk_polarization
 
 picket_status pk_study_bands(const pk_problem *problem, const picket_options *options,
                              picket_result **out) {
-  if (!problem->has_cell) {
-    return pk_fail(problem->context, PICKET_ERROR_INPUT, "the problem has no cell: bands need one");
+  if (!problem->has_cell && !problem->channel.given) {
+    return pk_fail(problem->context, PICKET_ERROR_INPUT,
+                   "the problem has no cell and no channel: bands need one");
   }
   picket_result *result = NULL;
   picket_status status = pk_result_create(problem->context, PK_RESULT_BANDS, problem->name,

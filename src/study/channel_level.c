@@ -12,6 +12,15 @@ picket_polarization pk_channel_word(pk_polarization polarization) {
   return polarization == PK_HY ? PICKET_TE_LIKE : PICKET_TM_LIKE;
 }
 
+bool pk_asks_channel(const pk_problem *problem) {
+  return !problem->has_cell && problem->channel.given;
+}
+
+picket_polarization pk_answer_word(const pk_problem *problem, pk_polarization polarization) {
+  return pk_asks_channel(problem) ? pk_channel_word(polarization)
+                                  : (picket_polarization)polarization;
+}
+
 picket_status pk_channel_survey_take(const pk_problem *problem, pk_polarization polarization,
                                      double wavelength_um, pk_channel_survey *out) {
   pk_channel_survey s = {.problem = problem, .polarization = polarization};

@@ -18,6 +18,11 @@ typedef struct pk_channel_survey {
 
 picket_polarization pk_channel_word(pk_polarization polarization);
 
+/* True if questions that a cell or a channel can answer go to the channel. */
+bool pk_asks_channel(const pk_problem *problem);
+/* How the answer of a polarization is called: of the cell, else of the channel. */
+picket_polarization pk_answer_word(const pk_problem *problem, pk_polarization polarization);
+
 picket_status pk_channel_survey_take(const pk_problem *problem, pk_polarization polarization,
                                      double wavelength_um, pk_channel_survey *out);
 void pk_channel_survey_clear(pk_channel_survey *survey); /* accepts zeros */

@@ -27,6 +27,7 @@ typedef struct search {
   pk_channel_level *level;
   int harmonics;
   double k;
+  int wanted;
   int count;
   pk_channel_mode mode[MOST_KEPT]; /* by rising k0² */
 } search;
@@ -112,23 +113,50 @@ static int partner_of(const search *s, int first) {
   return -1;
 }
 
+/* Goes up from the densest medium's light line until `done` says so or `most` is reached. */
+static picket_status climb(search *s, double most, bool (*done)(const search *)) {
+  double top = s->survey->section.top, least = s->k * s->k / (top * top);
+  double shift = least, covered = least;
+  picket_status status = PICKET_OK;
+  for (int i = 0; status == PICKET_OK && i < MOST_STEPS && covered < most * most; i++) {
+    status = look_at(s, shift, 0.5 * least, &covered);
+    if (status == PICKET_OK && done(s)) {
+      break;
+    }
+    shift = fmax(covered, fmin(covered * (1 + 0.5 * (STEP - 1)), most * most));
+  }
+  return status;
+}
+
+static bool has_partner(const search *s) {
+  return s->count > 1 && partner_of(s, 0) >= 0;
+}
+
+static bool has_wanted(const search *s) {
+  return s->count > s->wanted;
+}
+
+picket_status pk_channel_lowest(const pk_channel_survey *survey, pk_channel_level *level, double k,
+                                double most, int wanted, double *k0, int *found) {
+  search s = {.survey = survey, .level = level, .k = k, .wanted = wanted};
+  picket_status status = climb(&s, most, has_wanted);
+  *found = 0;
+  for (int i = 0; status == PICKET_OK && i < s.count && *found < wanted; i++) {
+    double own = sqrt(creal(s.mode[i].k0_square));
+    if (own < most) {
+      k0[(*found)++] = own;
+    }
+  }
+  clear(&s);
+  return status;
+}
+
 picket_status pk_channel_pair_search(const pk_channel_survey *survey, pk_channel_level *level,
                                      int harmonics, double most, pk_channel_pair *out) {
   search s = {.survey = survey, .level = level, .harmonics = harmonics};
   s.k = PI / survey->problem->channel.pitch_um;
-  double least = s.k * s.k / (survey->section.top * survey->section.top);
-  picket_status status = PICKET_OK;
-  double shift = least, covered = least;
-  int second = -1;
-  for (int i = 0; status == PICKET_OK && i < MOST_STEPS && covered < most * most; i++) {
-    status = look_at(&s, shift, 0.5 * least, &covered);
-    second = status == PICKET_OK && s.count > 1 ? partner_of(&s, 0) : -1;
-    if (second >= 0) {
-      break;
-    }
-    shift = fmin(covered * (1 + 0.5 * (STEP - 1)), most * most);
-    shift = fmax(shift, covered);
-  }
+  picket_status status = climb(&s, most, has_partner);
+  int second = s.count > 1 ? partner_of(&s, 0) : -1;
   *out = (pk_channel_pair){.known = {true, true}};
   for (int e = 0; status == PICKET_OK && e < 2; e++) {
     int i = e == PK_LONG ? (s.count > 0 ? 0 : -1) : second;
@@ -229,5 +257,49 @@ picket_status pk_channel_pair_near(const pk_channel_survey *survey, pk_channel_l
   if (status == PICKET_OK) {
     *out = found;
   }
+  return status;
+}
+
+/* The kept mode nearest to a frequency, or -1. */
+static int nearest_to(const search *s, double k0) {
+  int best = -1;
+  double least = INFINITY;
+  for (int i = 0; i < s->count; i++) {
+    double away = s->mode[i].right ? fabs(sqrt(creal(s->mode[i].k0_square)) - k0) : INFINITY;
+    if (away < least) {
+      least = away;
+      best = i;
+    }
+  }
+  return best;
+}
+
+static picket_status near_one(search *s, double guess, double *k0, bool *known) {
+  double covered = 0;
+  pk_channel_mode mode = {0};
+  clear(s);
+  picket_status status = pk_channel_media_set(&s->level->media, guess, s->level->channel);
+  if (status == PICKET_OK) {
+    status = look_at(s, guess * guess, 0, &covered);
+  }
+  int i = nearest_to(s, guess);
+  *k0 = NAN;
+  if (status == PICKET_OK && i >= 0) {
+    status = settle(s, i, &mode, known);
+    *k0 = status == PICKET_OK ? creal(csqrt(mode.k0_square)) : NAN;
+  }
+  pk_channel_modes_clear(s->level->context, 1, &mode);
+  return status;
+}
+
+picket_status pk_channel_near(const pk_channel_survey *survey, pk_channel_level *level, double k,
+                              int count, const double *guess, double *k0, bool *known) {
+  search s = {.survey = survey, .level = level, .k = k};
+  picket_status status = PICKET_OK;
+  for (int i = 0; status == PICKET_OK && i < count; i++) {
+    known[i] = true;
+    status = near_one(&s, guess[i], &k0[i], &known[i]);
+  }
+  clear(&s);
   return status;
 }

@@ -36,4 +36,14 @@ picket_status pk_channel_pair_near(const pk_channel_survey *survey, pk_channel_l
                                    int harmonics, const pk_channel_pair *guess,
                                    pk_channel_mode *modes, pk_channel_pair *out);
 
+/* The lowest modes of the polarization at a k, below `most`: k0[0..*found - 1] rising, at most
+ * `wanted` of them. */
+picket_status pk_channel_lowest(const pk_channel_survey *survey, pk_channel_level *level, double k,
+                                double most, int wanted, double *k0, int *found);
+
+/* Modes at a k nearest to guesses, [count] rising, the media at their own frequencies; NaN where
+ * there is none. `known` as in pk_channel_pair. */
+picket_status pk_channel_near(const pk_channel_survey *survey, pk_channel_level *level, double k,
+                              int count, const double *guess, double *k0, bool *known);
+
 #endif

@@ -69,7 +69,7 @@ static picket_status first_look(pk_edge_family *f) {
 static picket_status check_cell(const pk_problem *problem) {
   if (!problem->has_cell) {
     return pk_fail(problem->context, PICKET_ERROR_INPUT,
-                   "the problem has no cell: band edges need one");
+                   "the problem has no cell and no channel: band edges need one");
   }
   if (problem->cell.shift != 0) {
     return pk_fail(problem->context, PICKET_ERROR_UNSUPPORTED,

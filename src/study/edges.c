@@ -3,6 +3,7 @@
 #include <math.h>
 
 #include "base/memory.h"
+#include "study/channel_edges.h"
 #include "study/converge.h"
 #include "study/edge_family.h"
 #include "study/edges.h"
@@ -193,6 +194,9 @@ static picket_status check_found(const pk_edge_family *s, picket_result *result)
 picket_status pk_edges_of(const pk_problem *problem, pk_polarization polarization,
                           const picket_options *options, picket_edges_answer *answer,
                           picket_result *result) {
+  if (pk_asks_channel(problem)) {
+    return pk_channel_edges_of(problem, polarization, options, answer, result);
+  }
   pk_edge_family family;
   picket_status status = pk_edge_family_open(problem, polarization, options, true, &family);
   if (status == PICKET_OK) {

@@ -5,6 +5,7 @@
 #include <stdio.h>
 
 #include "base/memory.h"
+#include "study/channel_level.h"
 #include "study/edges.h"
 #include "study/record_part.h"
 #include "study/sweep.h"
@@ -15,10 +16,11 @@ enum { MOST_BANDS = 10000 };
 static const char NOTE_FAILED[] = "this polarization could not be computed";
 
 static picket_status check(const pk_problem *problem) {
-  return problem->has_cell
+  return problem->has_cell || problem->channel.given
              ? PICKET_OK
              : pk_fail(problem->context, PICKET_ERROR_INPUT,
-                       "the problem has no \"cell\", which is what stop bands are of");
+                       "the problem has no \"cell\" and no \"channel\", which is what stop bands "
+                       "are of");
 }
 
 static int pieces(const pk_problem *problem) {
@@ -35,7 +37,8 @@ static picket_status reserve(picket_result *result, int count) {
 }
 
 static void label(const pk_problem *problem, int piece, char text[PK_SWEEP_LABEL]) {
-  snprintf(text, PK_SWEEP_LABEL, "%s", polarization_of(problem, piece) == PK_EY ? "ey" : "hy");
+  snprintf(text, PK_SWEEP_LABEL, "%s",
+           picket_polarization_name(pk_answer_word(problem, polarization_of(problem, piece))));
 }
 
 static picket_status solve(const pk_problem *problem, const picket_options *options, int piece,
@@ -96,7 +99,8 @@ static picket_status read_bands(picket_result *result, pk_record_reader *reader,
 static picket_status read(picket_result *result, pk_record_reader *reader, void *body) {
   picket_edges_answer *answer = body;
   picket_operating_band *band = &answer->operating;
-  answer->polarization = (picket_polarization)pk_record_read_whole(reader, PICKET_EY, PICKET_HY);
+  answer->polarization =
+      (picket_polarization)pk_record_read_whole(reader, PICKET_EY, PICKET_TE_LIKE);
   picket_status status = read_bands(result, reader, answer);
   band->given = pk_record_read_whole(reader, 0, 1);
   band->from_um = pk_record_read_number(reader);
@@ -117,7 +121,7 @@ static picket_status read(picket_result *result, pk_record_reader *reader, void 
 static void mark(const pk_problem *problem, int piece, const char *note, void *body) {
   picket_edges_answer *answer = body;
   const picket_quantity none = {NAN, NAN, NOTE_FAILED};
-  answer->polarization = (picket_polarization)polarization_of(problem, piece);
+  answer->polarization = pk_answer_word(problem, polarization_of(problem, piece));
   answer->operating = (picket_operating_band){.from_um = NAN, .to_um = NAN, .clearance_um = none};
   answer->estimate = (picket_edge_estimate){.centre_um = NAN, .error_um = none};
   answer->note = note;

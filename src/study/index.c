@@ -10,6 +10,7 @@
 
 #include "base/memory.h"
 #include "study/branch.h"
+#include "study/channel_index.h"
 #include "study/converge.h"
 #include "study/estimate.h"
 #include "study/look.h"
@@ -416,6 +417,10 @@ picket_status pk_index_point(const pk_problem *problem, pk_polarization polariza
                              double wavelength_um, const picket_options *options,
                              picket_index_point *point, pk_profile **profile,
                              picket_result *result) {
+  if (pk_asks_channel(problem)) {
+    return pk_channel_index_point(problem, polarization, wavelength_um, options, point, profile,
+                                  result);
+  }
   index_study s = {0};
   int wanted = options->count > 0 ? (int)options->count : 1;
   point->wavelength_um = wavelength_um;

@@ -5,6 +5,7 @@
 #include <stdio.h>
 
 #include "base/memory.h"
+#include "study/channel_level.h"
 #include "study/index.h"
 #include "study/study.h"
 #include "study/sweep.h"
@@ -12,14 +13,16 @@
 #include "study/trace.h"
 
 static picket_status check(const pk_problem *problem) {
-  if (!problem->has_cell) {
-    return pk_fail(problem->context, PICKET_ERROR_INPUT,
-                   "the problem has no \"cell\", which is what a Bloch index is asked of");
+  if (!problem->has_cell && !problem->channel.given) {
+    return pk_fail(
+        problem->context, PICKET_ERROR_INPUT,
+        "the problem has no \"cell\" and no \"channel\", which is what a Bloch index is asked of");
   }
   if (problem->light.count == 0) {
     return pk_fail_at(
-        problem->context, PICKET_ERROR_INPUT, problem->cell_place,
-        "the Bloch index of a cell needs \"light.wavelength_nm\", which is not given");
+        problem->context, PICKET_ERROR_INPUT,
+        problem->has_cell ? problem->cell_place : problem->channel.place,
+        "the Bloch index of a cell or a channel needs \"light.wavelength_nm\", which is not given");
   }
   return PICKET_OK;
 }
@@ -41,8 +44,9 @@ static double wavelength_of(const pk_problem *problem, int piece) {
 }
 
 static void label(const pk_problem *problem, int piece, char text[PK_SWEEP_LABEL]) {
-  bool ey = polarization_of(problem, piece / problem->light.count) == PK_EY;
-  snprintf(text, PK_SWEEP_LABEL, "%s at %.10g nm", ey ? "ey" : "hy",
+  pk_polarization polarization = polarization_of(problem, piece / problem->light.count);
+  snprintf(text, PK_SWEEP_LABEL, "%s at %.10g nm",
+           picket_polarization_name(pk_answer_word(problem, polarization)),
            1e3 * wavelength_of(problem, piece));
 }
 
@@ -92,7 +96,7 @@ static picket_status gather_answer(const pk_problem *problem, pk_sweep_point *fr
     return PICKET_ERROR_MEMORY;
   }
   picket_index_answer *answer = &result->index[result->count++];
-  answer->polarization = (picket_polarization)polarization_of(problem, a);
+  answer->polarization = pk_answer_word(problem, polarization_of(problem, a));
   answer->points = points;
   answer->point_count = count;
   for (int i = 0; i < count; i++) {
