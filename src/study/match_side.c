@@ -4,6 +4,8 @@
 #include <math.h>
 #include <string.h>
 
+#include "study/section_bend.h"
+
 static bool leaks(const pk_section_survey *s) {
   return s->leaks[0] || s->leaks[1] || s->leaks[2] || s->leaks[3];
 }
@@ -20,11 +22,13 @@ static double reach_for(double accuracy) {
 
 static picket_status lay(const pk_match_side *side, double accuracy, pk_end outer, bool closed,
                          pk_axis *x, pk_axis *y) {
-  pk_section_wish wish = {.index = side->family->lowest[side->place],
-                          .reach = reach_for(accuracy),
-                          .closed = closed,
-                          .accuracy = accuracy,
-                          .outer = outer};
+  pk_section_wish wish = {
+      .index = side->family->lowest[side->place],
+      .leaking = pk_section_bend_leaking(&side->survey, 1, &side->family->lowest[side->place]),
+      .reach = reach_for(accuracy),
+      .closed = closed,
+      .accuracy = accuracy,
+      .outer = outer};
   memcpy(wish.plane, side->family->plane, sizeof wish.plane);
   return pk_section_survey_lay(&side->survey, &wish, x, y);
 }
@@ -78,6 +82,9 @@ picket_status pk_match_side_solve(const pk_match_side *side, int m, bool free_wa
   if (status == PICKET_OK) {
     status = pk_section_member_solve(s, &side->closed_x, &side->closed_y, m, section, count, modes);
     solved = status == PICKET_OK ? count : 0;
+  }
+  if (status == PICKET_OK) {
+    status = pk_section_bend_follow(s, x, y, m, &section, count, modes);
   }
   if (status == PICKET_OK) {
     status = pk_section_fields_take(section, s->k0, &modes[side->place], &fields);

@@ -9,9 +9,9 @@
 
 #include "base/memory.h"
 #include "study/modes.h"
-#include "study/section_family.h"
+#include "study/section_look.h"
 
-enum { MOST_MODES = 20, FAMILIES = 4 };
+enum { MOST_MODES = 20 };
 
 static const char NO_MODE[] =
     "no guided mode was found at this wavelength: the section guides none, or binds one too weakly "
@@ -24,50 +24,27 @@ typedef struct work {
   picket_result *result;
   pk_section_survey survey;
   int most; /* modes wanted */
-  int count;
-  pk_section_family family[FAMILIES];
+  pk_section_families families;
 } work;
-
-static void list_families(work *w) {
-  static const pk_end planes[2] = {PK_END_ZERO, PK_END_FREE};
-  int along_x = w->survey.mirror[0] ? 2 : 1, along_y = w->survey.mirror[1] ? 2 : 1;
-  w->count = 0;
-  for (int i = 0; i < along_x; i++) {
-    for (int j = 0; j < along_y; j++) {
-      w->family[w->count++] =
-          (pk_section_family){.survey = &w->survey, .plane = {planes[i], planes[j]}};
-    }
-  }
-}
 
 /* Of all families together the `most` modes of highest index are kept. */
 static void keep_highest(work *w) {
   for (;;) {
     int total = 0, weakest = -1;
-    for (int f = 0; f < w->count; f++) {
-      total += w->family[f].count;
-      if (w->family[f].count > 0 &&
-          (weakest < 0 || w->family[f].lowest[w->family[f].count - 1] <
-                              w->family[weakest].lowest[w->family[weakest].count - 1])) {
+    for (int f = 0; f < w->families.count; f++) {
+      total += w->families.family[f].count;
+      if (w->families.family[f].count > 0 &&
+          (weakest < 0 ||
+           w->families.family[f].lowest[w->families.family[f].count - 1] <
+               w->families.family[weakest].lowest[w->families.family[weakest].count - 1])) {
         weakest = f;
       }
     }
     if (total <= w->most) {
       return;
     }
-    w->family[weakest].count--;
+    w->families.family[weakest].count--;
   }
-}
-
-static picket_status look(work *w, int *total) {
-  picket_status status = PICKET_OK;
-  *total = 0;
-  list_families(w);
-  for (int f = 0; status == PICKET_OK && f < w->count; f++) {
-    status = pk_section_family_look(&w->family[f], w->most);
-    *total += w->family[f].count;
-  }
-  return status;
 }
 
 static int compare_modes(const void *a, const void *b) {
@@ -84,11 +61,11 @@ static picket_status fill_modes(work *w, int total, picket_modes_point *point) {
   }
   point->modes = modes;
   picket_status status = PICKET_OK;
-  for (int f = 0; status == PICKET_OK && f < w->count; f++) {
-    if (w->family[f].count > 0) {
-      status = pk_section_family_converge(&w->family[f], w->options, w->result,
+  for (int f = 0; status == PICKET_OK && f < w->families.count; f++) {
+    if (w->families.family[f].count > 0) {
+      status = pk_section_family_converge(&w->families.family[f], w->options, w->result,
                                           modes + point->mode_count);
-      point->mode_count += status == PICKET_OK ? w->family[f].count : 0;
+      point->mode_count += status == PICKET_OK ? w->families.family[f].count : 0;
     }
   }
   qsort(modes, (size_t)point->mode_count, sizeof *modes, compare_modes);
@@ -102,17 +79,10 @@ static picket_status fill_point(work *w, double wavelength_um, picket_modes_poin
   point->wavelength_um = wavelength_um;
   picket_status status =
       pk_section_survey_take(w->problem, &w->problem->section, wavelength_um, &w->survey);
-  int total = 0;
   if (status == PICKET_OK) {
-    status = look(w, &total);
+    status = pk_section_look_at(&w->survey, w->most, &w->families);
   }
-  bool leaky = false;
-  if (status == PICKET_OK && total == 0) {
-    status = pk_section_survey_set_apart(&w->survey, &leaky);
-    if (status == PICKET_OK && leaky) {
-      status = look(w, &total);
-    }
-  }
+  int total = w->families.total;
   if (status == PICKET_OK && total == 0) {
     point->note = NO_MODE;
   } else if (status == PICKET_OK) {
