@@ -1,6 +1,7 @@
 /* The stop bands of a cell as a kind of sweep: a piece is the answer of a polarization. In its
  * line: the number of bands, and of each its order, edges, attenuation and what is confined; where
  * the operating band stands; the estimate. */
+#include <assert.h>
 #include <math.h>
 #include <stdio.h>
 
@@ -45,6 +46,15 @@ static picket_status solve(const pk_problem *problem, const picket_options *opti
                            picket_result *scratch, void *body) {
   return pk_edges_of(problem, polarization_of(problem, piece), options, body, scratch);
 }
+
+/* A member that is added to these structs belongs into write and read below; then count it here.
+ * (Sizes are those of 64-bit machines, where every member but two flags takes 8 bytes or three
+ * times that.) */
+static_assert(sizeof(void *) != 8 ||
+                  (sizeof(picket_stop_band) == 3 * sizeof(picket_quantity) + 2 * 8 &&
+                   sizeof(picket_operating_band) == sizeof(picket_quantity) + 4 * 8 &&
+                   sizeof(picket_edge_estimate) == sizeof(picket_quantity) + 2 * 8),
+              "a member of an answer about edges is not in its line");
 
 static void write(const void *body, pk_record *record) {
   const picket_edges_answer *answer = body;

@@ -45,14 +45,15 @@ static const member MEMBER[] = {MEMBERS(AS_ROW)};
 enum { MEMBER_COUNT = sizeof MEMBER / sizeof MEMBER[0] };
 
 /* A member that is in no line of the table would be lost between processes: together with what is
- * written apart and the gaps of alignment, the table must make up the struct. */
+ * written apart and the gaps of alignment (of 64-bit machines), the table must make up the struct.
+ */
 #define PLUS_SIZE(kind, type, name) +SIZE_OF(name)
 enum {
   TABLED = 0 MEMBERS(PLUS_SIZE),
   APART = SIZE_OF(material_count) + SIZE_OF(confinement),
   GAPS = 8 /* after `order`, and after `material_count` */
 };
-static_assert(TABLED + APART + GAPS == sizeof(picket_section_mode),
+static_assert(sizeof(void *) != 8 || TABLED + APART + GAPS == sizeof(picket_section_mode),
               "a member of picket_section_mode is missing in MEMBERS above");
 
 static void write_member(const picket_section_mode *mode, const member *m, pk_record *record) {

@@ -348,10 +348,18 @@ static picket_status finder_new(const pk_problem *problem, const picket_options 
 }
 
 static picket_status check_section(const pk_problem *problem) {
-  return problem->section.given
-             ? PICKET_OK
-             : pk_fail(problem->context, PICKET_ERROR_INPUT,
-                       "the problem has no \"section\", which is what the mode field is of");
+  const pk_section_block *section = &problem->section;
+  if (!section->given) {
+    return pk_fail(problem->context, PICKET_ERROR_INPUT,
+                   "the problem has no \"section\", which is what the mode field is of");
+  }
+  if (section->bend_radius_um > 0) {
+    return pk_fail_at(problem->context, PICKET_ERROR_UNSUPPORTED, section->place,
+                      "section.bend_radius_um is %.10g um, but fields are those of straight "
+                      "sections only",
+                      section->bend_radius_um);
+  }
+  return PICKET_OK;
 }
 
 picket_status pk_section_field(const pk_problem *problem, double wavelength_um,

@@ -213,6 +213,8 @@ class Fields(tool.ToolTest):
         none = self.write(WIRE.replace('fill: core', 'fill: oxide'), 'none.yaml')
         self.run_tool('modes', '--fields', 'a.h5', none, status=1)
         self.assert_refused('modes', '--fields', 'a.h5', self.write(tool.film(), 'film.yaml'), says=['section'])
+        self.assert_refused('modes', '--fields', 'a.h5', '--set', 'section.bend_radius_um=20', path,
+                            says=['straight sections only'])
         self.assertEqual(sorted(p.name for p in self.folder.iterdir()), ['film.yaml', 'none.yaml', 'problem.yaml'])
 
     def test_the_example(self):
