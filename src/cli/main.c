@@ -22,7 +22,7 @@ const pk_command pk_commands[] = {
     {"modes", "full-vector modes of a section", "section, light", picket_modes_find,
      pk_modes_print},
     {"aim", "the dimension that meets a target, with its bar and what a mask makes of it",
-     "aim, and a cell or a section", picket_aim_find, pk_aim_print},
+     "aim, and a cell, a channel or a section", picket_aim_find, pk_aim_print},
     {"tolerance", NULL, NULL, NULL, NULL},
     {"match", "what a mode of a section shares with a Gaussian beam, or a mode of a second section",
      "section, light; a second file needs section", pk_match_find, pk_match_print},

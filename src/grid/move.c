@@ -13,7 +13,7 @@ typedef struct marks {
 
 /* A small move of a value leaves the distances between interfaces nearly as they were. Where one
  * doubles or halves, two interfaces are about to meet, or have passed each other: sorted lines
- * cannot tell. */
+ * cannot tell. The same where one is about to pass an end of the cell and comes in at the other. */
 static const double MOST_STRETCH = 2;
 
 static picket_status check_order(picket_context *context, int count, const double *from,
@@ -46,9 +46,6 @@ static picket_status take_lines(picket_context *context, const pk_cell *from, co
     m->from = PK_NEW(context, count_a + 2, double);
     m->to = PK_NEW(context, count_a + 2, double);
     status = m->from && m->to ? PICKET_OK : PICKET_ERROR_MEMORY;
-  }
-  if (status == PICKET_OK) {
-    status = check_order(context, count_a, a, b);
   }
   for (int i = 0; status == PICKET_OK && i < count_a; i++) {
     m->from[m->count] = a[i];
@@ -97,6 +94,9 @@ static picket_status move_axis(picket_context *context, const pk_axis *axis, con
   picket_status status = take_lines(context, from, to, name, &m);
   if (status == PICKET_OK) {
     add_ends(from, to, name, &m);
+    status = check_order(context, m.count, m.from, m.to);
+  }
+  if (status == PICKET_OK) {
     status = pk_axis_move(context, axis, m.count, m.from, m.to, out);
   }
   pk_free(context, m.from);

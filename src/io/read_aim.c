@@ -154,6 +154,7 @@ picket_status pk_read_aim(pk_reader *reader, const pk_document *document, const 
   if (status == PICKET_OK && values[KEY_FAMILY]) {
     status = pk_read_choice(reader->context, values[KEY_FAMILY], families, 3, &family);
   }
+  aim->family_given = values[KEY_FAMILY] != NULL;
   aim->wanted[0] = family != 1;
   aim->wanted[1] = family != 0;
   return status;

@@ -25,7 +25,7 @@ picket_status pk_aim_measure(pk_aim_search *s, int k, const double *values, doub
   chosen.accuracy = accuracy;
   picket_status status = s->variants->make(s->variants->user, values, &problem);
   if (status == PICKET_ERROR_INPUT) {
-    *out = (pk_measurement){.q = {NAN, NAN, NULL}, .scale = NAN};
+    *out = (pk_measurement){.q = {NAN, NAN, NULL}, .scale = NAN, .limit = NAN};
     snprintf(out->reason, sizeof out->reason, "%s", picket_context_message(context));
     out->q.note = out->reason;
     pk_message_clear(context);
@@ -81,14 +81,20 @@ picket_status pk_aim_decline(pk_aim_search *s, const char *format, ...) {
 /* --- Rules of the mask ------------------------------------------------------------------------
  */
 
-/* The smallest feature that a mask draws: of a section that across, for its heights are those of
- * films. NaN if there is none. */
+/* The smallest feature that a mask draws: of a section or a channel across and along it, for its
+ * heights are those of films. NaN if there is none. */
 static double smallest_feature(const pk_problem *problem, pk_structure structure) {
   double um = INFINITY;
   if (structure == PK_STRUCTURE_CELL) {
     um = problem->smallest_um;
   } else if (structure == PK_STRUCTURE_SECTION) {
     um = pk_geometry_smallest_along(problem->section.geometry, PK_U);
+  } else {
+    const pk_channel_block *channel = &problem->channel;
+    for (int i = 0; i < channel->slices; i++) {
+      um = fmin(um, pk_geometry_smallest_along(channel->slice[i], PK_U));
+      um = channel->slices > 1 ? fmin(um, channel->from_um[i + 1] - channel->from_um[i]) : um;
+    }
   }
   return isfinite(um) ? um : NAN;
 }
@@ -272,20 +278,41 @@ static picket_status ask(const pk_problem *problem, pk_question *question) {
   return PICKET_OK;
 }
 
+/* The families to answer for, in the order of answers: of a cell and, unless the aim names them, of
+ * a channel those of the polarizations of light. */
+static int list_families(const pk_problem *problem, pk_structure structure, pk_family out[2]) {
+  const bool *light = problem->light.wanted, *named = problem->aim.wanted;
+  bool by_light = structure == PK_STRUCTURE_CHANNEL && !problem->aim.family_given;
+  int count = 0;
+  if (structure == PK_STRUCTURE_CELL) {
+    for (int p = 0; p < 2; p++) {
+      if (light[p]) {
+        out[count++] = p == PK_EY ? PK_FAMILY_EY : PK_FAMILY_HY;
+      }
+    }
+    return count;
+  }
+  if (by_light ? light[PK_HY] : named[0]) {
+    out[count++] = PK_FAMILY_TE_LIKE;
+  }
+  if (by_light ? light[PK_EY] : named[1]) {
+    out[count++] = PK_FAMILY_TM_LIKE;
+  }
+  return count;
+}
+
 static picket_status all_families(const pk_problem *problem, const pk_variants *variants,
                                   const double *start, const picket_options *options,
                                   const pk_question *question, picket_result *result) {
-  bool cell = question[0].structure == PK_STRUCTURE_CELL;
+  pk_family family[2];
+  int count = list_families(problem, question[0].structure, family);
   picket_status status = PICKET_OK;
-  for (int f = 0; f < 2 && status == PICKET_OK; f++) {
-    if (!(cell ? problem->light.wanted[f] : problem->aim.wanted[f])) {
-      continue;
-    }
+  for (int f = 0; f < count && status == PICKET_OK; f++) {
     pk_aim_search s = {.problem = problem,
                        .variants = variants,
                        .options = options,
                        .start = start,
-                       .family = (pk_family)(cell ? PK_FAMILY_EY + f : PK_FAMILY_TE_LIKE + f),
+                       .family = family[f],
                        .question = {question[0], question[1]},
                        .result = result,
                        .answer = &result->aim[result->count]};

@@ -4,184 +4,16 @@
  * at hand meets the target (interpolate; with a derivative it is Newton's method and a correction),
  * and half the bracket where that leaves it. Each inner point is measured at the accuracy asked, so
  * the last one is the proof. */
-#include <float.h>
 #include <math.h>
-#include <stdio.h>
 
 #include "study/aim_private.h"
 
 enum {
   MOST_STEPS = 14, /* halving alone gives 1e-4 of the bracket by then */
-  MOST_WALK = 6,   /* towards an end without a value */
   NODES = 4        /* points of a fraction: more would follow the noise of coarse ones */
 };
-static const double COARSE = 1e-3;    /* accuracy of the ends */
-static const double CLOSEST = 1e-3;   /* of the bracket: how near a walk goes to a missing value */
-static const double NARROWEST = 1e-9; /* of the bracket: a change of sign in less is a jump */
-
-typedef struct bracket {
-  bool found;
-  int low, high; /* samples on both sides of the target, by rising x */
-} bracket;
-
-static bool is_good(const pk_aim_search *s, int i) {
-  return isfinite(s->sample[i].m.q.value);
-}
-
-static double residual(const pk_aim_search *s, int i) {
-  return s->sample[i].m.q.value - s->part[0].target;
-}
-
-static bool is_met(const pk_aim_search *s, int i) {
-  return is_good(s, i) && fabs(residual(s, i)) <= pk_aim_tolerance(s, &s->sample[i].m);
-}
-
-static bool straddles(const pk_aim_search *s, int i, int k) {
-  return (residual(s, i) > 0) != (residual(s, k) > 0);
-}
-
-static bracket between(const pk_aim_search *s, int i, int k) {
-  bool rising = s->sample[i].x < s->sample[k].x;
-  return (bracket){true, rising ? i : k, rising ? k : i};
-}
-
-static double width_of(const pk_aim_search *s) {
-  return s->part[0].to - s->part[0].from;
-}
-
-/* Measures at x and keeps it; *out is its number. */
-static picket_status take(pk_aim_search *s, double x, double accuracy, int *out) {
-  if (s->count == PK_AIM_SAMPLES) {
-    return pk_fail(s->problem->context, PICKET_ERROR_INTERNAL, "aim took more than %d samples",
-                   (int)PK_AIM_SAMPLES);
-  }
-  pk_aim_sample *sample = &s->sample[s->count];
-  sample->x = x;
-  sample->slope = sample->slope_bar = NAN;
-  sample->accuracy = accuracy;
-  picket_status status = pk_aim_measure(s, 0, &x, accuracy, &sample->m);
-  if (status == PICKET_OK) {
-    *out = s->count++;
-  }
-  return status;
-}
-
-static double coarse_accuracy(const pk_aim_search *s) {
-  return fmax(s->options->accuracy, COARSE);
-}
-
-/* At an end: once more where the coarse bar leaves the side of the target open. */
-static picket_status take_end(pk_aim_search *s, double x, int *out) {
-  picket_status status = take(s, x, coarse_accuracy(s), out);
-  bool open = status == PICKET_OK && is_good(s, *out) &&
-              !(fabs(residual(s, *out)) > s->sample[*out].m.q.uncertainty);
-  if (open && s->options->accuracy < coarse_accuracy(s)) {
-    s->count--;
-    status = take(s, x, s->options->accuracy, out);
-  }
-  return status;
-}
-
-/* --- The bracket ------------------------------------------------------------------------------
- */
-
-/* From a point with a value towards one without: the next point is where the line through the last
- * two values meets the target, a little beyond, or half way. */
-static picket_status walk(pk_aim_search *s, int good, double bad, bracket *out) {
-  int before = -1;
-  for (int i = 0; i < MOST_WALK && !out->found; i++) {
-    double x = 0.5 * (s->sample[good].x + bad);
-    if (fabs(bad - s->sample[good].x) < CLOSEST * width_of(s)) {
-      return PICKET_OK;
-    }
-    if (before >= 0) {
-      double step = (s->sample[good].x - s->sample[before].x) * residual(s, good) /
-                    (residual(s, before) - residual(s, good));
-      double guess = s->sample[good].x + 1.2 * step;
-      bool inside = (guess - s->sample[good].x) * (bad - guess) > 0;
-      x = inside ? guess : x;
-    }
-    int at = 0;
-    picket_status status = take_end(s, x, &at);
-    if (status != PICKET_OK) {
-      return status;
-    }
-    if (!is_good(s, at)) {
-      bad = x;
-    } else if (is_met(s, at) || straddles(s, at, good)) {
-      *out = between(s, at, good);
-    } else {
-      before = good;
-      good = at;
-    }
-  }
-  return PICKET_OK;
-}
-
-/* The extreme of the parabola through three samples by rising x; NaN if it is not between them. */
-static double extreme(const pk_aim_search *s, int a, int b, int c) {
-  double xa = s->sample[a].x, xb = s->sample[b].x, xc = s->sample[c].x;
-  double left = (residual(s, b) - residual(s, a)) / (xb - xa);
-  double right = (residual(s, c) - residual(s, b)) / (xc - xb);
-  double bend = (right - left) / (xc - xa);
-  double x = 0.5 * (xa + xb) - left / (2 * bend);
-  return x > xa && x < xc ? x : NAN;
-}
-
-/* Both ends lie on the same side: a quantity that turns may meet the target twice. */
-static picket_status search_inside(pk_aim_search *s, int a, int b, bracket *out) {
-  int middle = 0, top = 0;
-  picket_status status = take_end(s, 0.5 * (s->sample[a].x + s->sample[b].x), &middle);
-  if (status != PICKET_OK || !is_good(s, middle)) {
-    return status;
-  }
-  if (!straddles(s, a, middle)) {
-    double nearest = fmin(fabs(residual(s, a)), fabs(residual(s, b)));
-    double x = extreme(s, a, middle, b);
-    if (fabs(residual(s, middle)) >= nearest || isnan(x)) {
-      return PICKET_OK;
-    }
-    status = take_end(s, x, &top);
-    middle = top;
-  }
-  if (status == PICKET_OK && is_good(s, middle) && straddles(s, a, middle)) {
-    s->answer->unique = 0;
-    s->answer->unique_basis =
-        "the quantity turns between the bounds and meets the target on both "
-        "sides; this is the lower of the two";
-    *out = between(s, a, middle);
-  }
-  return status;
-}
-
-static picket_status find_bracket(pk_aim_search *s, bracket *out) {
-  int a = 0, b = 0, middle = 0;
-  picket_status status = take_end(s, s->part[0].from, &a);
-  if (status == PICKET_OK) {
-    status = take_end(s, s->part[0].to, &b);
-  }
-  if (status != PICKET_OK) {
-    return status;
-  }
-  if (is_good(s, a) && is_good(s, b)) {
-    if (is_met(s, a) || is_met(s, b) || straddles(s, a, b)) {
-      *out = between(s, a, b);
-      return PICKET_OK;
-    }
-    return search_inside(s, a, b, out);
-  }
-  if (is_good(s, a) || is_good(s, b)) {
-    return is_good(s, a) ? walk(s, a, s->part[0].to, out) : walk(s, b, s->part[0].from, out);
-  }
-  status = take_end(s, 0.5 * (s->part[0].from + s->part[0].to), &middle);
-  if (status == PICKET_OK && is_good(s, middle)) {
-    status = walk(s, middle, s->part[0].to, out);
-    if (status == PICKET_OK && !out->found) {
-      status = walk(s, middle, s->part[0].from, out);
-    }
-  }
-  return status;
-}
+static const double FAR_FROM_NOISE = 20; /* tolerances between samples for a derivative */
+static const double NARROWEST = 1e-9;    /* of the bracket: a change of sign in less is a jump */
 
 /* --- Steps inside -----------------------------------------------------------------------------
  */
@@ -199,7 +31,7 @@ static double interpolate(const pk_aim_search *s, int count, const int *sample) 
   int n = 0;
   for (int i = 0; i < count; i++) {
     for (int k = 0; k < (i == 0 && twice ? 2 : 1); k++) {
-      r[n] = residual(s, sample[i]);
+      r[n] = pk_aim_residual(s, sample[i]);
       phi[n++] = s->sample[sample[i]].x;
     }
   }
@@ -230,7 +62,7 @@ static void list_sample(int i, int *node, int *count) {
 
 /* The point with a derivative first, then the ends of the bracket and the last ones; the next point
  * lies inside the bracket. */
-static double propose(const pk_aim_search *s, const bracket *b, int first_inner) {
+static double propose(const pk_aim_search *s, const pk_aim_bracket *b, int first_inner) {
   int node[NODES], count = 0;
   for (int i = first_inner; i < s->count; i++) {
     if (isfinite(s->sample[i].slope)) {
@@ -243,7 +75,7 @@ static double propose(const pk_aim_search *s, const bracket *b, int first_inner)
   list_sample(b->low, node, &count);
   list_sample(b->high, node, &count);
   for (int i = s->count - 1; i >= 0; i--) {
-    if (is_good(s, i)) {
+    if (pk_aim_is_good(s, i)) {
       list_sample(i, node, &count);
     }
   }
@@ -263,7 +95,7 @@ static picket_status take_slope(pk_aim_search *s, int i) {
   pk_aim_sample *sample = &s->sample[i];
   pk_measured_slope slope;
   picket_options chosen = *s->options;
-  chosen.accuracy = coarse_accuracy(s);
+  chosen.accuracy = pk_aim_coarse_accuracy(s);
   if (!pk_measured_has_slope(s->question[0].what, s->question[0].structure) ||
       isfinite(sample->slope)) {
     return PICKET_OK;
@@ -281,18 +113,19 @@ static picket_status take_slope(pk_aim_search *s, int i) {
 /* Whether the last two steps together did not halve what is left. */
 static bool is_slow(const pk_aim_search *s, int first_inner) {
   int last = s->count - 1;
-  return last - 2 >= first_inner && fabs(residual(s, last)) > 0.5 * fabs(residual(s, last - 2));
+  return last - 2 >= first_inner &&
+         fabs(pk_aim_residual(s, last)) > 0.5 * fabs(pk_aim_residual(s, last - 2));
 }
 
 /* *met is the sample that meets the target, -1 if a value was lost or jumps. */
-static picket_status refine(pk_aim_search *s, bracket *b, int *met) {
+static picket_status refine(pk_aim_search *s, pk_aim_bracket *b, int *met) {
   int first_inner = s->count;
-  *met = is_met(s, b->low) ? b->low : is_met(s, b->high) ? b->high : -1;
+  *met = pk_aim_is_met(s, b->low) ? b->low : pk_aim_is_met(s, b->high) ? b->high : -1;
   if (*met >= 0 && s->sample[*met].accuracy > s->options->accuracy) {
     double x = s->sample[*met].x;
     int at = 0;
-    picket_status status = take(s, x, s->options->accuracy, &at);
-    if (status != PICKET_OK || is_met(s, at)) {
+    picket_status status = pk_aim_take(s, x, s->options->accuracy, &at);
+    if (status != PICKET_OK || pk_aim_is_met(s, at)) {
       *met = at;
       return status;
     }
@@ -301,19 +134,19 @@ static picket_status refine(pk_aim_search *s, bracket *b, int *met) {
   for (int step = 0; step < MOST_STEPS && *met < 0; step++) {
     int at = 0;
     double low = s->sample[b->low].x, high = s->sample[b->high].x;
-    if (high - low <= NARROWEST * width_of(s)) {
+    if (high - low <= NARROWEST * pk_aim_width(s)) {
       return PICKET_OK;
     }
     double x = is_slow(s, first_inner) ? 0.5 * (low + high) : propose(s, b, first_inner);
-    picket_status status = take(s, x, s->options->accuracy, &at);
-    if (status == PICKET_OK && is_good(s, at) && step == 0 && !is_met(s, at)) {
+    picket_status status = pk_aim_take(s, x, s->options->accuracy, &at);
+    if (status == PICKET_OK && pk_aim_is_good(s, at) && step == 0 && !pk_aim_is_met(s, at)) {
       status = take_slope(s, at);
     }
-    if (status != PICKET_OK || !is_good(s, at)) {
+    if (status != PICKET_OK || !pk_aim_is_good(s, at)) {
       return status;
     }
-    *met = is_met(s, at) ? at : -1;
-    if (straddles(s, at, b->low)) {
+    *met = pk_aim_is_met(s, at) ? at : -1;
+    if (pk_aim_straddles(s, at, b->low)) {
       b->high = at;
     } else {
       b->low = at;
@@ -325,15 +158,14 @@ static picket_status refine(pk_aim_search *s, bracket *b, int *met) {
 /* --- What was found ---------------------------------------------------------------------------
  */
 
-/* The derivative at sample i from the two others nearest to it that are not so near that only noise
- * is between them: of the parabola, with the difference to the nearer secant as the bar. */
-static picket_quantity sampled_slope(const pk_aim_search *s, int i) {
-  int near[2] = {-1, -1};
+/* The two samples nearest to sample i that differ from it by more than some tolerances. */
+static void nearest_samples(const pk_aim_search *s, int i, double tolerances, int near[2]) {
+  near[0] = near[1] = -1;
   for (int k = 0; k < s->count; k++) {
     double d = fabs(s->sample[k].x - s->sample[i].x);
     bool noise = fabs(s->sample[k].m.q.value - s->sample[i].m.q.value) <=
-                 20 * pk_aim_tolerance(s, &s->sample[i].m);
-    if (k == i || !is_good(s, k) || noise || d == 0) {
+                 tolerances * pk_aim_tolerance(s, &s->sample[i].m);
+    if (k == i || !pk_aim_is_good(s, k) || noise || d <= NARROWEST * pk_aim_width(s)) {
       continue;
     }
     if (near[0] < 0 || d < fabs(s->sample[near[0]].x - s->sample[i].x)) {
@@ -342,6 +174,16 @@ static picket_quantity sampled_slope(const pk_aim_search *s, int i) {
     } else if (near[1] < 0 || d < fabs(s->sample[near[1]].x - s->sample[i].x)) {
       near[1] = k;
     }
+  }
+}
+
+/* The derivative at sample i from the two others nearest to it, if possible not so near that only
+ * noise is between them: of the parabola, with the difference to the nearer secant as the bar. */
+static picket_quantity sampled_slope(const pk_aim_search *s, int i) {
+  int near[2];
+  nearest_samples(s, i, FAR_FROM_NOISE, near);
+  if (near[1] < 0) {
+    nearest_samples(s, i, 0, near);
   }
   if (near[1] < 0) {
     return (picket_quantity){NAN, NAN, "there are too few samples for a derivative"};
@@ -381,10 +223,10 @@ static bool is_monotone(const pk_aim_search *s, int met, bool *whole) {
   bool monotone = isfinite(s->part[0].derivative.value);
   *whole = true;
   for (int i = 0; i < s->count; i++) {
-    *whole = *whole && is_good(s, i);
+    *whole = *whole && pk_aim_is_good(s, i);
     monotone = monotone && !(isfinite(s->sample[i].slope) && s->sample[i].slope * sign <= 0);
     for (int k = 0; k < s->count && monotone; k++) {
-      if (is_good(s, i) && is_good(s, k) && s->sample[i].x < s->sample[k].x) {
+      if (pk_aim_is_good(s, i) && pk_aim_is_good(s, k) && s->sample[i].x < s->sample[k].x) {
         double noise = pk_aim_tolerance(s, &s->sample[met].m) + bar_of(s, i) + bar_of(s, k);
         double rise = sign * (s->sample[k].m.q.value - s->sample[i].m.q.value);
         monotone = rise > -noise;
@@ -419,7 +261,7 @@ static picket_status finish(pk_aim_search *s, int met) {
   if (status == PICKET_OK) {
     status = pk_aim_quantity(s, m, &part->achieved);
   }
-  double bar = (m->q.uncertainty + fabs(residual(s, met))) / fabs(part->derivative.value);
+  double bar = (m->q.uncertainty + fabs(pk_aim_residual(s, met))) / fabs(part->derivative.value);
   part->value = (picket_quantity){s->sample[met].x, bar, NULL};
   if (isnan(bar)) {
     part->value.note = part->achieved.note ? part->achieved.note : part->derivative.note;
@@ -430,7 +272,7 @@ static picket_status finish(pk_aim_search *s, int met) {
   return status;
 }
 
-static picket_status decline(pk_aim_search *s, const bracket *b) {
+static picket_status decline(pk_aim_search *s, const pk_aim_bracket *b) {
   const pk_aim_sample *a = &s->sample[0], *z = &s->sample[1];
   const char *name = s->part[0].quantity;
   if (b->found) {
@@ -447,21 +289,22 @@ static picket_status decline(pk_aim_search *s, const bracket *b) {
     return pk_aim_decline(s, "%s is %.8g at %.10g and %.8g at %.10g, and does not meet %.10g", name,
                           a->m.q.value, a->x, z->m.q.value, z->x, s->part[0].target);
   }
-  const pk_aim_sample *bad = isfinite(a->m.q.value) ? z : a, *good = bad == z ? a : z;
-  if (isfinite(good->m.q.value)) {
+  if (b->last >= 0) {
+    const pk_aim_sample *last = &s->sample[b->last];
     return pk_aim_decline(s,
-                          "%s is %.8g at %.10g, has no value at %.10g (%.160s), and does not meet "
-                          "%.10g between",
-                          name, good->m.q.value, good->x, bad->x, bad->m.reason, s->part[0].target);
+                          "%s is %.8g at %.10g, has no value at %.10g (%.160s), and %.10g was not "
+                          "met before",
+                          name, last->m.q.value, last->x, b->gap,
+                          isfinite(a->m.q.value) ? z->m.reason : a->m.reason, s->part[0].target);
   }
   return pk_aim_decline(s, "%s has no value at %.10g: %.200s; nor at %.10g", name, a->x,
                         a->m.reason, z->x);
 }
 
 picket_status pk_aim_one(pk_aim_search *s) {
-  bracket b = {false, 0, 0};
+  pk_aim_bracket b = {false, 0, 0, -1, NAN};
   int met = -1;
-  picket_status status = find_bracket(s, &b);
+  picket_status status = pk_aim_find_bracket(s, &b);
   if (status == PICKET_OK) {
     status = pk_aim_quantity(s, &s->sample[0].m, &s->part[0].at_from);
   }

@@ -6,7 +6,7 @@
 #include "study/aim.h"
 #include "study/measure.h"
 
-enum { PK_AIM_SAMPLES = 32 };
+enum { PK_AIM_SAMPLES = 48 };
 
 /* A measurement at a value of the varied number. */
 typedef struct pk_aim_sample {
@@ -47,6 +47,27 @@ double pk_aim_tolerance(const pk_aim_search *s, const pk_measurement *m);
  * the reasons of the answer. */
 picket_status pk_aim_one(pk_aim_search *s);
 picket_status pk_aim_two(pk_aim_search *s);
+
+/* --- One number: samples (by their numbers) and the bracket --- */
+
+bool pk_aim_is_good(const pk_aim_search *s, int i); /* it has a value */
+double pk_aim_residual(const pk_aim_search *s, int i);
+bool pk_aim_is_met(const pk_aim_search *s, int i);
+bool pk_aim_straddles(const pk_aim_search *s, int i, int k); /* the target lies between them */
+double pk_aim_width(const pk_aim_search *s);                 /* of the bounds */
+double pk_aim_coarse_accuracy(const pk_aim_search *s);       /* of the ends */
+
+/* Measures at x and keeps it; *out is its number. */
+picket_status pk_aim_take(pk_aim_search *s, double x, double accuracy, int *out);
+
+typedef struct pk_aim_bracket {
+  bool found;
+  int low, high; /* samples on both sides of the target, by rising x */
+  int last;      /* of a walk that met nothing: the last sample with a value, -1 without a walk */
+  double gap;    /* and where there was none */
+} pk_aim_bracket;
+/* Samples 0 and 1 are those at the bounds. */
+picket_status pk_aim_find_bracket(pk_aim_search *s, pk_aim_bracket *out);
 
 /* What was measured, with its note as a text of the result. */
 picket_status pk_aim_quantity(pk_aim_search *s, const pk_measurement *m, picket_quantity *out);

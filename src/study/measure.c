@@ -51,7 +51,7 @@ static bool has_structure(const pk_problem *problem, pk_structure structure) {
   switch (structure) {
     case PK_STRUCTURE_CELL: return problem->has_cell;
     case PK_STRUCTURE_SECTION: return problem->section.given;
-    case PK_STRUCTURE_CHANNEL: break;
+    case PK_STRUCTURE_CHANNEL: return problem->channel.given;
   }
   return false;
 }
@@ -158,17 +158,17 @@ picket_status pk_measure_largest_rate(const pk_problem *problem, double waveleng
 static picket_status measure(const pk_problem *problem, const pk_question *question,
                              const picket_options *options, pk_measure_memory *memory,
                              pk_measurement *out) {
-  switch (question->structure) {
-    case PK_STRUCTURE_CELL:
-      return pk_measured_at_wavelength(question->what)
-                 ? pk_measure_bloch(problem, question, options, memory, out)
-                 : pk_measure_edges(problem, question, options, out);
-    case PK_STRUCTURE_SECTION: return pk_measure_section(problem, question, options, memory, out);
-    case PK_STRUCTURE_CHANNEL: break;
+  if (question->structure == PK_STRUCTURE_SECTION) {
+    return pk_measure_section(problem, question, options, memory, out);
   }
-  return pk_fail(problem->context, PICKET_ERROR_UNSUPPORTED,
-                 "%s of a channel cannot be measured in this version",
-                 pk_measured_name(question->what));
+  bool rate = question->what == PK_MEASURED_EDGE_DRIFT ||
+              question->what == PK_MEASURED_INDEX_RATE || question->what == PK_MEASURED_DRIFT;
+  if (question->structure == PK_STRUCTURE_CHANNEL && rate) {
+    return pk_measure_channel_rate(problem, question, options, memory, out);
+  }
+  return pk_measured_at_wavelength(question->what)
+             ? pk_measure_bloch(problem, question, options, memory, out)
+             : pk_measure_edges(problem, question, options, out);
 }
 
 /* A value farther off than what is due is one of another mode. */
@@ -186,7 +186,7 @@ picket_status pk_measure(const pk_problem *problem, const pk_question *question,
   picket_options chosen = *options;
   chosen.count = 0; /* of orders or modes: the measurement asks for what it needs */
   chosen.jobs = 1;
-  *out = (pk_measurement){.q = {NAN, NAN, NULL}, .scale = NAN};
+  *out = (pk_measurement){.q = {NAN, NAN, NULL}, .scale = NAN, .limit = NAN};
   picket_status status = measure(problem, question, &chosen, used, out);
   status = pk_measurement_outcome(problem->context, status, out);
   if (status == PICKET_OK && isfinite(out->q.value)) {

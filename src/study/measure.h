@@ -62,7 +62,9 @@ typedef struct pk_measurement {
   bool reached;      /* the bar is below the accuracy asked */
   double scale;      /* the size that the accuracy is relative to, in the unit of the quantity: the
                         wavelength of an edge for a clearance, the larger part of a sum */
-  char reason[256];  /* "" if there is none */
+  double limit;     /* of a Bloch index: what it would be at the stop band that bounds its zone from
+                       above; else NaN */
+  char reason[256]; /* "" if there is none */
 } pk_measurement;
 
 /* Measures at options->accuracy (relative to the scale). Counts nothing as a failure that is an

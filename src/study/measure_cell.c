@@ -1,4 +1,5 @@
-/* Measurements of a cell: edges, Bloch index and what follows from them. See measure.h.
+/* Measurements of a cell or a channel: edges, Bloch index and what follows from them. See
+ * measure.h.
  *
  * Temperature: dn/dT is the analytic derivative of the Bloch index at a fixed frequency
  * (derivative.h), dλ/dT that of the edge. The frequency of a resonance of a fixed order keeps
@@ -6,6 +7,8 @@
 #include <math.h>
 
 #include "base/memory.h"
+#include "study/channel_index.h"
+#include "study/edges.h"
 #include "study/index.h"
 #include "study/measure_private.h"
 #include "study/study.h"
@@ -34,6 +37,15 @@ void pk_warm(const pk_problem *problem, double wavelength_um, int polarization, 
     out->near[n].problem.temperature_c = centre + AT[n] * WARM_STEP_K;
     out->variation.neighbour[n] = &out->near[n].problem;
   }
+}
+
+/* Te-like modes of a channel are what hy is of a cell seen from above (channel_level.h). */
+static pk_polarization polarization_of(pk_family family) {
+  return family == PK_FAMILY_HY || family == PK_FAMILY_TE_LIKE ? PK_HY : PK_EY;
+}
+
+static double pitch_of(const pk_problem *problem, pk_structure structure) {
+  return structure == PK_STRUCTURE_CHANNEL ? problem->channel.pitch_um : problem->cell.pitch_um;
 }
 
 /* --- Edges -------------------------------------------------------------------------------------
@@ -65,21 +77,27 @@ picket_status pk_measure_edges(const pk_problem *problem, const pk_question *que
   if (question->what == PK_MEASURED_EDGE_DRIFT) {
     return edge_drift(problem, question, options, out);
   }
-  pk_lit lit;
-  picket_result *result = NULL;
-  pk_lit_make(problem, 0, (int)question->family, &lit);
-  picket_status status = pk_study_edges(&lit.problem, options, &result);
+  picket_context *context = problem->context;
+  picket_edges_answer answer = {.bands = NULL};
+  picket_result *scratch = NULL;
+  bool channel = question->structure == PK_STRUCTURE_CHANNEL;
+  picket_status status =
+      pk_result_create(context, PK_RESULT_EDGES, "", options->accuracy, &scratch);
   if (status == PICKET_OK) {
-    const picket_edges_answer *answer = &result->edges[0];
-    const picket_stop_band *first = &answer->bands[0];
-    picket_quantity q = question->what == PK_MEASURED_CLEARANCE ? answer->operating.clearance_um
+    status = (channel ? pk_channel_edges_of : pk_edges_of)(
+        problem, polarization_of(question->family), options, &answer, scratch);
+  }
+  if (status == PICKET_OK) {
+    const picket_stop_band *first = &answer.bands[0];
+    picket_quantity q = question->what == PK_MEASURED_CLEARANCE ? answer.operating.clearance_um
                         : question->what == PK_MEASURED_LONG    ? first->long_um
                                                                 : first->short_um;
     double edge =
         question->what == PK_MEASURED_SHORT ? first->short_um.value : first->long_um.value;
     pk_measurement_take(out, q, NM_PER_UM, NM_PER_UM * edge, options->accuracy);
   }
-  pk_result_free(result);
+  pk_free(context, (void *)answer.bands);
+  pk_result_free(scratch);
   return status;
 }
 
@@ -87,12 +105,12 @@ picket_status pk_measure_edges(const pk_problem *problem, const pk_question *que
  */
 
 /* Whether a mode is the one remembered. */
-static bool is_known(const pk_measure_memory *memory, const pk_problem *problem, double at_um,
+static bool is_known(const pk_measure_memory *memory, double pitch_um, double at_um,
                      const picket_bloch_mode *mode, int *zone, pk_measurement *out) {
-  double halves = 2 * mode->bloch_index.value * problem->cell.pitch_um / at_um;
+  double halves = 2 * mode->bloch_index.value * pitch_um / at_um;
   *zone = (int)floor(halves);
   if (mode->regime == PICKET_REGIME_STOP_BAND) {
-    pk_measurement_refuse(out, "%.10g nm lies inside a stop band of the cell", NM_PER_UM * at_um);
+    pk_measurement_refuse(out, "%.10g nm lies inside a stop band", NM_PER_UM * at_um);
     return false;
   }
   if (memory->known && *zone != memory->zone) {
@@ -180,15 +198,21 @@ picket_status pk_measure_bloch(const pk_problem *problem, const pk_question *que
   picket_status status =
       pk_result_create(context, PK_RESULT_INDEX, "", options->accuracy, &scratch);
   if (status == PICKET_OK) {
-    status = pk_index_point(problem, (pk_polarization)question->family, question->at_um, options,
-                            &point, &profile, scratch);
+    bool channel = question->structure == PK_STRUCTURE_CHANNEL;
+    status = (channel ? pk_channel_index_point : pk_index_point)(
+        problem, polarization_of(question->family), question->at_um, options, &point, &profile,
+        scratch);
   }
   int zone = 0;
+  double pitch = pitch_of(problem, question->structure);
   if (status == PICKET_OK && point.mode_count == 0) {
     pk_measurement_refuse(out, "%s", point.note ? point.note : "there is no Bloch mode");
   } else if (status == PICKET_OK &&
-             is_known(memory, problem, question->at_um, &point.modes[0], &zone, out)) {
+             is_known(memory, pitch, question->at_um, &point.modes[0], &zone, out)) {
     memory->zone = zone;
+    if (question->what == PK_MEASURED_BLOCH_INDEX) {
+      out->limit = (zone + 1) * question->at_um / (2 * pitch);
+    }
     status = take_mode(problem, question, options, &point.modes[0], out);
   }
   pk_index_point_clear(context, &point);

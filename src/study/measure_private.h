@@ -33,12 +33,27 @@ picket_status pk_measurement_outcome(picket_context *context, picket_status stat
 picket_status pk_measure_largest_rate(const pk_problem *problem, double wavelength_um,
                                       double *rate);
 
-/* Of a cell. */
+/* Of a cell or a channel. */
 picket_status pk_measure_edges(const pk_problem *problem, const pk_question *question,
                                const picket_options *options, pk_measurement *out);
 picket_status pk_measure_bloch(const pk_problem *problem, const pk_question *question,
                                const picket_options *options, pk_measure_memory *memory,
                                pk_measurement *out);
+
+/* Edge drift, dn/dT and drift of a channel. */
+picket_status pk_measure_channel_rate(const pk_problem *problem, const pk_question *question,
+                                      const picket_options *options, pk_measure_memory *memory,
+                                      pk_measurement *out);
+
+/* How a derivative with respect to temperature is taken from values: on both sides, or at three
+ * points on one side of the break of an index model. */
+typedef struct pk_warm_points {
+  int count;
+  double at[3];     /* temperatures */
+  double weight[3]; /* of the values, 1/K */
+  double here[3];   /* of the values, for the one at the temperature itself */
+} pk_warm_points;
+pk_warm_points pk_warm_points_around(double temperature_c);
 
 /* Of a section. */
 picket_status pk_measure_section(const pk_problem *problem, const pk_question *question,

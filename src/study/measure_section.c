@@ -25,7 +25,7 @@ static const double MOST_SHARE_CHANGE = 0.5;
 
 /* Half of the span of the difference over temperature, K: indices are known to some 1e-7 from grid
  * to grid and change by some 1e-4 per kelvin; what is left of curvature shows in the bar. */
-static const double SECTION_STEP_K = 5;
+static const double WARM_STEP_K = 5;
 
 static const double PM_PER_UM = 1e6;
 
@@ -118,29 +118,20 @@ static picket_status find_mode(const pk_problem *problem, const pk_question *que
   return status;
 }
 
-typedef struct warm_pair {
-  int count;
-  double weight[3];      /* of the index at each, 1/K */
-  double at[3];          /* temperatures */
-  double rate_weight[3]; /* of the perturbed rate, for that at the middle */
-} warm_pair;
-
-/* Both sides of the temperature, or three points of one side of the break of an index model. */
-static warm_pair pair_around(double t) {
-  double h = SECTION_STEP_K;
-  bool near = fabs(t - PK_BREAK_C) <= h;
-  if (!near) {
-    return (warm_pair){2, {-0.5 / h, 0.5 / h, 0}, {t - h, t + h, 0}, {0.5, 0.5, 0}};
+pk_warm_points pk_warm_points_around(double t) {
+  double h = WARM_STEP_K;
+  if (fabs(t - PK_BREAK_C) > h) {
+    return (pk_warm_points){2, {t - h, t + h, 0}, {-0.5 / h, 0.5 / h, 0}, {0.5, 0.5, 0}};
   }
   double s = t >= PK_BREAK_C ? h : -h; /* (-3 f(0) + 4 f(1) - f(2)) / 2 per step */
-  return (warm_pair){3, {-1.5 / s, 2 / s, -0.5 / s}, {t, t + s, t + 2 * s}, {1, 0, 0}};
+  return (pk_warm_points){3, {t, t + s, t + 2 * s}, {-1.5 / s, 2 / s, -0.5 / s}, {1, 0, 0}};
 }
 
 /* dn/dT and the group index. */
 static picket_status index_rate(const pk_problem *problem, const pk_question *question,
                                 const picket_options *options, pk_measure_memory *memory,
                                 picket_quantity *rate, picket_quantity *group, pk_measurement *m) {
-  warm_pair pair = pair_around(problem->temperature_c);
+  pk_warm_points pair = pk_warm_points_around(problem->temperature_c);
   double perturbed = 0, bars = 0;
   *rate = *group = (picket_quantity){0, 0, NULL};
   for (int i = 0; i < pair.count; i++) {
@@ -155,8 +146,8 @@ static picket_status index_rate(const pk_problem *problem, const pk_question *qu
     memory->known = true;
     rate->value += pair.weight[i] * f.mode.index.value;
     bars += fabs(pair.weight[i]) * f.mode.index.uncertainty;
-    perturbed += pair.rate_weight[i] * f.rate;
-    group->value += pair.rate_weight[i] * f.mode.group_index.value;
+    perturbed += pair.here[i] * f.rate;
+    group->value += pair.here[i] * f.mode.group_index.value;
     group->uncertainty = fmax(group->uncertainty, f.mode.group_index.uncertainty);
   }
   rate->uncertainty = isnan(perturbed) ? bars : fabs(rate->value - perturbed);

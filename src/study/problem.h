@@ -79,6 +79,7 @@ typedef struct pk_aim_block {
   bool given;
   int count; /* of parts: as many targets as numbers */
   pk_aim_part part[PK_AIM_PARTS];
+  bool family_given;
   bool wanted[2]; /* families of a section or a channel: te-like, tm-like */
 } pk_aim_block;
 
