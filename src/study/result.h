@@ -55,9 +55,9 @@ struct picket_result {
   pk_summary_item *summary;
   char *sweep_path;    /* what was swept; null: nothing was */
   double *sweep_value; /* [count] of the answers, or null */
-  char *json, *csv; /* made when first asked for */
-  char **lines;     /* of a summary, for people; [count], or null */
-  char **texts;     /* notes that are not static, each once */
+  char *json, *csv;    /* made when first asked for */
+  char **lines;        /* of a summary, for people; [count], or null */
+  char **texts;        /* notes that are not static, each once */
   int text_count, text_capacity;
 };
 
