@@ -39,6 +39,46 @@ static void one_slice_is_the_section(void **state) {
   }
 }
 
+/* The same with a substrate that the mode leaks into, an absorbing layer below: complex symmetric
+ * matrices, k with the loss of the section. Both residuals are good to 1e-9. */
+static void one_slice_leaks_as_the_section(void **state) {
+  (void)state;
+  const double k0 = 2 * PI / 1.55;
+  const double complex index[PLANE_MEDIA] = {1.4440, 3.4757, 3.4757};
+  guide g = guide_of_teeth(index, PITCH, PITCH, PK_END_ZERO, PK_END_FREE, 1.0);
+  plane *p = &g.plane[0];
+  plane_stripe(p, 2, -INFINITY, -0.9);
+  pk_axis_clear(p->context, &p->y);
+  pk_axis_wish wish = {.low = PK_END_ZERO,
+                       .high = PK_END_ZERO,
+                       .from = -1.6,
+                       .to = 1.0,
+                       .line_count = 3,
+                       .lines = (const double[]){-0.9, -0.11, 0.11},
+                       .step = 0.08,
+                       .inner_from = -1.6,
+                       .inner_to = 0.11,
+                       .outer_step = 0.2,
+                       .growth = 0.3,
+                       .layer = {{0.6, 8}, {0, 0}},
+                       .least_intervals = 1};
+  assert_int_equal(pk_axis_lay(p->context, &wish, &p->y), PICKET_OK);
+  pk_section *section = plane_section(p, 1, true);
+  pk_section_mode mode;
+  int found = 0;
+  assert_int_equal(pk_section_modes(section, k0, 5.3 * k0 * k0, 1, &mode, &found), PICKET_OK);
+  pk_channel *channel = guide_channel(&g, 1, -1, 0);
+  assert_true(pk_channel_is_mirrored(channel) && !pk_channel_is_real(channel));
+  pk_channel_mode wave = guide_wave(channel, k0, creal(mode.beta));
+  assert_true(cimag(mode.beta) > 1e-7);
+  assert_near(cabs(wave.k / mode.beta - 1), 0, 1e-9);
+  pk_channel_modes_clear(p->context, 1, &wave);
+  pk_section_modes_clear(p->context, 1, &mode);
+  pk_channel_free(channel);
+  pk_section_free(section);
+  guide_close(&g);
+}
+
 static guide teeth(double tooth) {
   return guide_of_teeth(SILICON, PITCH, tooth, PK_END_ZERO, PK_END_FREE, 1.2);
 }
@@ -230,6 +270,7 @@ static void short_of_memory(void **state) {
 int main(void) {
   const struct CMUnitTest tests[] = {
       cmocka_unit_test(one_slice_is_the_section),
+      cmocka_unit_test(one_slice_leaks_as_the_section),
       cmocka_unit_test(both_ways_agree),
       cmocka_unit_test(without_a_mirror_the_waves_are_the_same),
       cmocka_unit_test(the_edge_is_a_square_root),
