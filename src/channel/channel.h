@@ -29,16 +29,16 @@
  * k/k0 of the te-like (te) and tm-like (tm) mode at k = 0.7 π/Λ and at the edge (e), harmonics
  * -M-1..M:
  *
- *   harmonics: relative error C (M + 1)⁻³ with C = -0.0125 te, -0.006 tm, -0.015 te-e and tm-e for
- *     even M, on steps of 40, 27 and 20 nm alike; the third power because h = (Ce) is continuous at
- *     the walls and its slope is not. For odd M a fifth of it at M = 3 and less beyond. That parity
- *     belongs to teeth of half the pitch, whose even coefficients vanish; at other lengths the
- * error swings below the same envelope (teeth of 0.37 Λ, te: 4e-5, -2e-4, -3e-5, 0, -3e-5, 1e-5 for
- *     M = 2 to 7).
- *   grid: h^{2α} and h², α = 0.77046 of the edges parallel to x and y, where the teeth end; they
- * are not corrected, as edges parallel to z are. te with steps of 40, 27, 20, 13 nm: relative
- * errors 2.0e-3, 1.1e-3, 7e-4, 4e-4; the first three extrapolate to 1.67322, the last three
- * to 1.67324. tm-e has 3.5 times these errors.
+ *   harmonics: relative error C (M + 1)⁻³ with C = -0.0125 te, -0.006 tm, -0.015 te-e and tm-e
+ *     for even M, on steps of 40, 27 and 20 nm alike; the third power because h = (Ce) is
+ *     continuous at the walls and its slope is not. For odd M a fifth of it at M = 3 and less
+ *     beyond. That parity belongs to teeth of half the pitch, whose even coefficients vanish; at
+ *     other lengths the error swings below the same envelope (teeth of 0.37 Λ, te: 4e-5, -2e-4,
+ *     -3e-5, 0, -3e-5, 1e-5 for M = 2 to 7).
+ *   grid: h^{2α} and h², α = 0.77046 of the edges parallel to x and y, where the teeth end;
+ *     they are not corrected, as edges parallel to z are. te with steps of 40, 27, 20, 13 nm:
+ *     relative errors 2.0e-3, 1.1e-3, 7e-4, 4e-4; the first three extrapolate to 1.67322, the
+ *     last three to 1.67324. tm-e has 3.5 times these errors.
  *
  * The law of the grid holds for steps at the teeth up to about Λ/6. Where a pitch is a few steps or
  * less the average of a box no longer stands for what it holds along z, and the error falls as h
