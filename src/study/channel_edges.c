@@ -30,6 +30,7 @@ static const double GUESS_PART[DECAY_GUESSES] = {1, 0.6, 1.5};
 typedef struct work {
   pk_channel_outlook look;
   bool known[2];
+  double decay[2]; /* of the last grid; 0: none yet */
 } work;
 
 /* --- Attenuation ------------------------------------------------------------------------------ */
@@ -87,16 +88,17 @@ static picket_status find_decay(const work *w, pk_channel_level *level, double k
   return status;
 }
 
-static picket_status attenuation(const work *w, pk_channel_level *level,
-                                 const pk_channel_pair *pair, double *decibel) {
+static picket_status attenuation(work *w, pk_channel_level *level, const pk_channel_pair *pair,
+                                 double *decibel) {
   picket_status status = PICKET_OK;
   double square[2] = {NAN, NAN}, width = pair->k0[PK_SHORT] - pair->k0[PK_LONG];
   double index = PI / w->look.survey.problem->channel.pitch_um / pair->k0[PK_LONG];
   for (int i = 0; status == PICKET_OK && i < 2; i++) {
     double t = INSIDE[i], decay = NAN;
-    double guess = 1.6 * index * width * sqrt(t * (1 - t));
+    double guess = w->decay[i] > 0 ? w->decay[i] : 1.6 * index * width * sqrt(t * (1 - t));
     status = find_decay(w, level, pair->k0[PK_LONG] + t * width, guess, &decay);
     square[i] = decay * decay;
+    w->decay[i] = decay > 0 ? decay : w->decay[i];
   }
   double pitch = w->look.survey.problem->channel.pitch_um;
   *decibel = status == PICKET_OK && isfinite(square[0] + square[1])
@@ -111,20 +113,25 @@ static picket_status sample(void *user, const pk_axis *x, const pk_axis *y, int 
                             double *values) {
   work *w = user;
   pk_channel_level level;
-  pk_channel_pair pair = {.found = {false, false}};
+  pk_channel_pair pair = {.found = {false, false}}, guess = w->look.pair;
+  for (int e = 0; e < 2; e++) {
+    guess.found[e] = guess.found[e] && w->known[e]; /* not known once: not worth solving again */
+  }
   picket_status status =
       pk_channel_level_open(&w->look.survey, x, y, m, harmonics, w->look.pair.k0[PK_LONG], &level);
   if (status != PICKET_OK) {
     return status;
   }
-  status = pk_channel_pair_near(&w->look.survey, &level, harmonics, &w->look.pair, NULL, &pair);
+  status = pk_channel_pair_near(&w->look.survey, &level, harmonics, &guess, NULL, &pair);
   for (int e = 0; status == PICKET_OK && e < 2; e++) {
     bool sound = pair.found[e] && pair.known[e];
     values[e == PK_LONG ? LONG_UM : SHORT_UM] = sound ? 2 * PI / pair.k0[e] : NAN;
-    w->known[e] = pair.known[e];
+    w->known[e] = w->known[e] && pair.known[e];
+    w->look.pair.k0[e] = sound ? pair.k0[e] : w->look.pair.k0[e]; /* a better guess */
   }
   values[ATTENUATION_DB] = NAN;
-  if (status == PICKET_OK && pair.found[PK_LONG] && pair.found[PK_SHORT]) {
+  bool both = pair.found[PK_LONG] && pair.found[PK_SHORT];
+  if (status == PICKET_OK && both && pair.known[PK_LONG] && pair.known[PK_SHORT]) {
     status = attenuation(w, &level, &pair, &values[ATTENUATION_DB]);
   }
   pk_channel_level_close(&level);

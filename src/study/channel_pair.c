@@ -9,7 +9,14 @@
 static const double PI = 3.141592653589793238;
 
 /* Modes asked for at a time, and kept of a search. */
-enum { AT_ONCE = 4, MOST_KEPT = 16, MOST_STEPS = 60 };
+enum { AT_ONCE = 4, MOST_KEPT = 16, MOST_STEPS = 60, CANDIDATES = 3, NEWTON_STEPS = 8 };
+
+/* A Newton step leaves an error of the square of the one before it. */
+static const double SETTLED = 1e-5;
+/* A shift on a mode would make the matrix singular. */
+static const double SHIFT_OFFSET = 1e-6;
+/* Edges farther apart than this are told by their frequency alone. */
+static const double WIDE = 0.02;
 
 /* A search goes on above what it has seen by this factor of k0²: less than 2, so that the solutions
  * at k0 = 0, which hold no field, stay farther away than any missed mode. */
@@ -168,19 +175,13 @@ picket_status pk_channel_pair_search(const pk_channel_survey *survey, pk_channel
   return status;
 }
 
-/* The two kept modes that lie nearest to a guess and belong together; or the one. */
+/* The two kept modes that lie nearest to a guess and belong together. */
 static bool choose(const search *s, const pk_channel_pair *guess, int chosen[2]) {
   double best = INFINITY;
-  bool both = guess->found[PK_LONG] && guess->found[PK_SHORT];
-  int only = guess->found[PK_LONG] ? PK_LONG : PK_SHORT;
   for (int i = 0; i < s->count; i++) {
     double first = sqrt(creal(s->mode[i].k0_square));
-    double away = fabs(first - guess->k0[both ? PK_LONG : only]);
-    if (!both && away < best) {
-      best = away;
-      chosen[only] = i;
-    }
-    for (int j = i + 1; both && j < s->count; j++) {
+    double away = fabs(first - guess->k0[PK_LONG]);
+    for (int j = i + 1; j < s->count; j++) {
       double other = fabs(sqrt(creal(s->mode[j].k0_square)) - guess->k0[PK_SHORT]);
       if (away + other < best &&
           pk_channel_likeness(s->level, s->harmonics, s->mode[i].right, s->mode[j].right) > ALIKE) {
@@ -193,69 +194,67 @@ static bool choose(const search *s, const pk_channel_pair *guess, int chosen[2])
   return isfinite(best);
 }
 
-/* The mode with the media at its own frequency. */
-static picket_status settle(search *s, int i, pk_channel_mode *mode, bool *known) {
-  if (!s->level->media.dispersive && !s->level->media.clamped) {
-    *mode = s->mode[i];
-    s->mode[i].right = s->mode[i].left = NULL;
+/* One Newton step on λ(k0) = k0² from a mode solved with the media at k0. */
+static picket_status newton(const search *s, const pk_channel_mode *mode, double k0, double *next) {
+  pk_channel_level *level = s->level;
+  double complex form = NAN;
+  if (!level->media.dispersive) {
+    *next = sqrt(creal(mode->k0_square));
     return PICKET_OK;
   }
-  return pk_channel_mode_near_k0(s->level->channel, &s->level->media, s->k,
-                                 sqrt(creal(s->mode[i].k0_square)), s->mode[i].right, mode, known);
-}
-
-static picket_status settle_pair(search *s, const pk_channel_pair *guess, pk_channel_mode *modes,
-                                 pk_channel_pair *out) {
-  int chosen[2] = {-1, -1};
-  if (!choose(s, guess, chosen)) {
-    return pk_fail(s->level->context, PICKET_ERROR_NUMERIC,
-                   "the edges of the stop band were not recognised near %.6g/µm",
-                   guess->k0[PK_LONG]);
-  }
-  picket_status status = PICKET_OK;
-  for (int e = 0; status == PICKET_OK && e < 2; e++) {
-    out->found[e] = chosen[e] >= 0;
-    out->known[e] = true;
-    out->k0[e] = NAN;
-    if (chosen[e] < 0) {
-      continue;
-    }
-    pk_channel_mode mode = {0};
-    status = settle(s, chosen[e], &mode, &out->known[e]);
-    if (status == PICKET_OK) {
-      out->k0[e] = creal(csqrt(mode.k0_square));
-    }
-    if (status == PICKET_OK && modes) {
-      modes[e] = mode;
-    } else {
-      pk_channel_modes_clear(s->level->context, 1, &mode);
-    }
+  picket_status status =
+      pk_channel_k0_form(level->channel, k0, level->media.slope, mode->left, mode->right, &form);
+  if (status == PICKET_OK) {
+    double complex slope = form / pk_channel_mass_form(level->channel, mode->left, mode->right);
+    *next = k0 - (creal(mode->k0_square) - k0 * k0) / creal(slope);
   }
   return status;
 }
 
-picket_status pk_channel_pair_near(const pk_channel_survey *survey, pk_channel_level *level,
-                                   int harmonics, const pk_channel_pair *guess,
-                                   pk_channel_mode *modes, pk_channel_pair *out) {
-  search s = {.survey = survey, .level = level, .harmonics = harmonics};
-  s.k = PI / survey->problem->channel.pitch_um;
-  double sum = 0, count = 0, covered = 0;
-  for (int e = 0; e < 2; e++) {
-    sum += guess->found[e] ? guess->k0[e] : 0;
-    count += guess->found[e] ? 1 : 0;
-  }
-  double middle = sum / count;
-  picket_status status = pk_channel_media_set(&level->media, middle, level->channel);
+/* The same mode with the media at another frequency, in the place of the old one. */
+static picket_status solve_again(const search *s, double k0, pk_channel_mode *mode) {
+  pk_channel_mode found[CANDIDATES] = {{0}};
+  int count = 0, best = 0;
+  picket_status status = pk_channel_media_set(&s->level->media, k0, s->level->channel);
   if (status == PICKET_OK) {
-    status = look_at(&s, middle * middle, 0, &covered);
+    status = pk_channel_modes_at_k(s->level->channel, s->k, k0 * k0 * (1 - SHIFT_OFFSET),
+                                   CANDIDATES, mode->right, found, &count);
   }
-  pk_channel_pair found = {0};
-  if (status == PICKET_OK) {
-    status = settle_pair(&s, guess, modes, &found);
+  for (int i = 1; status == PICKET_OK && i < count; i++) {
+    double own = pk_channel_overlap(s->level->channel, mode->right, found[i].right);
+    best = own > pk_channel_overlap(s->level->channel, mode->right, found[best].right) ? i : best;
   }
-  clear(&s);
   if (status == PICKET_OK) {
-    *out = found;
+    pk_channel_mode chosen = found[best];
+    found[best] = *mode;
+    *mode = chosen;
+  }
+  pk_channel_modes_clear(s->level->context, count, found);
+  return status;
+}
+
+/* Takes kept mode i, solved with the media at `k0`, and follows it to its own frequency, which is
+ * then that of its k0_square. Where a material is not known it stays where it is. */
+static picket_status settle(search *s, int i, double k0, pk_channel_mode *mode, bool *known) {
+  picket_status status = PICKET_OK;
+  double step = INFINITY;
+  *mode = s->mode[i];
+  s->mode[i].right = s->mode[i].left = NULL;
+  *known = !s->level->media.clamped;
+  for (int n = 0; status == PICKET_OK && *known && step > SETTLED && n < NEWTON_STEPS; n++) {
+    double next = k0;
+    status = newton(s, mode, k0, &next);
+    step = s->level->media.dispersive ? fabs(next - k0) / k0 : 0;
+    if (status == PICKET_OK && step > SETTLED) {
+      status = solve_again(s, next, mode);
+      *known = !s->level->media.clamped;
+    } else {
+      mode->k0_square = next * next;
+    }
+    k0 = next;
+  }
+  if (status != PICKET_OK) {
+    pk_channel_modes_clear(s->level->context, 1, mode);
   }
   return status;
 }
@@ -274,21 +273,74 @@ static int nearest_to(const search *s, double k0) {
   return best;
 }
 
-static picket_status near_one(search *s, double guess, double *k0, bool *known) {
+/* The mode nearest to a frequency, with the media at its own. */
+static picket_status near_one(search *s, double guess, pk_channel_mode *mode, bool *known) {
   double covered = 0;
-  pk_channel_mode mode = {0};
   clear(s);
   picket_status status = pk_channel_media_set(&s->level->media, guess, s->level->channel);
   if (status == PICKET_OK) {
-    status = look_at(s, guess * guess, 0, &covered);
+    status = look_at(s, guess * guess * (1 - SHIFT_OFFSET), 0, &covered);
   }
   int i = nearest_to(s, guess);
-  *k0 = NAN;
-  if (status == PICKET_OK && i >= 0) {
-    status = settle(s, i, &mode, known);
-    *k0 = status == PICKET_OK ? creal(csqrt(mode.k0_square)) : NAN;
+  if (status == PICKET_OK && i < 0) {
+    status = pk_fail(s->level->context, PICKET_ERROR_NUMERIC,
+                     "no mode of the channel was found near %.6g/µm", guess);
   }
-  pk_channel_modes_clear(s->level->context, 1, &mode);
+  return status == PICKET_OK ? settle(s, i, guess, mode, known) : status;
+}
+
+/* Both edges at once, told by their shape. */
+static picket_status near_both(search *s, const pk_channel_pair *guess, pk_channel_mode modes[2],
+                               bool known[2]) {
+  double middle = 0.5 * (guess->k0[PK_LONG] + guess->k0[PK_SHORT]), covered = 0;
+  int chosen[2] = {-1, -1};
+  picket_status status = pk_channel_media_set(&s->level->media, middle, s->level->channel);
+  if (status == PICKET_OK) {
+    status = look_at(s, middle * middle, 0, &covered);
+  }
+  if (status == PICKET_OK && !choose(s, guess, chosen)) {
+    status = pk_fail(s->level->context, PICKET_ERROR_NUMERIC,
+                     "the edges of the stop band were not recognised near %.6g/µm", middle);
+  }
+  for (int e = 0; status == PICKET_OK && e < 2; e++) {
+    status = pk_channel_media_set(&s->level->media, middle, s->level->channel);
+    if (status == PICKET_OK) {
+      status = settle(s, chosen[e], middle, &modes[e], &known[e]);
+    }
+  }
+  return status;
+}
+
+picket_status pk_channel_pair_near(const pk_channel_survey *survey, pk_channel_level *level,
+                                   int harmonics, const pk_channel_pair *guess,
+                                   pk_channel_mode *modes, pk_channel_pair *out) {
+  search s = {.survey = survey, .level = level, .harmonics = harmonics};
+  pk_channel_mode own[2] = {{0}};
+  pk_channel_pair found = {.known = {true, true}, .k0 = {NAN, NAN}};
+  bool both = guess->found[PK_LONG] && guess->found[PK_SHORT];
+  bool narrow = both && guess->k0[PK_SHORT] - guess->k0[PK_LONG] < WIDE * guess->k0[PK_LONG];
+  s.k = PI / survey->problem->channel.pitch_um;
+  picket_status status = narrow ? near_both(&s, guess, own, found.known) : PICKET_OK;
+  for (int e = 0; status == PICKET_OK && e < 2; e++) {
+    found.found[e] = guess->found[e];
+    if (guess->found[e] && !narrow) {
+      status = near_one(&s, guess->k0[e], &own[e], &found.known[e]);
+    }
+    if (status == PICKET_OK && guess->found[e]) {
+      found.k0[e] = sqrt(creal(own[e].k0_square));
+    }
+  }
+  clear(&s);
+  if (status == PICKET_OK) {
+    *out = found;
+  }
+  for (int e = 0; e < 2; e++) {
+    if (status == PICKET_OK && modes) {
+      modes[e] = own[e];
+    } else {
+      pk_channel_modes_clear(level->context, 1, &own[e]);
+    }
+  }
   return status;
 }
 
@@ -297,8 +349,10 @@ picket_status pk_channel_near(const pk_channel_survey *survey, pk_channel_level 
   search s = {.survey = survey, .level = level, .k = k};
   picket_status status = PICKET_OK;
   for (int i = 0; status == PICKET_OK && i < count; i++) {
-    known[i] = true;
-    status = near_one(&s, guess[i], &k0[i], &known[i]);
+    pk_channel_mode mode = {0};
+    status = near_one(&s, guess[i], &mode, &known[i]);
+    k0[i] = status == PICKET_OK ? sqrt(creal(mode.k0_square)) : NAN;
+    pk_channel_modes_clear(level->context, 1, &mode);
   }
   clear(&s);
   return status;

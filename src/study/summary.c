@@ -243,6 +243,9 @@ static picket_status fill(const pk_problem *problem, picket_result *result) {
   if (problem->has_cell) {
     add_cell(&list, problem);
   }
+  if (problem->channel.given) {
+    pk_summary_channel(&list, problem);
+  }
   if (problem->slab.given) {
     add_slab(&list, problem);
   }

@@ -2,6 +2,7 @@
 #ifndef PK_STUDY_SUMMARY_LIST_H
 #define PK_STUDY_SUMMARY_LIST_H
 
+#include "study/problem.h"
 #include "study/result.h"
 
 /* A summary being written. After a failure every further call returns it at once, so that a writer
@@ -18,6 +19,9 @@ void pk_summary_number(pk_summary_list *list, const char *block, const char *ent
                        const char *what, double value, const char *unit);
 void pk_summary_text(pk_summary_list *list, const char *block, const char *entry, const char *what,
                      const char *text);
+
+/* What was understood of the problem's channel. */
+void pk_summary_channel(pk_summary_list *list, const pk_problem *problem);
 
 /* The lines for people: names in one column, values in the next. */
 picket_status pk_summary_write_lines(picket_result *result);
