@@ -39,7 +39,7 @@ class Files(tool.ToolTest):
         self.assert_refused('check', path, says=['silicon', '633', '1200'])
 
     def test_blocks_of_later_commands_do_not_disturb(self):
-        self.run_tool('slab', self.write(tool.film() + 'rules: {tooth_nm: 100}\n'))
+        self.run_tool('slab', self.write(tool.film() + 'taper: {teeth: 100}\n'))
 
 
 class StandardInput(tool.ToolTest):

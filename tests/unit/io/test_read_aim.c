@@ -2,10 +2,10 @@
 #include "reading.h"
 #include "unit/near.h"
 
-#define CELL                                                                               \
-  MATERIALS                                                                                \
-      "cell: {pitch_nm: 300, cladding: oxide, shapes: [{rect: {fill: si, length_nm: 150, " \
-      "width_nm: 450}}]}\n"
+#define CELL                                                                           \
+  MATERIALS                                                                            \
+  "cell: {pitch_nm: 300, cladding: oxide, shapes: [{rect: {fill: si, length_nm: 150, " \
+  "width_nm: 450}}]}\n"
 #define START CELL "aim: {vary: cell.pitch_nm, between: [200, 400], "
 #define GOOD "quantity: clearance_nm, target: 100"
 
@@ -65,7 +65,8 @@ static const bad_text bad_aim[] = {
             START "quantity: bloch_index, target: 2, at_nm: 5}\n"),
     REFUSED("4:90", "aim.at_nm is a list, must be a number",
             START "quantity: bloch_index, target: 2, at_nm: [1550, 1560]}\n"),
-    REFUSED("4:90", "aim.at_nm is \".nan\", must be a plain", START "quantity: bloch_index, target: 2, at_nm: .nan}\n"),
+    REFUSED("4:90", "aim.at_nm is \".nan\", must be a plain",
+            START "quantity: bloch_index, target: 2, at_nm: .nan}\n"),
     /* the family */
     REFUSED("4:94", "aim.family is \"te\", must be one of: te-like, tm-like, both",
             START "quantity: clearance_nm, target: 100, family: te}\n"),
@@ -93,7 +94,8 @@ static const bad_text bad_rules[] = {
             FORMAT "rules: {smallest_feature_nm: 0}\n"),
     REFUSED("2:18", "rules.grid_nm is -1, must be above 0", FORMAT "rules: {grid_nm: -1}\n"),
     REFUSED("2:18", "rules.grid_nm is a list, must be a number", FORMAT "rules: {grid_nm: [1]}\n"),
-    REFUSED("2:18", "rules.grid_nm is \".nan\", must be a plain", FORMAT "rules: {grid_nm: .nan}\n"),
+    REFUSED("2:18", "rules.grid_nm is \".nan\", must be a plain",
+            FORMAT "rules: {grid_nm: .nan}\n"),
 };
 
 static void refuses_bad_aim(void **state) {
