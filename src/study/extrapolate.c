@@ -111,6 +111,33 @@ static picket_quantity at_corners(const pk_error_law *law, int count, const int 
   return q;
 }
 
+/* Sections with curved or oblique interfaces: beside h² there is a slow term that h³ imitates. What
+ * the least squares gain by h³ (needs more than three grids), times this, goes into the bar.
+ * Calibrated on the exact modes HE11, TE01, HE21 and TM01 of rods of 1.5 and 1.45 in air and of
+ * 3.476 in 1.444 on the members 2 to 5, 4 to 7 and 5 to 8: without it HE21 of glass in air was 1.3
+ * bars off, with it the worst value is at 0.8 of its bar. */
+static const double CURVED_GAIN = 1.5;
+
+/* With corners between oblique sides the singular field there adds h^2α, α from 0.7. Held against
+ * the same square upright, whose corners are corrected. */
+static const double OBLIQUE_GAIN = 3;
+
+/* Least squares with h² and h³: the normal equations of three unknowns. */
+static double with_cubic(int count, const int *m, const double *values) {
+  double a[PK_GRIDS][PK_GRIDS] = {{0}}, b[PK_GRIDS] = {0};
+  for (int g = 0; g < count; g++) {
+    double h = (double)m[0] / m[g];
+    const double term[3] = {1, h * h, h * h * h};
+    for (int i = 0; i < 3; i++) {
+      for (int j = 0; j < 3; j++) {
+        a[i][j] += term[i] * term[j];
+      }
+      b[i] += term[i] * (values[g] - values[0]);
+    }
+  }
+  return values[0] + solve_first(3, a, b);
+}
+
 static picket_quantity scattered(const pk_error_law *law, int count, const int *m,
                                  const double *values) {
   double n = count, sx = 0, sy = 0, sxx = 0, sxy = 0;
@@ -129,6 +156,10 @@ static picket_quantity scattered(const pk_error_law *law, int count, const int *
   }
   double bar = fabs(values[count - 1] - best) + SCATTER_MISFIT * misfit;
   bar += law->share * pow(m[count - 1], -law->share_order) * fabs(best);
+  if (law->curved && count > 3) {
+    bar +=
+        (law->curved > 1 ? OBLIQUE_GAIN : CURVED_GAIN) * fabs(best - with_cubic(count, m, values));
+  }
   return (picket_quantity){best, bar, 0};
 }
 

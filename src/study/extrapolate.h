@@ -19,6 +19,8 @@ typedef struct pk_error_law {
                    the cells and the values scatter about it */
   double share; /* scattered: relative error share·m^-share_order that no fit may show */
   double share_order;
+  int curved;         /* scattered, of a section, where h³ takes part: 1; with corners that are not
+                         corrected: 2 (extrapolate.c) */
   int corners;        /* 1: smooth, and the second exponent is 4 - 2α of the strongest corner */
   const char *no_bar; /* why no bar can be vouched for, or null; static text */
 } pk_error_law;

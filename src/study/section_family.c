@@ -19,17 +19,34 @@ static const int MEMBERS_SMOOTH[ATTEMPTS][MOST_GRIDS] = {
 static const int MEMBERS_CURVED[CURVED_ATTEMPTS][MOST_GRIDS] = {
     {2, 3, 4, 5}, {4, 5, 6, 7}, {6, 7, 8, 10}};
 
-/* A first look: walls this many decay lengths away, for a mode half way up. */
-static const double LOOK_REACH = 5;
-enum { LOOK_MEMBER = 1, LOOK_AT_ONCE = 4 };
+/* A first look: walls this many decay lengths away; the first window is for modes this part of the
+ * way up from the surroundings to the highest index (in n²), each next one for modes this much
+ * weaker. On the coarsest member of what is solved later: on a coarser one modes near cut-off may
+ * be lost. */
+static const double LOOK_REACH = 4, LOOK_DEPTH = 0.2, DEEPER = 8;
+enum { LOOK_MEMBER = 2, LOOK_AT_ONCE = 4 };
+
+/* Modes nearer to cut-off than this part of what a window is made for are left to the next one; of
+ * two windows those nearer to each other than this, as a part of their distance from cut-off, are
+ * the same. */
+static const double UNRESOLVED = 0.06, SAME_DEPTH = 0.2;
+
+/* The shift of a search from above, where no mode is, as a multiple of the highest index's β². */
+static const double ABOVE_TOP = 1.001;
+
+/* Near cut-off the index of the first look, and with it the decay length, may be far off: walls
+ * whose effect is above this part of the accuracy are moved away by this factor, this often. */
+static const double WALL_SHARE = 0.3, WIDER = 1.6;
+enum { WIDENINGS = 3 };
 
 typedef struct run {
   pk_section_family *family;
   const pk_section_survey *survey;
   picket_context *context;
   const picket_options *options;
-  pk_axis x, y;     /* base grid */
-  pk_axis closed_y; /* of the guide without leaking sides; intervals 0: none leaks */
+  pk_axis x, y;               /* base grid */
+  pk_axis closed_x, closed_y; /* of the guide without leaking sides; intervals 0: none leaks */
+  double reach;               /* of the walls, in decay lengths of the first look */
   pk_error_law law;
   int members;
   int member[MOST_MEMBERS];
@@ -52,7 +69,8 @@ static picket_status sample(run *r, const pk_axis *x, const pk_axis *y, int m, b
   pk_axis before = pk_section_bend_before(r->survey, x);
   picket_status status = pk_section_member_open(r->survey, &before, y, m, &section);
   if (status == PICKET_OK) {
-    status = pk_section_member_solve(r->survey, &r->x, &r->closed_y, m, section, count, modes);
+    status = pk_section_member_solve_near(r->survey, &r->closed_x, &r->closed_y, m, section,
+                                          r->family->lowest[0], count, modes);
   }
   if (status == PICKET_OK) {
     status = pk_section_bend_follow(r->survey, x, y, m, &section, count, modes);
@@ -105,7 +123,7 @@ static pk_section_wish wish_of(const run *r, pk_end outer, bool closed) {
   const pk_section_family *f = r->family;
   pk_section_wish wish = {.index = f->lowest[f->count - 1],
                           .leaking = pk_section_bend_leaking(f->survey, f->count, f->lowest),
-                          .reach = reach_for(r->options->accuracy),
+                          .reach = r->reach,
                           .closed = closed,
                           .accuracy = r->options->accuracy,
                           .outer = outer};
@@ -119,21 +137,16 @@ static picket_status lay(run *r, pk_end outer, pk_axis *x, pk_axis *y) {
 }
 
 static picket_status lay_closed(run *r) {
-  pk_axis x = {0};
   pk_section_wish wish = wish_of(r, PK_END_ZERO, true);
-  picket_status status = pk_section_survey_lay(r->survey, &wish, &x, &r->closed_y);
-  pk_axis_clear(r->context, &x);
+  picket_status status = pk_section_survey_lay(r->survey, &wish, &r->closed_x, &r->closed_y);
   return status;
 }
 
-static bool windowed(const pk_section_survey *s) {
-  return s->block->span_um[0] > 0 && s->block->span_um[1] > 0;
-}
-
 /* Magnetic walls move a value the other way than electric ones, by the same amount to first order:
- * half the difference is the error of either. */
+ * half the difference is the error of either. The whole difference is taken, as the second order
+ * is not known. */
 static picket_status sample_span_error(run *r, int m) {
-  if (windowed(r->survey)) {
+  if (r->survey->closed[0] && r->survey->closed[1]) {
     return PICKET_OK;
   }
   pk_axis x = {0}, y = {0};
@@ -143,7 +156,7 @@ static picket_status sample_span_error(run *r, int m) {
   }
   const double *known = values_of(r, m);
   for (int i = 0; status == PICKET_OK && i < r->family->count * PK_NUMBERS; i++) {
-    r->span_error[i] = 0.5 * fabs(r->span_error[i] - known[i]);
+    r->span_error[i] = fabs(r->span_error[i] - known[i]);
   }
   pk_axis_clear(r->context, &x);
   pk_axis_clear(r->context, &y);
@@ -196,6 +209,47 @@ static picket_status mark_partial(const run *r, double worst, picket_result *res
   return result->shortfall ? PICKET_OK : PICKET_ERROR_MEMORY;
 }
 
+/* The largest effect of the walls on an index or group index as a multiple of what was asked. */
+static double walls_matter(const run *r, int m) {
+  double worst = 0;
+  const double *values = values_of(r, m);
+  for (int i = 0; i < r->family->count * PK_NUMBERS; i++) {
+    int number = i % PK_NUMBERS;
+    if (number == PK_NUMBER_INDEX || number == PK_NUMBER_GROUP) {
+      worst = fmax(worst, r->span_error[i] / fabs(values[i]) / r->options->accuracy);
+    }
+  }
+  return worst;
+}
+
+/* Lays base grids whose walls are far enough, and samples the first member. */
+static picket_status lay_wide_enough(run *r, int m) {
+  picket_status status = PICKET_OK;
+  r->reach = reach_for(r->options->accuracy);
+  for (int i = 0; status == PICKET_OK && i <= WIDENINGS; i++) {
+    pk_axis_clear(r->context, &r->x);
+    pk_axis_clear(r->context, &r->y);
+    pk_axis_clear(r->context, &r->closed_x);
+    pk_axis_clear(r->context, &r->closed_y);
+    r->members = 0;
+    status = lay(r, PK_END_ZERO, &r->x, &r->y);
+    if (status == PICKET_OK && leaks(r->survey)) {
+      status = lay_closed(r);
+    }
+    if (status == PICKET_OK) {
+      status = sample_grids(r, &m, 1);
+    }
+    if (status == PICKET_OK) {
+      status = sample_span_error(r, m);
+    }
+    if (status == PICKET_OK && walls_matter(r, m) <= WALL_SHARE) {
+      break;
+    }
+    r->reach *= WIDER;
+  }
+  return status;
+}
+
 static picket_status refine(run *r, picket_result *result) {
   double worst = 0;
   for (int attempt = 0; attempt < ATTEMPTS; attempt++) {
@@ -209,9 +263,6 @@ static picket_status refine(run *r, picket_result *result) {
       break;
     }
     picket_status status = sample_grids(r, m, count);
-    if (status == PICKET_OK && attempt == 0) {
-      status = sample_span_error(r, m[0]);
-    }
     if (status != PICKET_OK) {
       return status;
     }
@@ -249,10 +300,7 @@ picket_status pk_section_family_converge(pk_section_family *family, const picket
   r.span_error = PK_NEW(context, family->count * PK_NUMBERS, double);
   picket_status status = r.values && r.span_error ? PICKET_OK : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
-    status = lay(&r, PK_END_ZERO, &r.x, &r.y);
-  }
-  if (status == PICKET_OK && leaks(r.survey)) {
-    status = lay_closed(&r);
+    status = lay_wide_enough(&r, MEMBERS_SMOOTH[0][0]);
   }
   if (status == PICKET_OK) {
     status = pk_section_survey_law(r.survey, &r.x, &r.y, &r.law);
@@ -269,6 +317,7 @@ picket_status pk_section_family_converge(pk_section_family *family, const picket
   }
   pk_axis_clear(context, &r.x);
   pk_axis_clear(context, &r.y);
+  pk_axis_clear(context, &r.closed_x);
   pk_axis_clear(context, &r.closed_y);
   pk_free(context, r.values);
   pk_free(context, r.span_error);
@@ -277,35 +326,63 @@ picket_status pk_section_family_converge(pk_section_family *family, const picket
 
 /* --- First look ------------------------------------------------------------------------------- */
 
-static picket_status count_guided(pk_section_family *f, pk_section *section, int wanted,
-                                  bool *all) {
+/* One window of a look: walls for modes with n² = cut² + depth. */
+typedef struct look {
+  pk_section_family *family;
+  int most;
+  double depth;
+  double ceiling; /* n² of the weakest mode of the windows before, a little lowered */
+} look;
+
+static picket_status take_guided(look *l, pk_section *section, double shift, int wanted, int *found,
+                                 int *taken) {
+  pk_section_family *f = l->family;
+  const pk_section_survey *s = f->survey;
   pk_section_mode modes[PK_FAMILY_MODES];
-  int found = 0;
-  picket_status status = pk_section_member_uppermost(f->survey, section, wanted, modes, &found);
-  f->count = 0;
-  for (int i = 0; status == PICKET_OK && i < found; i++) {
-    double index = creal(modes[i].beta) / f->survey->k0;
-    if (index > f->survey->cut && cimag(modes[i].beta) < creal(modes[i].beta)) {
-      f->lowest[f->count++] = index;
+  picket_status status = pk_section_modes(section, s->k0, shift, wanted, modes, found);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  *taken = 0;
+  for (int i = 0; i < *found; i++) {
+    double index = creal(modes[i].beta) / s->k0;
+    double above = index * index - s->cut * s->cut;
+    bool guided = index > s->cut && cimag(modes[i].beta) < creal(modes[i].beta);
+    if (guided && above > UNRESOLVED * l->depth && index * index < l->ceiling &&
+        f->count + *taken < l->most) {
+      f->lowest[f->count + (*taken)++] = index;
     }
   }
-  *all = f->count == found && found == wanted;
-  if (status == PICKET_OK) {
-    pk_section_modes_clear(f->survey->problem->context, found, modes);
-  }
-  return status;
+  pk_section_modes_clear(s->problem->context, *found, modes);
+  return PICKET_OK;
 }
 
-picket_status pk_section_family_look(pk_section_family *f, int most) {
+/* The first window is searched from above until modes that are not guided turn up, the wider ones
+ * near the modes they are made for. */
+static picket_status search_window(look *l, pk_section *section, bool first) {
+  const pk_section_survey *s = l->family->survey;
+  double k_square = s->k0 * s->k0;
+  double shift =
+      first ? k_square * s->top * s->top * ABOVE_TOP : k_square * (s->cut * s->cut + 2 * l->depth);
+  int wanted = l->most < LOOK_AT_ONCE ? l->most : LOOK_AT_ONCE, found = 0, taken = 0;
+  for (;;) {
+    picket_status status = take_guided(l, section, shift, wanted, &found, &taken);
+    bool more = taken == found && found == wanted && wanted < l->most;
+    if (status != PICKET_OK || !more) {
+      l->family->count += status == PICKET_OK ? taken : 0;
+      return status;
+    }
+    wanted = 3 * wanted < l->most ? 3 * wanted : l->most;
+  }
+}
+
+static picket_status look_through(look *l, bool first) {
+  pk_section_family *f = l->family;
   const pk_section_survey *s = f->survey;
   picket_context *context = s->problem->context;
   pk_axis x = {0}, y = {0};
   pk_section *section = NULL;
-  f->count = 0;
-  if (s->cut >= s->top) {
-    return PICKET_OK;
-  }
-  pk_section_wish wish = {.index = 0.5 * (s->top + s->cut),
+  pk_section_wish wish = {.index = sqrt(s->cut * s->cut + l->depth),
                           .reach = LOOK_REACH,
                           .closed = true,
                           .accuracy = 1e-2,
@@ -315,14 +392,39 @@ picket_status pk_section_family_look(pk_section_family *f, int most) {
   if (status == PICKET_OK) {
     status = pk_section_member_open(s, &x, &y, LOOK_MEMBER, &section);
   }
-  bool more = true;
-  for (int wanted = most < LOOK_AT_ONCE ? most : LOOK_AT_ONCE; status == PICKET_OK && more;) {
-    status = count_guided(f, section, wanted, &more);
-    more = more && wanted < most;
-    wanted = 3 * wanted < most ? 3 * wanted : most;
+  if (status == PICKET_OK) {
+    status = search_window(l, section, first);
   }
   pk_section_free(section);
   pk_axis_clear(context, &x);
   pk_axis_clear(context, &y);
+  if (status == PICKET_ERROR_NUMERIC && !first) { /* nothing stands out there */
+    pk_message_clear(context);
+    status = PICKET_OK;
+  }
+  return status;
+}
+
+/* Windows grow until they hold the weakest modes that are followed: in a wide one the modes of the
+ * window itself crowd, and only those near the shift can be told from each other. */
+picket_status pk_section_family_look(pk_section_family *f, int most) {
+  const pk_section_survey *s = f->survey;
+  f->count = 0;
+  if (s->cut >= s->top) {
+    return PICKET_OK;
+  }
+  double least = pk_section_survey_least_depth();
+  look l = {.family = f, .most = most, .ceiling = INFINITY};
+  l.depth = LOOK_DEPTH * (s->top * s->top - s->cut * s->cut);
+  picket_status status = look_through(&l, true);
+  bool open = !s->closed[0] || !s->closed[1];
+  while (status == PICKET_OK && open && s->cut > 0 && l.depth > least && f->count < most) {
+    if (f->count > 0) {
+      double weakest = f->lowest[f->count - 1] * f->lowest[f->count - 1];
+      l.ceiling = weakest - SAME_DEPTH * (weakest - s->cut * s->cut);
+    }
+    l.depth = fmax(l.depth / DEEPER, 0.5 * least);
+    status = look_through(&l, false);
+  }
   return status;
 }

@@ -6,6 +6,10 @@
 /* The shift stands this far above the highest index, where no mode is. */
 static const double ABOVE_TOP = 1.0005;
 
+/* Of the distance of n² of the highest mode from that of the surroundings: more than that mode
+ * moves from grid to grid, less than what lies between modes. */
+static const double SHIFT_MARGIN = 0.15;
+
 /* Candidates among which a leaking mode is looked for: it is the one that is absorbed least. */
 enum { CANDIDATES = 3 };
 
@@ -67,13 +71,23 @@ static picket_status leaking_mode(const pk_section_survey *s, pk_section *sectio
   return PICKET_OK;
 }
 
-picket_status pk_section_member_solve(const pk_section_survey *s, const pk_axis *x,
-                                      const pk_axis *closed_y, int m, pk_section *section,
-                                      int count, pk_section_mode *modes) {
+/* The modes nearest to a shift a little above the highest one that is known: near the shift the
+ * iteration converges fast even where modes crowd below the index of the surroundings. */
+static picket_status from_above(const pk_section_survey *s, pk_section *section, double highest,
+                                int wanted, pk_section_mode *modes, int *found) {
+  double known = highest * highest, top = s->top * ABOVE_TOP;
+  double shift = known + SHIFT_MARGIN * (known - s->cut * s->cut);
+  shift = s->k0 * s->k0 * fmin(shift, top * top);
+  return pk_section_modes(section, s->k0, shift, wanted, modes, found);
+}
+
+picket_status pk_section_member_solve_near(const pk_section_survey *s, const pk_axis *closed_x,
+                                           const pk_axis *closed_y, int m, pk_section *section,
+                                           double highest, int count, pk_section_mode *modes) {
   picket_context *context = s->problem->context;
   int found = 0;
   if (closed_y->intervals == 0) {
-    picket_status status = pk_section_member_uppermost(s, section, count, modes, &found);
+    picket_status status = from_above(s, section, highest, count, modes, &found);
     if (status == PICKET_OK && found < count) {
       pk_section_modes_clear(context, found, modes);
       status = pk_fail(context, PICKET_ERROR_NUMERIC, "%d of %d modes of the section converged",
@@ -83,9 +97,9 @@ picket_status pk_section_member_solve(const pk_section_survey *s, const pk_axis 
   }
   pk_section_mode closed[PK_FAMILY_MODES] = {{0}};
   pk_section *twin = NULL;
-  picket_status status = pk_section_member_open(s, x, closed_y, m, &twin);
+  picket_status status = pk_section_member_open(s, closed_x, closed_y, m, &twin);
   if (status == PICKET_OK) {
-    status = pk_section_member_uppermost(s, twin, count, closed, &found);
+    status = from_above(s, twin, highest, count, closed, &found);
   }
   for (int i = 0; status == PICKET_OK && i < count; i++) {
     status = i < found ? leaking_mode(s, section, closed[i].beta_square, &modes[i])
@@ -98,4 +112,10 @@ picket_status pk_section_member_solve(const pk_section_survey *s, const pk_axis 
     pk_section_modes_clear(context, count, modes);
   }
   return status;
+}
+
+picket_status pk_section_member_solve(const pk_section_survey *s, const pk_axis *closed_x,
+                                      const pk_axis *closed_y, int m, pk_section *section,
+                                      int count, pk_section_mode *modes) {
+  return pk_section_member_solve_near(s, closed_x, closed_y, m, section, s->top, count, modes);
 }

@@ -18,10 +18,15 @@ picket_status pk_section_member_uppermost(const pk_section_survey *survey, pk_se
                                           int wanted, pk_section_mode *modes, int *found);
 
 /* The first `count` guided modes of the section on member m, by falling index. Where sides leak,
- * those of the guide closed towards them (closed_y, with x; without intervals: no side leaks) say
- * what to look for. modes [count]; pk_section_modes_clear. */
-picket_status pk_section_member_solve(const pk_section_survey *survey, const pk_axis *x,
+ * those of the guide closed towards them (closed_x, closed_y; without intervals: no side leaks)
+ * say what to look for. modes [count]; pk_section_modes_clear. */
+picket_status pk_section_member_solve(const pk_section_survey *survey, const pk_axis *closed_x,
                                       const pk_axis *closed_y, int m, pk_section *section,
                                       int count, pk_section_mode *modes);
+
+/* The same where the highest index is known roughly, which is faster. */
+picket_status pk_section_member_solve_near(const pk_section_survey *survey, const pk_axis *closed_x,
+                                           const pk_axis *closed_y, int m, pk_section *section,
+                                           double highest, int count, pk_section_mode *modes);
 
 #endif

@@ -28,8 +28,9 @@ static const double SHARE = 2e-3;
 static const double STEPS_PER_DECAY = 1.5;
 static const double GROWTH = 0.3;
 
-/* Near cut-off a mode reaches as far as it likes; this many wavelengths are followed. */
-static const double LONGEST_DECAY = 2;
+/* Near cut-off a mode reaches as far as it likes; this many wavelengths are followed: n² is then
+ * 2.5e-4 above that of the surroundings. Steps grow with the distance, so a wide look is cheap. */
+static const double LONGEST_DECAY = 10;
 
 /* Far out: beyond every shape that a file may hold (io/read_section.c). */
 /* Absorbing layers: thickness times the wavenumber that goes out, steps of the base per radian of
@@ -41,10 +42,6 @@ static const double FAR_X_UM = 49.99, FAR_Y_UM = 60;
 /* A corner so weak is not told from none: 4 - 2α is 2. */
 static const double WEAK = 1e-3;
 
-static const char NOTE_OBLIQUE[] =
-    "no error bar: the electric field is singular at a corner with an oblique or curved side, "
-    "which "
-    "is not corrected, so the error does not fall as the square of the grid spacing";
 static const char NOTE_LOST[] =
     "no error bar: two interfaces are too close together for grid lines on both, so the singular "
     "electric field at a corner there is not corrected";
@@ -89,15 +86,22 @@ static int medium_on(const pk_geometry *geometry, int axis, double along, double
                       : pk_geometry_medium_at(geometry, across, along);
 }
 
+/* Where a side is looked at: just inside the border of a window that is given. */
+static double far_out(const pk_section_survey *s, int side) {
+  int axis = side / 2;
+  double span = s->block->span_um[axis];
+  double far = span > 0 ? 0.5 * span - PK_SAME_LINE_UM : axis == PK_U ? FAR_X_UM : FAR_Y_UM;
+  return side % 2 ? far : -far;
+}
+
 /* Highest index of a guided mode of the films that a plane has along the line `axis` = at, or of
  * their surroundings. */
 static picket_status films_index(const pk_section_survey *s, const pk_geometry *geometry, int axis,
                                  double at, int count, const double *line, double *index) {
   picket_context *context = s->problem->context;
-  double far = axis == PK_U ? FAR_Y_UM : FAR_X_UM;
   int low_side = axis == PK_U ? 2 : 0; /* of the films */
-  double low = s->leaks[low_side] ? s->edge[low_side] + 1e-6 : -far;
-  double high = s->leaks[low_side + 1] ? s->edge[low_side + 1] - 1e-6 : far;
+  double low = s->leaks[low_side] ? s->edge[low_side] + 1e-6 : far_out(s, low_side);
+  double high = s->leaks[low_side + 1] ? s->edge[low_side + 1] - 1e-6 : far_out(s, low_side + 1);
   pk_slab_film *films = PK_NEW(context, count, pk_slab_film);
   if (!films) {
     return PICKET_ERROR_MEMORY;
@@ -117,7 +121,7 @@ static picket_status films_index(const pk_section_survey *s, const pk_geometry *
   int last = medium_on(geometry, axis, at, high);
   slab.substrate = pk_slab_isotropic(creal(s->permittivity[first]), 0);
   slab.cover = pk_slab_isotropic(creal(s->permittivity[last]), 0);
-  *index = sqrt(fmax(creal(s->permittivity[first]), creal(s->permittivity[last])));
+  *index = sqrt(fmax(0, fmax(creal(s->permittivity[first]), creal(s->permittivity[last]))));
   picket_status status = PICKET_OK;
   pk_slab_mode mode;
   if (!same) {
@@ -138,12 +142,11 @@ static picket_status side_index(const pk_section_survey *s, const pk_geometry *g
                                 double *index) {
   picket_context *context = s->problem->context;
   int axis = side / 2;
-  double far = axis == PK_U ? FAR_X_UM : FAR_Y_UM;
   double *line = NULL;
   int count = 0;
   picket_status status = pk_geometry_lines(geometry, axis == PK_U ? PK_V : PK_U, &line, &count);
   if (status == PICKET_OK) {
-    status = films_index(s, geometry, axis, side % 2 ? far : -far, count, line, index);
+    status = films_index(s, geometry, axis, far_out(s, side), count, line, index);
   }
   pk_free(context, line);
   return status;
@@ -182,12 +185,45 @@ static picket_status take_extent(pk_section_survey *s) {
   return status;
 }
 
+/* A window along which nothing varies is a guide between walls; any other one is cut out of
+ * surroundings that go on beyond it. */
+static picket_status take_closed(pk_section_survey *s) {
+  picket_status status = PICKET_OK;
+  for (int axis = 0; status == PICKET_OK && axis < 2; axis++) {
+    double *line = NULL;
+    int count = 0;
+    status = pk_planes_lines(s->problem->context, s->block, axis, &line, &count);
+    bool varies = !pk_planes_are_rectangular(s->block);
+    for (int i = 0; i < count; i++) {
+      varies = varies || (line[i] > s->low[axis] && line[i] < s->high[axis]);
+    }
+    s->closed[axis] = s->block->span_um[axis] > 0 && !varies;
+    pk_free(s->problem->context, line);
+  }
+  return status;
+}
+
 static void take_cut(pk_section_survey *s) {
   s->cut = 0;
   for (int side = 0; side < PK_SIDES; side++) {
-    bool walled = s->block->span_um[side / 2] > 0 || s->leaks[side];
+    bool walled = s->closed[side / 2] || s->leaks[side];
     s->cut = fmax(s->cut, walled ? 0 : s->side[side]);
   }
+}
+
+/* Where no medium stands above the surroundings, every mode leaks, on all sides: whether the shapes
+ * have ends there, which are then the edges. */
+static bool leak_all_around(pk_section_survey *s) {
+  const pk_section_block *block = s->block;
+  bool possible = s->cut >= s->top;
+  for (int axis = 0; axis < 2; axis++) {
+    possible = possible && block->span_um[axis] == 0 && block->low_um[axis] < block->high_um[axis];
+  }
+  for (int side = 0; possible && side < PK_SIDES; side++) {
+    s->leaks[side] = true;
+    s->edge[side] = side % 2 ? s->high[side / 2] : s->low[side / 2];
+  }
+  return possible;
 }
 
 picket_status pk_section_survey_set_apart(pk_section_survey *s, bool *done) {
@@ -213,6 +249,11 @@ picket_status pk_section_survey_set_apart(pk_section_survey *s, bool *done) {
     pk_free(context, line);
   }
   picket_status status = PICKET_OK;
+  if (!found && leak_all_around(s)) {
+    take_cut(s);
+    *done = true;
+    return PICKET_OK;
+  }
   if (found) {
     double kept[PK_SIDES];
     memcpy(kept, s->side, sizeof kept);
@@ -236,6 +277,9 @@ picket_status pk_section_survey_take(const pk_problem *problem, const pk_section
   if (status == PICKET_OK) {
     status = take_extent(&s);
   }
+  if (status == PICKET_OK) {
+    status = take_closed(&s);
+  }
   if (status != PICKET_OK) {
     pk_section_survey_clear(&s);
     return status;
@@ -255,11 +299,15 @@ void pk_section_survey_clear(pk_section_survey *s) {
 
 /* --- Grids ------------------------------------------------------------------------------------ */
 
+double pk_section_survey_least_depth(void) {
+  double least = 1 / (LONGEST_DECAY * 2 * PI);
+  return least * least;
+}
+
 /* 1/e length beyond a side of a mode of an index. */
 static double decay_of(const pk_section_survey *s, int side, double index) {
   double square = index * index - s->side[side] * s->side[side];
-  double least = 1 / (LONGEST_DECAY * 2 * PI);
-  return 1 / (s->k0 * sqrt(fmax(square, least * least)));
+  return 1 / (s->k0 * sqrt(fmax(square, pk_section_survey_least_depth())));
 }
 
 /* Lines of a grid inside (from, to): those of the geometry, and the ends of the shapes, which
@@ -299,9 +347,9 @@ static void place_leak(const pk_section_survey *s, const pk_section_wish *wish, 
   w->layer[end].thickness = LAYER_RADIANS / across;
   /* Once through the layer and back: exp(-2 across strength thickness / 3). */
   w->layer[end].strength = 1.5 * log(100 / wish->accuracy) / LAYER_RADIANS;
-  double away = ROOM_RADIANS / (s->k0 * index) + w->layer[end].thickness;
+  double away = ROOM_RADIANS / across + w->layer[end].thickness;
   *at += end == 0 ? -away : away;
-  w->outer_step = fmin(w->outer_step, STEP_RADIANS / (s->k0 * index));
+  w->outer_step = fmin(w->outer_step, STEP_RADIANS / across);
 }
 
 static void place_ends(const pk_section_survey *s, const pk_section_wish *wish, int axis,
@@ -310,14 +358,18 @@ static void place_ends(const pk_section_survey *s, const pk_section_wish *wish, 
   w->to = s->high[axis];
   w->inner_from = s->block->low_um[axis];
   w->inner_to = s->block->high_um[axis];
-  w->low = w->high = wish->outer;
+  w->low = w->high = s->closed[axis] ? PK_END_ZERO : wish->outer;
   bool open = s->block->span_um[axis] == 0;
   bool bent = open && axis == PK_U && pk_section_bent(s) && !wish->closed;
   if (bent) {
     pk_section_bend_place(s, wish, w);
   }
-  for (int end = 0; end < 2 && open && !bent; end++) {
+  for (int end = 0; end < 2 && !s->closed[axis] && !bent; end++) {
     int side = 2 * axis + end;
+    if (!open) {
+      w->outer_step = fmin(w->outer_step, decay_of(s, side, wish->index) / STEPS_PER_DECAY);
+      continue;
+    }
     if (s->leaks[side]) {
       place_leak(s, wish, side, w);
       continue;
@@ -413,6 +465,7 @@ picket_status pk_section_survey_law(const pk_section_survey *s, const pk_axis *x
   double ratio = least * least / (s->top * s->top);
   law.share = law.smooth ? 0 : SHARE * (1 - ratio) / (1 + ratio);
   law.share_order = 2;
+  law.curved = law.smooth ? 0 : 1;
   double alpha = 1;
   for (int i = 0; i < pk_planes_count(s->block); i++) {
     pk_corner_list list;
@@ -422,7 +475,8 @@ picket_status pk_section_survey_law(const pk_section_survey *s, const pk_axis *x
       return status;
     }
     alpha = fmin(alpha, smallest_exponent(s, &list));
-    law.no_bar = list.other_count > 0 ? NOTE_OBLIQUE : list.lost_count > 0 ? NOTE_LOST : law.no_bar;
+    law.no_bar = list.lost_count > 0 ? NOTE_LOST : law.no_bar;
+    law.curved = list.other_count > 0 ? 2 : law.curved;
     pk_corner_list_clear(s->problem->context, &list);
   }
   if (alpha < 0 && !law.no_bar) {

@@ -18,10 +18,11 @@ typedef struct pk_section_survey {
   double complex *permittivity;  /* [3][media]; 1 where the section does not use one */
   double complex *slope;         /* [3][media] k0 dε/dk0 */
   bool dispersive;
-  double top;             /* highest index of the media */
-  double side[PK_SIDES];  /* index that a wave has far out at a side: of the medium there, or of
-                             the best guided mode of the films there */
-  double cut;             /* highest of these: guided modes lie above */
+  double top;            /* highest index of the media */
+  double side[PK_SIDES]; /* index that a wave has far out at a side: of the medium there, or of
+                            the best guided mode of the films there */
+  bool closed[2];        /* a window is given along x, y and nothing varies along it */
+  double cut; /* highest index of the sides that are not closed: guided modes lie above */
   double low[2], high[2]; /* extent of the shapes, or the window if it is given */
   bool mirror[2];         /* there is a mirror plane across x, across y */
   double centre[2];       /* where */
@@ -51,6 +52,9 @@ typedef struct pk_section_wish {
 
 picket_status pk_section_survey_lay(const pk_section_survey *survey, const pk_section_wish *wish,
                                     pk_axis *x, pk_axis *y);
+
+/* n² of a mode above that of the surroundings below which its tails are not followed further. */
+double pk_section_survey_least_depth(void);
 
 /* How values depend on the grid. */
 picket_status pk_section_survey_law(const pk_section_survey *survey, const pk_axis *x,
