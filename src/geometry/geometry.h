@@ -42,6 +42,15 @@ picket_status pk_geometry_add_rect(pk_geometry *geometry, pk_place place, int me
                                    const double at[2], const double size[2]);
 picket_status pk_geometry_add_disc(pk_geometry *geometry, pk_place place, int medium,
                                    const double at[2], double diameter);
+/* A rectangle whose sides lean and whose corners are rounded. `lean` is the angle of the sides from
+ * the v axis, rad: positive where the top (high v) is narrower than the base; size[0] is the width
+ * at half height, so leaning keeps the area. `radius` of all four corners, 0 to the largest that
+ * fits: the arcs touch the edges, so the boundary has no corner. */
+picket_status pk_geometry_add_rounded_rect(pk_geometry *geometry, pk_place place, int medium,
+                                           const double at[2], const double size[2], double lean,
+                                           double radius);
+/* The largest radius that fits; half the shorter side where lean is 0. */
+double pk_geometry_largest_radius(const double size[2], double lean);
 /* corners [count][2] in either sense of rotation, 3 to 1000, not self-crossing, area above 0. */
 picket_status pk_geometry_add_polygon(pk_geometry *geometry, pk_place place, int medium, int count,
                                       const double (*corners)[2]);
