@@ -18,6 +18,7 @@
 #include <float.h>
 #include <limits.h>
 #include <math.h>
+#include <pthread.h>
 #include <stddef.h>
 
 #include "base/memory.h"
@@ -63,7 +64,7 @@ void dgelsd_(const int *m, const int *n, const int *columns, double *a, const in
 
 static const int ask_for_size = -1;
 
-void pk_dense_warm_up(void) {
+static void warm_up(void) {
   enum { ORDER = 32 }; /* above the sizes that BLAS treats without its workspace */
   double complex a[ORDER * ORDER], b[ORDER * ORDER];
   int pivots[ORDER], n = ORDER, info = 0;
@@ -74,6 +75,11 @@ void pk_dense_warm_up(void) {
   }
   pk_dense_times(n, n, n, 1.0, a, a, 0.0, b);
   zgetrf_(&n, &n, a, &n, pivots, &info);
+}
+
+void pk_dense_warm_up(void) {
+  static pthread_once_t once = PTHREAD_ONCE_INIT;
+  pthread_once(&once, warm_up);
 }
 
 /* One sentence for an iteration of LAPACK that gave up. */
