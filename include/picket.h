@@ -21,5 +21,6 @@
 #include <picket/status.h>
 #include <picket/summary.h>
 #include <picket/sweep.h>
+#include <picket/tolerance.h>
 
 #endif

@@ -216,11 +216,12 @@ static int check_extras(const pk_arguments *a) {
                        "--sweep is for picket edges, index, modes and slab; picket %s has none",
                        name);
   }
-  if (a->resume && !index && !modes && !a->sweep.path) {
+  bool tolerance = a->command->find == picket_tolerance_find;
+  if (a->resume && !index && !modes && !tolerance && !a->sweep.path) {
     return pk_complain(
         PK_EXIT_WRONG,
-        "--resume is for picket index, picket modes and for --sweep; picket %s keeps "
-        "no journal",
+        "--resume is for picket index, modes and tolerance, and for --sweep; picket %s keeps no "
+        "journal",
         name);
   }
   if (a->fields && !index && !modes) {

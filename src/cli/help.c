@@ -19,7 +19,8 @@ static void print_options(void) {
       "these\n"
       "                   values of one number of the file, e.g. "
       "section.shapes.0.width_nm=300:600:13\n"
-      "  --resume FILE    index, modes, --sweep: keep finished points in FILE, take up what is in "
+      "  --resume FILE    index, modes, tolerance, --sweep: keep what is finished in FILE, take up "
+      "what is in "
       "it\n"
       "  --fields FILE    index, modes: the fields of the modes, as an HDF5 file\n"
       "  --quiet          the answer only\n"
@@ -55,7 +56,7 @@ static void print_tool(void) {
   printf("Usage: picket COMMAND [OPTIONS] FILE.yaml     (- reads standard input)\n\nCommands:\n");
   for (const pk_command *c = pk_commands; c->name; c++) {
     if (c->find) {
-      printf("  %-8s %s\n", c->name, c->answers);
+      printf("  %-9s %s\n", c->name, c->answers);
     }
   }
   printf("\n");

@@ -23,7 +23,8 @@ const pk_command pk_commands[] = {
      pk_modes_print},
     {"aim", "the dimension that meets a target, with its bar and what a mask makes of it",
      "aim, and a cell, a channel or a section", picket_aim_find, pk_aim_print},
-    {"tolerance", NULL, NULL, NULL, NULL},
+    {"tolerance", "what the process does to a quantity: sensitivities, corners and yield",
+     "tolerance, and a cell or a section", picket_tolerance_find, pk_tolerance_print},
     {"match", "what a mode of a section shares with a Gaussian beam, or a mode of a second section",
      "section, light; a second file needs section", pk_match_find, pk_match_print},
     {"taper", NULL, NULL, NULL, NULL},
@@ -88,6 +89,9 @@ static picket_status ask(const pk_arguments *a, picket_context *context, picket_
   }
   if (!a->resume) {
     return a->command->find(problem, &a->options, out);
+  }
+  if (a->command->find == picket_tolerance_find) {
+    return picket_tolerance_find_resumable(problem, &a->options, a->resume, out);
   }
   return a->command->find == picket_modes_find
              ? picket_modes_find_resumable(problem, &a->options, a->resume, out)

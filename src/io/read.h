@@ -84,7 +84,18 @@ picket_status pk_read_channel(pk_reader *reader, const pk_node *node);
 picket_status pk_read_path(pk_reader *reader, const pk_node *node);
 /* After all blocks that can be varied. */
 picket_status pk_read_aim(pk_reader *reader, const pk_document *document, const pk_node *node);
+picket_status pk_read_tolerance(pk_reader *reader, const pk_document *document,
+                                const pk_node *node);
 picket_status pk_read_rules(pk_reader *reader, const pk_node *node);
+
+/* The path of a single number of the document that can be varied; the text is the caller's. */
+picket_status pk_read_vary(const pk_reader *reader, const pk_document *document,
+                           const pk_node *node, char **out);
+picket_status pk_read_measured(picket_context *context, const pk_node *node, pk_measured *out);
+/* at_nm of a block: of a quantity at one wavelength it is needed, with any other it would say
+ * nothing and *at_um is NaN. */
+picket_status pk_read_at(picket_context *context, const pk_node *block, const pk_node *node,
+                         pk_measured quantity, double *at_um);
 
 /* The number of the material that a value names. */
 picket_status pk_read_material(const pk_reader *reader, const pk_node *node, int *out);

@@ -1,5 +1,5 @@
-/* aim and rules: which number of the file is varied for which target, and what a mask allows. See
- * read.h. */
+/* aim and rules: which number of the file is varied for which target, and what a mask allows; with
+ * what tolerance shares with them. See read.h. */
 #include <math.h>
 #include <stdio.h>
 #include <string.h>
@@ -31,9 +31,8 @@ static picket_status fail_path(picket_context *context, const pk_node *node, con
                     pk_node_path(node).text, node->text, kept);
 }
 
-/* The path of a single number of the document. */
-static picket_status read_vary(const pk_reader *reader, const pk_document *document,
-                               const pk_node *node, char **out) {
+picket_status pk_read_vary(const pk_reader *reader, const pk_document *document,
+                           const pk_node *node, char **out) {
   picket_context *context = reader->context;
   const char *path = NULL;
   picket_status status = pk_read_text(context, node, PATH_BYTES, &path);
@@ -74,7 +73,7 @@ static picket_status read_between(picket_context *context, const pk_node *node, 
   return status;
 }
 
-static picket_status read_quantity(picket_context *context, const pk_node *node, pk_measured *out) {
+picket_status pk_read_measured(picket_context *context, const pk_node *node, pk_measured *out) {
   const char *names[PK_MEASURED_COUNT];
   int choice = 0;
   for (int i = 0; i < PK_MEASURED_COUNT; i++) {
@@ -85,19 +84,18 @@ static picket_status read_quantity(picket_context *context, const pk_node *node,
   return status;
 }
 
-/* Of a quantity at one wavelength it is needed, with any other it would say nothing. */
-static picket_status read_at(picket_context *context, const pk_node *block, const pk_node *node,
-                             pk_aim_part *part) {
+picket_status pk_read_at(picket_context *context, const pk_node *block, const pk_node *node,
+                         pk_measured quantity, double *at_um) {
   const pk_limits limits = {PK_WAVELENGTH_LOW_NM, PK_WAVELENGTH_HIGH_NM, false, false, false, "nm"};
-  bool needed = pk_measured_at_wavelength(part->quantity);
+  bool needed = pk_measured_at_wavelength(quantity);
   double nm = NAN;
   if (needed && !node) {
     return pk_fail_at(context, PICKET_ERROR_INPUT, block->place,
                       "%s has no \"at_nm\", the wavelength at which %s is meant",
-                      pk_node_path(block).text, pk_measured_name(part->quantity));
+                      pk_node_path(block).text, pk_measured_name(quantity));
   }
   picket_status status = node ? pk_read_number(context, node, &limits, &nm) : PICKET_OK;
-  part->at_um = needed ? nm / PK_NM_PER_UM : NAN;
+  *at_um = needed ? nm / PK_NM_PER_UM : NAN;
   return status;
 }
 
@@ -107,17 +105,19 @@ static picket_status read_part(const pk_reader *reader, const pk_document *docum
   picket_context *context = reader->context;
   const pk_limits limits = {-LARGEST, LARGEST, false, false, false, ""};
   part->place = values[KEY_QUANTITY]->place;
-  picket_status status = read_vary(reader, document, values[KEY_VARY], &part->vary);
+  picket_status status = pk_read_vary(reader, document, values[KEY_VARY], &part->vary);
   if (status == PICKET_OK) {
     status = read_between(context, values[KEY_BETWEEN], part->between);
   }
   if (status == PICKET_OK) {
-    status = read_quantity(context, values[KEY_QUANTITY], &part->quantity);
+    status = pk_read_measured(context, values[KEY_QUANTITY], &part->quantity);
   }
   if (status == PICKET_OK) {
     status = pk_read_number(context, values[KEY_TARGET], &limits, &part->target);
   }
-  return status == PICKET_OK ? read_at(context, block, values[KEY_AT], part) : status;
+  return status == PICKET_OK
+             ? pk_read_at(context, block, values[KEY_AT], part->quantity, &part->at_um)
+             : status;
 }
 
 /* A second number and its target. */

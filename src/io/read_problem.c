@@ -25,8 +25,9 @@ enum {
   KEY_CHANNEL,
   KEY_AIM,
   KEY_RULES,
+  KEY_TOLERANCE,
   KEY_LATER, /* blocks of the format that no command reads yet: any content is let through */
-  KEY_COUNT = KEY_LATER + 2
+  KEY_COUNT
 };
 static const pk_key keys[KEY_COUNT] = {
     [KEY_FORMAT] = {"format", false},
@@ -41,8 +42,8 @@ static const pk_key keys[KEY_COUNT] = {
     [KEY_CHANNEL] = {"channel", false},
     [KEY_AIM] = {"aim", false},
     [KEY_RULES] = {"rules", false},
-    [KEY_LATER] = {"tolerance", false},
-    {"taper", false},
+    [KEY_TOLERANCE] = {"tolerance", false},
+    [KEY_LATER] = {"taper", false},
 };
 
 static picket_status check_format(picket_context *context, const pk_node *root,
@@ -103,6 +104,9 @@ static picket_status read_blocks(pk_reader *reader, const pk_document *document,
   }
   if (status == PICKET_OK && values[KEY_AIM]) {
     status = pk_read_aim(reader, document, values[KEY_AIM]);
+  }
+  if (status == PICKET_OK && values[KEY_TOLERANCE]) {
+    status = pk_read_tolerance(reader, document, values[KEY_TOLERANCE]);
   }
   if (status == PICKET_OK && values[KEY_RULES]) {
     status = pk_read_rules(reader, values[KEY_RULES]);

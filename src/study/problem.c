@@ -12,6 +12,14 @@ static void clear_channel(picket_context *context, pk_channel_block *channel) {
   pk_free(context, channel->outline.used);
 }
 
+static void clear_tolerance(picket_context *context, pk_tolerance_block *tolerance) {
+  for (int i = 0; tolerance->spread && i < tolerance->count; i++) {
+    pk_free(context, tolerance->spread[i].vary);
+    pk_free(context, tolerance->spread[i].group);
+  }
+  pk_free(context, tolerance->spread);
+}
+
 void pk_problem_free(pk_problem *problem) {
   if (!problem) {
     return;
@@ -33,6 +41,7 @@ void pk_problem_free(pk_problem *problem) {
   for (int i = 0; i < PK_AIM_PARTS; i++) {
     pk_free(context, problem->aim.part[i].vary);
   }
+  clear_tolerance(context, &problem->tolerance);
   pk_free(context, problem);
   pk_context_release(context);
 }

@@ -10,6 +10,7 @@
 #include "material/material.h"
 #include "operator/operator.h"
 #include "study/measured.h"
+#include "study/spread.h"
 
 typedef struct pk_light {
   bool given;
@@ -83,6 +84,20 @@ typedef struct pk_aim_block {
   bool wanted[2]; /* families of a section or a channel: te-like, tm-like */
 } pk_aim_block;
 
+/* What a process spreads, and what a quantity must be in spite of it. */
+typedef struct pk_tolerance_block {
+  bool given;
+  int count;         /* spreads */
+  pk_spread *spread; /* [count] */
+  pk_measured quantity;
+  double at_um;       /* for a quantity at one wavelength, else NaN */
+  double least, most; /* required of it; infinite where nothing is */
+  pk_place place;     /* of the quantity */
+  int samples, seed;
+  int direct;     /* most samples that are solved directly */
+  bool wanted[2]; /* families of a section or a channel: te-like, tm-like */
+} pk_tolerance_block;
+
 /* What a mask allows. */
 typedef struct pk_rules_block {
   bool given;
@@ -105,6 +120,7 @@ typedef struct pk_problem {
   pk_section_block section;
   pk_channel_block channel;
   pk_aim_block aim;
+  pk_tolerance_block tolerance;
   pk_rules_block rules;
 } pk_problem;
 

@@ -10,6 +10,7 @@
 #include "study/index.h"
 #include "study/modes.h"
 #include "study/slab_answer.h"
+#include "study/tolerance.h"
 
 enum { FIRST_TEXTS = 16 };
 
@@ -161,6 +162,13 @@ static void free_aim(picket_context *context, int count, picket_aim_answer *answ
   pk_free(context, answers);
 }
 
+static void free_tolerance(picket_context *context, int count, picket_tolerance_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    pk_tolerance_answer_clear(context, &answers[i]);
+  }
+  pk_free(context, answers);
+}
+
 void pk_result_free(picket_result *result) {
   if (!result) {
     return;
@@ -175,6 +183,7 @@ void pk_result_free(picket_result *result) {
   free_derivatives(result);
   free_summary(result);
   free_aim(context, result->count, result->aim);
+  free_tolerance(context, result->count, result->tolerance);
   for (int i = 0; i < result->text_count; i++) {
     pk_free(context, result->texts[i]);
   }

@@ -11,6 +11,7 @@
 #include <picket/match.h>
 #include <picket/modes.h>
 #include <picket/slab.h>
+#include <picket/tolerance.h>
 
 #include "base/context.h"
 
@@ -24,7 +25,8 @@ typedef enum pk_result_kind {
   PK_RESULT_EDGE_DERIVATIVES,
   PK_RESULT_INDEX_DERIVATIVES,
   PK_RESULT_SUMMARY,
-  PK_RESULT_MATCH
+  PK_RESULT_MATCH,
+  PK_RESULT_TOLERANCE
 } pk_result_kind;
 
 /* One line of a summary: a dotted name, and a number with a unit or a text. */
@@ -46,6 +48,7 @@ struct picket_result {
   picket_edges_answer *edges; /* arrays inside the answers are owned by the result */
   picket_bands_answer *bands;
   picket_aim_answer *aim;
+  picket_tolerance_answer *tolerance;
   picket_slab_answer *slab;
   picket_modes_answer *modes;
   picket_match_answer *match;
