@@ -22,5 +22,6 @@
 #include <picket/summary.h>
 #include <picket/sweep.h>
 #include <picket/tolerance.h>
+#include <picket/version.h>
 
 #endif

@@ -19,6 +19,10 @@ typedef enum picket_derivative_way {
   PICKET_DERIVATIVE_SAMPLES = 3     /* from the direct solves of the search */
 } picket_derivative_way;
 
+/* The word of a way: "none", "analytic", "difference", "samples"; "unknown" for any other number.
+ * Static text. */
+PICKET_EXPORT const char *picket_derivative_way_name(picket_derivative_way way);
+
 /* One varied number and its target. Values of the varied number are in the unit of the file. */
 typedef struct picket_aim_part {
   const char *vary; /* dotted path of the number */

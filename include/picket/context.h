@@ -7,6 +7,7 @@
 
 #include <picket/export.h>
 #include <picket/status.h>
+#include <picket/version.h>
 
 #ifdef __cplusplus
 extern "C" {
@@ -29,6 +30,12 @@ typedef struct picket_progress {
   const char *phase; /* what is being done, e.g. "band edges, hy" */
   double fraction;   /* how much of it is done, 0 to 1 */
 } picket_progress;
+
+/* Is told a line without a newline. */
+typedef void (*picket_log_callback)(picket_log_level level, const char *line, void *user);
+
+/* Is asked between factorisations and solves whether to go on. */
+typedef picket_verdict (*picket_progress_callback)(const picket_progress *progress, void *user);
 
 /* Fill with picket_context_options_init, then change what you need. */
 typedef struct picket_context_options {
@@ -54,11 +61,18 @@ typedef struct picket_context_options {
  *   options   filled completely; null is ignored */
 PICKET_EXPORT void picket_context_options_init(picket_context_options *options);
 
+/* The same for a struct of `size` bytes, that of the headers the program was compiled with: what
+ * the macro calls, so that a program never has more written than it has room for. */
+PICKET_EXPORT void picket_context_options_init_sized(picket_context_options *options, size_t size);
+#define picket_context_options_init(options) \
+  picket_context_options_init_sized((options), sizeof(picket_context_options))
+
 /* A new context.
  *   options   null for the defaults
  *   out       receives the context, yours to free
- * PICKET_ERROR_ARGUMENT for an unknown size or half a pair of memory callbacks;
- * PICKET_ERROR_MEMORY. `out` is untouched on failure. */
+ * PICKET_ERROR_ARGUMENT for a size that no version had, a null `out` or half a pair of memory
+ * callbacks; PICKET_ERROR_MEMORY. `out` is untouched on failure. There is no context for a message
+ * then: picket_status_text has a sentence for each status. */
 PICKET_EXPORT picket_status picket_context_create(const picket_context_options *options,
                                                   picket_context **out);
 
@@ -66,12 +80,20 @@ PICKET_EXPORT picket_status picket_context_create(const picket_context_options *
  * freed too, so the order of frees does not matter. */
 PICKET_EXPORT void picket_context_free(picket_context *context);
 
-/* One sentence about the last failure in this context, with the offending value and the allowed
- * range; "" when nothing failed. Borrowed until the next call that uses the context. */
-PICKET_EXPORT const char *picket_context_message(const picket_context *context);
+/* Others in the place of the callbacks given at creation; null for none.
+ * PICKET_ERROR_ARGUMENT for a null context; PICKET_ERROR_BUSY during a call, also from inside of a
+ * callback. */
+PICKET_EXPORT picket_status picket_context_set_log(picket_context *context, picket_log_callback log,
+                                                   void *user, picket_log_level level);
+PICKET_EXPORT picket_status picket_context_set_progress(picket_context *context,
+                                                        picket_progress_callback progress,
+                                                        void *user);
 
-/* The version of the library in use, "MAJOR.MINOR.PATCH". Static text. */
-PICKET_EXPORT const char *picket_version(void);
+/* One sentence about the last failure in this context, with the offending value and the allowed
+ * range; "" when nothing failed. Borrowed until the next call that uses the context. A call that
+ * was answered with PICKET_ERROR_BUSY leaves the message alone, for it belongs to the call inside;
+ * so do those of a null object. picket_status_text has a sentence for these. */
+PICKET_EXPORT const char *picket_context_message(const picket_context *context);
 
 #ifdef __cplusplus
 }

@@ -16,6 +16,9 @@ typedef enum picket_side {
   PICKET_SIDE_HIGH = 1 /* towards +x */
 } picket_side;
 
+/* The word of a side: "low", "high"; "unknown" for any other number. Static text. */
+PICKET_EXPORT const char *picket_side_name(picket_side side);
+
 /* A plane wave that a Bloch mode sends into an open side. */
 typedef struct picket_radiated_order {
   int order; /* m: its wavenumber along z is k + 2πm/pitch */

@@ -41,6 +41,12 @@ typedef struct picket_match_request {
 /* Defaults. Null is ignored. */
 PICKET_EXPORT void picket_match_request_init(picket_match_request *request);
 
+/* The same for a struct of `size` bytes, that of the headers the program was compiled with: what
+ * the macro calls, so that a program never has more written than it has room for. */
+PICKET_EXPORT void picket_match_request_init_sized(picket_match_request *request, size_t size);
+#define picket_match_request_init(request) \
+  picket_match_request_init_sized((request), sizeof(picket_match_request))
+
 /* Share of the power, and the same as 10 log10; at an offset. */
 typedef struct picket_coupling {
   picket_quantity share;    /* 0 to 1 */

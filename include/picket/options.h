@@ -25,6 +25,11 @@ typedef struct picket_options {
 /* Defaults. Null is ignored. */
 PICKET_EXPORT void picket_options_init(picket_options *options);
 
+/* The same for a struct of `size` bytes, that of the headers the program was compiled with: what
+ * the macro calls, so that a program never has more written than it has room for. */
+PICKET_EXPORT void picket_options_init_sized(picket_options *options, size_t size);
+#define picket_options_init(options) picket_options_init_sized((options), sizeof(picket_options))
+
 /* One option, for command lines and documents. Static, borrowed. */
 typedef struct picket_option_description {
   const char *name; /* of the member, and with "--" in front of the flag */
@@ -41,6 +46,11 @@ PICKET_EXPORT const picket_option_description *picket_option_at(int i);
  * range; the options are then unchanged. */
 PICKET_EXPORT picket_status picket_options_set(picket_options *options, const char *name,
                                                double value);
+
+/* The same with a message in a context. PICKET_ERROR_ARGUMENT also for a null context or a size
+ * that no version had; PICKET_ERROR_BUSY. */
+PICKET_EXPORT picket_status picket_options_choose(picket_context *context, picket_options *options,
+                                                  const char *name, double value);
 
 #ifdef __cplusplus
 }

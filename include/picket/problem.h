@@ -53,6 +53,31 @@ PICKET_EXPORT picket_status picket_problem_set(picket_problem *problem, const ch
 PICKET_EXPORT picket_status picket_problem_set_number(picket_problem *problem, const char *path,
                                                       double value);
 
+/* The number at a path, as it stands in the document: in the unit of the file, defaults of the
+ * problem file not filled in.
+ * PICKET_ERROR_INPUT if the path leads to nothing or to no number. */
+PICKET_EXPORT picket_status picket_problem_number(picket_problem *problem, const char *path,
+                                                  double *out);
+
+/* What stands at a path, as a piece of YAML on one line that picket_problem_set takes again. With a
+ * null path the whole problem, a line for each block, that picket_problem_read_text takes again.
+ * Comments and layout of a file are not kept.
+ *   out   receives the text, borrowed until the next call with the problem
+ * PICKET_ERROR_INPUT if the path leads to nothing; PICKET_ERROR_MEMORY. */
+PICKET_EXPORT picket_status picket_problem_text(picket_problem *problem, const char *path,
+                                                const char **out);
+
+/* The numbers of a problem: everything that a sweep, a derivative or an aim can vary. -1 for a null
+ * problem or while a call is inside the context. */
+PICKET_EXPORT int picket_problem_number_count(picket_problem *problem);
+
+/* Number i, in the order of the document.
+ *   path   receives its path, borrowed until the next call with the problem
+ *   value  receives the number; null: not wanted
+ * PICKET_ERROR_ARGUMENT if i is wrong; PICKET_ERROR_MEMORY. Cost: a walk over the document. */
+PICKET_EXPORT picket_status picket_problem_number_at(picket_problem *problem, int i,
+                                                     const char **path, double *value);
+
 /* Checks the whole problem now; the message of the first fault is in the context.
  * PICKET_ERROR_INPUT for an unknown key or a value that is wrong, PICKET_ERROR_FILE for a table
  * that can't be read, PICKET_ERROR_UNSUPPORTED for a block that this version does not do. Whether

@@ -51,6 +51,12 @@ PICKET_EXPORT const char *picket_result_shortfall(const picket_result *result);
 PICKET_EXPORT const char *picket_result_json(picket_result *result);
 PICKET_EXPORT const char *picket_result_csv(picket_result *result);
 
+/* The same with a status that says why there is none.
+ *   out   receives the text, borrowed until the result is freed
+ * PICKET_ERROR_ARGUMENT, PICKET_ERROR_MEMORY, PICKET_ERROR_BUSY. */
+PICKET_EXPORT picket_status picket_result_json_get(picket_result *result, const char **out);
+PICKET_EXPORT picket_status picket_result_csv_get(picket_result *result, const char **out);
+
 /* Lets go of a result; null is accepted. */
 PICKET_EXPORT void picket_result_free(picket_result *result);
 

@@ -13,6 +13,9 @@ extern "C" {
 /* Polarization of a slab mode in the planar-waveguide sense: te has E along the films. */
 typedef enum picket_slab_polarization { PICKET_TE = 0, PICKET_TM = 1 } picket_slab_polarization;
 
+/* "te" or "tm"; "unknown" for any other number. Static text. */
+PICKET_EXPORT const char *picket_slab_polarization_name(picket_slab_polarization polarization);
+
 typedef struct picket_slab_mode {
   int order; /* number of zeros of the field */
   picket_quantity index;

@@ -40,6 +40,10 @@ typedef enum picket_status {
  * Static text, never null. */
 PICKET_EXPORT const char *picket_status_name(picket_status status);
 
+/* What a status code means, one sentence without a full stop, for where there is no context with a
+ * message of its own. Static text, never null. */
+PICKET_EXPORT const char *picket_status_text(picket_status status);
+
 #ifdef __cplusplus
 }
 #endif

@@ -21,6 +21,10 @@ typedef enum picket_question {
   PICKET_QUESTION_SLAB = 3   /* picket_slab_find */
 } picket_question;
 
+/* The word of a question: "edges", "index", "modes", "slab"; "unknown" for any other number. Static
+ * text. */
+PICKET_EXPORT const char *picket_question_name(picket_question question);
+
 /* Fill with picket_sweep_request_init, then set the rest. Everything is borrowed for the call. */
 typedef struct picket_sweep_request {
   size_t size; /* sizeof(picket_sweep_request), set by the init function */
@@ -35,6 +39,12 @@ typedef struct picket_sweep_request {
 
 /* No path, no values, no journal. Null is ignored. */
 PICKET_EXPORT void picket_sweep_request_init(picket_sweep_request *request);
+
+/* The same for a struct of `size` bytes, that of the headers the program was compiled with: what
+ * the macro calls, so that a program never has more written than it has room for. */
+PICKET_EXPORT void picket_sweep_request_init_sized(picket_sweep_request *request, size_t size);
+#define picket_sweep_request_init(request) \
+  picket_sweep_request_init_sized((request), sizeof(picket_sweep_request))
 
 /* `count` values from one to another, both among them, evenly spread.
  *   out  caller's buffer, [count]

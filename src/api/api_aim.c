@@ -60,14 +60,24 @@ picket_status picket_aim_find(picket_problem *problem, const picket_options *opt
   return pk_border_leave(problem->context, status);
 }
 
+const char *picket_derivative_way_name(picket_derivative_way way) {
+  switch (way) {
+    case PICKET_DERIVATIVE_NONE: return "none";
+    case PICKET_DERIVATIVE_ANALYTIC: return "analytic";
+    case PICKET_DERIVATIVE_DIFFERENCE: return "difference";
+    case PICKET_DERIVATIVE_SAMPLES: return "samples";
+  }
+  return "unknown";
+}
+
 int picket_aim_count(const picket_result *result) {
   return pk_border_count(result, PK_RESULT_AIM);
 }
 
 picket_status picket_aim_get(const picket_result *result, int i, picket_aim_answer *out) {
-  if (i < 0 || i >= picket_aim_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_AIM, i, out);
+  if (status == PICKET_OK) {
+    *out = result->aim[i];
   }
-  *out = result->aim[i];
-  return PICKET_OK;
+  return status;
 }

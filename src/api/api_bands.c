@@ -12,9 +12,9 @@ int picket_bands_count(const picket_result *result) {
 }
 
 picket_status picket_bands_get(const picket_result *result, int i, picket_bands_answer *out) {
-  if (i < 0 || i >= picket_bands_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_BANDS, i, out);
+  if (status == PICKET_OK) {
+    *out = result->bands[i];
   }
-  *out = result->bands[i];
-  return PICKET_OK;
+  return status;
 }

@@ -64,11 +64,11 @@ int picket_edge_derivatives_count(const picket_result *result) {
 
 picket_status picket_edge_derivatives_get(const picket_result *result, int i,
                                           picket_edge_derivatives *out) {
-  if (i < 0 || i >= picket_edge_derivatives_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_EDGE_DERIVATIVES, i, out);
+  if (status == PICKET_OK) {
+    *out = result->edge_derivatives[i];
   }
-  *out = result->edge_derivatives[i];
-  return PICKET_OK;
+  return status;
 }
 
 picket_status picket_index_derivatives_find(picket_problem *problem, const char *path,
@@ -82,9 +82,9 @@ int picket_index_derivatives_count(const picket_result *result) {
 
 picket_status picket_index_derivatives_get(const picket_result *result, int i,
                                            picket_index_derivatives *out) {
-  if (i < 0 || i >= picket_index_derivatives_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_INDEX_DERIVATIVES, i, out);
+  if (status == PICKET_OK) {
+    *out = result->index_derivatives[i];
   }
-  *out = result->index_derivatives[i];
-  return PICKET_OK;
+  return status;
 }

@@ -12,9 +12,9 @@ int picket_edges_count(const picket_result *result) {
 }
 
 picket_status picket_edges_get(const picket_result *result, int i, picket_edges_answer *out) {
-  if (i < 0 || i >= picket_edges_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_EDGES, i, out);
+  if (status == PICKET_OK) {
+    *out = result->edges[i];
   }
-  *out = result->edges[i];
-  return PICKET_OK;
+  return status;
 }

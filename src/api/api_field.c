@@ -16,13 +16,8 @@ static bool is_component(picket_component which) {
 
 static picket_status prepare(picket_problem *problem, const picket_options *options,
                              picket_options *chosen, const pk_problem **understood) {
-  picket_status status = options ? pk_options_check(problem->context, options) : PICKET_OK;
-  if (status != PICKET_OK) {
-    return status;
-  }
-  picket_options_init(chosen);
-  *chosen = options ? *options : *chosen;
-  return pk_problem_understand(problem, understood);
+  picket_status status = pk_options_take(problem->context, options, chosen);
+  return status == PICKET_OK ? pk_problem_understand(problem, understood) : status;
 }
 
 static picket_status check_question(picket_context *context, picket_polarization polarization,
@@ -72,9 +67,16 @@ picket_status picket_field_find(picket_problem *problem, const picket_options *o
   return pk_border_leave(context, status);
 }
 
+static const char NO_PLACE[] = "an output is null, must be the address of what is to be filled";
+
+/* Of a field that may be null, which leaves nowhere for a message. */
+static picket_status refuse(const picket_field *field, const char *why) {
+  return field ? pk_border_refuse(field->context, "%s", why) : PICKET_ERROR_ARGUMENT;
+}
+
 picket_status picket_field_describe(const picket_field *field, picket_field_description *out) {
   if (!field || !out) {
-    return PICKET_ERROR_ARGUMENT;
+    return refuse(field, NO_PLACE);
   }
   *out = field->about;
   return PICKET_OK;
@@ -82,7 +84,7 @@ picket_status picket_field_describe(const picket_field *field, picket_field_desc
 
 picket_status picket_field_size(const picket_field *field, int *nz, int *nx) {
   if (!field || !nz || !nx) {
-    return PICKET_ERROR_ARGUMENT;
+    return refuse(field, NO_PLACE);
   }
   *nz = field->nz;
   *nx = field->nx;
@@ -91,12 +93,17 @@ picket_status picket_field_size(const picket_field *field, int *nz, int *nx) {
 
 picket_status picket_field_lines(const picket_field *field, picket_axis axis, double *out,
                                  size_t capacity) {
-  if (!field || !out || (axis != PICKET_AXIS_Z && axis != PICKET_AXIS_X)) {
-    return PICKET_ERROR_ARGUMENT;
+  if (!field || !out) {
+    return refuse(field, NO_PLACE);
+  }
+  if (axis != PICKET_AXIS_Z && axis != PICKET_AXIS_X) {
+    return pk_border_refuse(
+        field->context, "axis is %d, must be PICKET_AXIS_Z (0) or PICKET_AXIS_X (1)", (int)axis);
   }
   size_t count = (size_t)(axis == PICKET_AXIS_Z ? field->nz : field->nx);
   if (capacity < count) {
-    return PICKET_ERROR_ARGUMENT;
+    return pk_border_refuse(field->context, "capacity is %zu, must be at least %zu", capacity,
+                            count);
   }
   memcpy(out, axis == PICKET_AXIS_Z ? field->z : field->x, count * sizeof *out);
   return PICKET_OK;
@@ -106,8 +113,12 @@ picket_status picket_field_lines(const picket_field *field, picket_axis axis, do
 static picket_status give(const picket_field *field, const double complex *values, double *out,
                           size_t capacity) {
   size_t count = 2 * (size_t)field->nz * (size_t)field->nx;
-  if (!out || capacity < count) {
-    return PICKET_ERROR_ARGUMENT;
+  if (!out) {
+    return refuse(field, NO_PLACE);
+  }
+  if (capacity < count) {
+    return pk_border_refuse(field->context, "capacity is %zu, must be at least %zu", capacity,
+                            count);
   }
   if (values) {
     memcpy(out, values, count * sizeof *out);
@@ -119,8 +130,12 @@ static picket_status give(const picket_field *field, const double complex *value
 
 picket_status picket_field_component(const picket_field *field, picket_component which, double *out,
                                      size_t capacity) {
-  if (!field || !is_component(which)) {
+  if (!field) {
     return PICKET_ERROR_ARGUMENT;
+  }
+  if (!is_component(which)) {
+    return pk_border_refuse(field->context, "component is %d, must be %d to %d", (int)which,
+                            (int)PICKET_COMPONENT_EX, (int)PICKET_COMPONENT_HZ);
   }
   return give(field, pk_mode_field_values(field, which), out, capacity);
 }

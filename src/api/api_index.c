@@ -13,14 +13,22 @@ picket_status picket_index_find_resumable(picket_problem *problem, const picket_
   return pk_sweeping_resumable(problem, options, &pk_sweep_of_index, journal_path, out);
 }
 
+const char *picket_side_name(picket_side side) {
+  switch (side) {
+    case PICKET_SIDE_LOW: return "low";
+    case PICKET_SIDE_HIGH: return "high";
+  }
+  return "unknown";
+}
+
 int picket_index_count(const picket_result *result) {
   return pk_border_count(result, PK_RESULT_INDEX);
 }
 
 picket_status picket_index_get(const picket_result *result, int i, picket_index_answer *out) {
-  if (i < 0 || i >= picket_index_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_INDEX, i, out);
+  if (status == PICKET_OK) {
+    *out = result->index[i];
   }
-  *out = result->index[i];
-  return PICKET_OK;
+  return status;
 }

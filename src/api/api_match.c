@@ -5,6 +5,7 @@
 
 #include "api/border.h"
 #include "api/problem_private.h"
+#include "base/stamp.h"
 #include "study/study.h"
 
 /* Ranges of a request. */
@@ -15,12 +16,14 @@ static const double DEG = 57.29577951308232;
 static const double LEAST_INDEX = 1, MOST_INDEX = 10;
 enum { MOST_ORDER = 199 };
 
-void picket_match_request_init(picket_match_request *request) {
-  if (request) {
-    memset(request, 0, sizeof *request);
-    request->size = sizeof *request;
-    request->mode_b = -1;
-  }
+void picket_match_request_init_sized(picket_match_request *request, size_t size) {
+  const picket_match_request usual = {.mode_b = -1};
+  pk_stamp_give(&usual, sizeof usual, request, size);
+}
+
+/* In parentheses because the header has a macro of the same name. */
+void(picket_match_request_init)(picket_match_request *request) {
+  picket_match_request_init_sized(request, sizeof *request);
 }
 
 static picket_status check_within(picket_context *context, const char *name, double value,
@@ -90,11 +93,6 @@ static picket_status check_places(picket_context *context, const picket_match_re
 static picket_status check_request(const picket_problem *problem, const picket_problem *other,
                                    const picket_match_request *r) {
   picket_context *context = problem->context;
-  if (r->size != sizeof *r) {
-    return pk_fail(context, PICKET_ERROR_ARGUMENT,
-                   "match: size of the request is %zu, must be %zu: use picket_match_request_init",
-                   r->size, sizeof *r);
-  }
   bool beam = r->gaussian_x_um != 0 || r->gaussian_y_um != 0;
   if (beam == (other != NULL)) {
     return pk_fail(context, PICKET_ERROR_ARGUMENT,
@@ -114,18 +112,25 @@ static picket_status check_request(const picket_problem *problem, const picket_p
 }
 
 static picket_status find(picket_problem *problem, picket_problem *other,
-                          const picket_match_request *request, const picket_options *options,
+                          const picket_match_request *given, const picket_options *options,
                           picket_result **out) {
   picket_options chosen;
+  picket_match_request request;
   const pk_problem *first = NULL, *second = NULL;
-  picket_status status = check_request(problem, other, request);
+  picket_match_request_init(&request);
+  picket_status status = given ? pk_stamp_take(problem->context, "picket_match_request", given,
+                                               &request, sizeof request)
+                               : PICKET_OK;
+  if (status == PICKET_OK) {
+    status = check_request(problem, other, &request);
+  }
   if (status == PICKET_OK) {
     status = pk_border_prepare(problem, options, out, &chosen, &first);
   }
   if (status == PICKET_OK && other) {
     status = pk_problem_understand(other, &second);
   }
-  return status == PICKET_OK ? pk_study_match(first, second, request, &chosen, out) : status;
+  return status == PICKET_OK ? pk_study_match(first, second, &request, &chosen, out) : status;
 }
 
 picket_status picket_match_find(picket_problem *problem, picket_problem *other,
@@ -134,13 +139,11 @@ picket_status picket_match_find(picket_problem *problem, picket_problem *other,
   if (!problem) {
     return PICKET_ERROR_ARGUMENT;
   }
-  picket_match_request usual;
-  picket_match_request_init(&usual);
   picket_status status = pk_border_enter(problem->context);
   if (status != PICKET_OK) {
     return status;
   }
-  status = find(problem, other, request ? request : &usual, options, out);
+  status = find(problem, other, request, options, out);
   return pk_border_leave(problem->context, status);
 }
 
@@ -149,9 +152,9 @@ int picket_match_count(const picket_result *result) {
 }
 
 picket_status picket_match_get(const picket_result *result, int i, picket_match_answer *out) {
-  if (i < 0 || i >= picket_match_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_MATCH, i, out);
+  if (status == PICKET_OK) {
+    *out = result->match[i];
   }
-  *out = result->match[i];
-  return PICKET_OK;
+  return status;
 }

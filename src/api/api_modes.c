@@ -18,9 +18,9 @@ int picket_modes_count(const picket_result *result) {
 }
 
 picket_status picket_modes_get(const picket_result *result, int i, picket_modes_answer *out) {
-  if (i < 0 || i >= picket_modes_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_MODES, i, out);
+  if (status == PICKET_OK) {
+    *out = result->modes[i];
   }
-  *out = result->modes[i];
-  return PICKET_OK;
+  return status;
 }

@@ -165,6 +165,7 @@ void picket_problem_free(picket_problem *problem) {
   picket_context *context = problem->context;
   pk_problem_free(problem->understood);
   pk_document_free(problem->document);
+  pk_free(context, problem->text);
   pk_free(context, problem);
   pk_context_release(context);
 }

@@ -32,19 +32,40 @@ const char *picket_result_shortfall(const picket_result *result) {
 
 typedef picket_status (*document_writer)(const picket_result *result, char **out);
 
-static const char *document(picket_result *result, char **kept, document_writer write) {
-  if (!*kept && pk_border_enter(result->context) == PICKET_OK) {
-    (void)pk_border_leave(result->context, write(result, kept));
+static picket_status document(picket_result *result, char **kept, document_writer write,
+                              const char **out) {
+  if (!out) {
+    return pk_border_refuse(result->context, "out is null, must be the address of a text");
   }
-  return *kept;
+  picket_status status = PICKET_OK;
+  if (!*kept) {
+    status = pk_border_enter(result->context);
+    if (status == PICKET_OK) {
+      status = pk_border_leave(result->context, write(result, kept));
+    }
+  }
+  if (status == PICKET_OK) {
+    *out = *kept;
+  }
+  return status;
+}
+
+picket_status picket_result_json_get(picket_result *result, const char **out) {
+  return result ? document(result, &result->json, pk_json_write, out) : PICKET_ERROR_ARGUMENT;
+}
+
+picket_status picket_result_csv_get(picket_result *result, const char **out) {
+  return result ? document(result, &result->csv, pk_csv_write, out) : PICKET_ERROR_ARGUMENT;
 }
 
 const char *picket_result_json(picket_result *result) {
-  return result ? document(result, &result->json, pk_json_write) : NULL;
+  const char *text = NULL;
+  return picket_result_json_get(result, &text) == PICKET_OK ? text : NULL;
 }
 
 const char *picket_result_csv(picket_result *result) {
-  return result ? document(result, &result->csv, pk_csv_write) : NULL;
+  const char *text = NULL;
+  return picket_result_csv_get(result, &text) == PICKET_OK ? text : NULL;
 }
 
 void picket_result_free(picket_result *result) {

@@ -12,13 +12,8 @@ enum { MOST_ORDER = 199 };
 
 static picket_status prepare(picket_problem *problem, const picket_options *options,
                              picket_options *chosen, const pk_problem **understood) {
-  picket_status status = options ? pk_options_check(problem->context, options) : PICKET_OK;
-  if (status != PICKET_OK) {
-    return status;
-  }
-  picket_options_init(chosen);
-  *chosen = options ? *options : *chosen;
-  return pk_problem_understand(problem, understood);
+  picket_status status = pk_options_take(problem->context, options, chosen);
+  return status == PICKET_OK ? pk_problem_understand(problem, understood) : status;
 }
 
 static picket_status check_question(picket_context *context, double wavelength_um, int order,
@@ -61,69 +56,92 @@ picket_status picket_section_field_find(picket_problem *problem, const picket_op
   return pk_border_leave(context, status);
 }
 
-picket_status picket_section_field_describe(const picket_section_field *field,
-                                            picket_section_field_description *out) {
-  if (!field || !out) {
+/* A null field leaves nowhere for a message. */
+static picket_status check(const picket_section_field *field, picket_component which, int last,
+                           const void *out) {
+  if (!field) {
     return PICKET_ERROR_ARGUMENT;
   }
-  *out = field->about;
-  return PICKET_OK;
+  if ((int)which < PICKET_COMPONENT_EX || (int)which > last) {
+    return pk_border_refuse(field->context, "component is %d, must be %d to %d", (int)which,
+                            (int)PICKET_COMPONENT_EX, last);
+  }
+  return out ? PICKET_OK
+             : pk_border_refuse(field->context,
+                                "an output is null, must be the address of what is to be filled");
+}
+
+picket_status picket_section_field_describe(const picket_section_field *field,
+                                            picket_section_field_description *out) {
+  picket_status status = check(field, PICKET_COMPONENT_EX, PICKET_COMPONENT_HZ, out);
+  if (status == PICKET_OK) {
+    *out = field->about;
+  }
+  return status;
 }
 
 /* The components of the interface and of the section have the same order. */
-static bool is_component(const picket_section_field *field, picket_component which) {
-  return field && (int)which >= PICKET_COMPONENT_EX && (int)which <= PICKET_COMPONENT_HZ;
+static int count_along(const picket_section_field *field, picket_component which,
+                       pk_axis_name axis) {
+  return pk_whole_count(&field->whole, (pk_whole_name)which, axis);
 }
 
 picket_status picket_section_field_size(const picket_section_field *field, picket_component which,
                                         int *nx, int *ny) {
-  if (!is_component(field, which) || !nx || !ny) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = check(field, which, PICKET_COMPONENT_HZ, nx ? ny : NULL);
+  if (status == PICKET_OK) {
+    *nx = count_along(field, which, PK_U);
+    *ny = count_along(field, which, PK_V);
   }
-  *nx = pk_whole_count(&field->whole, (pk_whole_name)which, PK_U);
-  *ny = pk_whole_count(&field->whole, (pk_whole_name)which, PK_V);
-  return PICKET_OK;
+  return status;
 }
 
-picket_status picket_section_field_places(const picket_section_field *field, picket_component which,
-                                          picket_axis axis, double *out, size_t capacity) {
-  if (!is_component(field, which) || !out || (axis != PICKET_AXIS_X && axis != PICKET_AXIS_Y)) {
-    return PICKET_ERROR_ARGUMENT;
-  }
-  pk_axis_name name = axis == PICKET_AXIS_X ? PK_U : PK_V;
-  size_t count = (size_t)pk_whole_count(&field->whole, (pk_whole_name)which, name);
+/* Copies `count` numbers if there is room for them. */
+static picket_status give(const picket_section_field *field, const void *values, size_t count,
+                          double *out, size_t capacity) {
   if (capacity < count) {
-    return PICKET_ERROR_ARGUMENT;
-  }
-  memcpy(out, pk_whole_places(&field->whole, (pk_whole_name)which, name), count * sizeof *out);
-  return PICKET_OK;
-}
-
-/* Complex numbers are pairs of doubles (C11 6.2.5). */
-static picket_status give(const picket_section_field *field, picket_component which,
-                          const double complex *values, double *out, size_t capacity) {
-  int nx = 0, ny = 0;
-  picket_status status = picket_section_field_size(field, which, &nx, &ny);
-  size_t count = 2 * (size_t)nx * (size_t)ny;
-  if (status != PICKET_OK || !out || capacity < count) {
-    return PICKET_ERROR_ARGUMENT;
+    return pk_border_refuse(field->context, "capacity is %zu, must be at least %zu", capacity,
+                            count);
   }
   memcpy(out, values, count * sizeof *out);
   return PICKET_OK;
 }
 
+picket_status picket_section_field_places(const picket_section_field *field, picket_component which,
+                                          picket_axis axis, double *out, size_t capacity) {
+  picket_status status = check(field, which, PICKET_COMPONENT_HZ, out);
+  if (status != PICKET_OK) {
+    return status;
+  }
+  if (axis != PICKET_AXIS_X && axis != PICKET_AXIS_Y) {
+    return pk_border_refuse(
+        field->context, "axis is %d, must be PICKET_AXIS_X (1) or PICKET_AXIS_Y (2)", (int)axis);
+  }
+  pk_axis_name name = axis == PICKET_AXIS_X ? PK_U : PK_V;
+  return give(field, pk_whole_places(&field->whole, (pk_whole_name)which, name),
+              (size_t)count_along(field, which, name), out, capacity);
+}
+
+/* Complex numbers are pairs of doubles (C11 6.2.5). */
+static size_t doubles_of(const picket_section_field *field, picket_component which) {
+  return 2 * (size_t)count_along(field, which, PK_U) * (size_t)count_along(field, which, PK_V);
+}
+
 picket_status picket_section_field_component(const picket_section_field *field,
                                              picket_component which, double *out, size_t capacity) {
-  return is_component(field, which) ? give(field, which, field->whole.field[which], out, capacity)
-                                    : PICKET_ERROR_ARGUMENT;
+  picket_status status = check(field, which, PICKET_COMPONENT_HZ, out);
+  return status == PICKET_OK
+             ? give(field, field->whole.field[which], doubles_of(field, which), out, capacity)
+             : status;
 }
 
 picket_status picket_section_field_permittivity(const picket_section_field *field,
                                                 picket_component which, double *out,
                                                 size_t capacity) {
-  return is_component(field, which) && (int)which < PK_ELECTRIC
-             ? give(field, which, field->permittivity[which], out, capacity)
-             : PICKET_ERROR_ARGUMENT;
+  picket_status status = check(field, which, PK_ELECTRIC - 1, out);
+  return status == PICKET_OK
+             ? give(field, field->permittivity[which], doubles_of(field, which), out, capacity)
+             : status;
 }
 
 void picket_section_field_free(picket_section_field *field) {

@@ -7,6 +7,7 @@
 #include "api/border.h"
 #include "api/problem_private.h"
 #include "api/sweeping.h"
+#include "base/stamp.h"
 #include "io/vary.h"
 
 static const pk_sweep_kind *const KIND[] = {
@@ -58,11 +59,24 @@ picket_status pk_sweeping_resumable(picket_problem *problem, const picket_option
 /* --- Over a value of the file --------------------------------------------------------------------
  */
 
-void picket_sweep_request_init(picket_sweep_request *request) {
-  if (request) {
-    memset(request, 0, sizeof *request);
-    request->size = sizeof *request;
+void picket_sweep_request_init_sized(picket_sweep_request *request, size_t size) {
+  const picket_sweep_request usual = {0};
+  pk_stamp_give(&usual, sizeof usual, request, size);
+}
+
+/* In parentheses because the header has a macro of the same name. */
+void(picket_sweep_request_init)(picket_sweep_request *request) {
+  picket_sweep_request_init_sized(request, sizeof *request);
+}
+
+const char *picket_question_name(picket_question question) {
+  switch (question) {
+    case PICKET_QUESTION_EDGES: return "edges";
+    case PICKET_QUESTION_INDEX: return "index";
+    case PICKET_QUESTION_MODES: return "modes";
+    case PICKET_QUESTION_SLAB: return "slab";
   }
+  return "unknown";
 }
 
 picket_status picket_sweep_spread(double from, double to, int count, double *out) {
@@ -93,14 +107,6 @@ static picket_status check_values(picket_context *context, const picket_sweep_re
 }
 
 static picket_status check_request(picket_context *context, const picket_sweep_request *request) {
-  if (!request) {
-    return pk_fail(context, PICKET_ERROR_ARGUMENT, "request is null");
-  }
-  if (request->size != sizeof *request) {
-    return pk_fail(context, PICKET_ERROR_ARGUMENT,
-                   "request: size is %zu, must be %zu: call picket_sweep_request_init",
-                   request->size, sizeof *request);
-  }
   if ((int)request->question < 0 || (int)request->question >= QUESTIONS) {
     return pk_fail(context, PICKET_ERROR_ARGUMENT, "question is %d, must be 0 to %d",
                    (int)request->question, QUESTIONS - 1);
@@ -129,27 +135,39 @@ static picket_status open_value(void *user, double value, pk_problem **out) {
   return pk_vary_read(v->problem->context, v->problem->document, v->node, value, out);
 }
 
-static picket_status find(picket_problem *problem, const picket_sweep_request *request,
+static picket_status take_request(picket_context *context, const picket_sweep_request *given,
+                                  picket_sweep_request *request) {
+  picket_sweep_request_init(request);
+  if (!given) {
+    return pk_fail(context, PICKET_ERROR_ARGUMENT, "request is null, must say what to sweep");
+  }
+  picket_status status =
+      pk_stamp_take(context, "picket_sweep_request", given, request, sizeof *request);
+  return status == PICKET_OK ? check_request(context, request) : status;
+}
+
+static picket_status find(picket_problem *problem, const picket_sweep_request *given,
                           const picket_options *options, picket_result **out) {
+  picket_sweep_request request;
   picket_options chosen;
   varied v = {.problem = problem};
   double now = 0;
   pk_sweep_source source = {.open = open_value, .user = &v};
-  picket_status status = check_request(problem->context, request);
+  picket_status status = take_request(problem->context, given, &request);
   if (status == PICKET_OK) {
     status = pk_border_prepare(problem, options, out, &chosen, &source.problem);
   }
   if (status == PICKET_OK) {
-    status = pk_vary_value(problem->document, request->path, &v.node, &now);
+    status = pk_vary_value(problem->document, request.path, &v.node, &now);
   }
   if (status != PICKET_OK) {
     return status;
   }
   source.document = pk_document_hash(problem->document);
-  source.path = request->path;
-  source.count = request->count;
-  source.value = request->values;
-  return pk_sweep_run(KIND[request->question], &source, &chosen, request->journal_path, out);
+  source.path = request.path;
+  source.count = request.count;
+  source.value = request.values;
+  return pk_sweep_run(KIND[request.question], &source, &chosen, request.journal_path, out);
 }
 
 picket_status picket_sweep_find(picket_problem *problem, const picket_sweep_request *request,
@@ -168,8 +186,16 @@ const char *picket_sweep_path(const picket_result *result) {
 }
 
 picket_status picket_sweep_value(const picket_result *result, int i, double *out) {
-  if (!result || !result->sweep_value || i < 0 || i >= result->count || !out) {
+  if (!result) {
     return PICKET_ERROR_ARGUMENT;
+  }
+  if (!result->sweep_value || !out) {
+    return pk_border_refuse(
+        result->context, "%s",
+        out ? "the result is of no sweep" : "out is null, must be the address of a number");
+  }
+  if (i < 0 || i >= result->count) {
+    return pk_border_refuse(result->context, "i is %d, must be 0 to %d", i, result->count - 1);
   }
   *out = result->sweep_value[i];
   return PICKET_OK;

@@ -107,9 +107,9 @@ int picket_tolerance_count(const picket_result *result) {
 
 picket_status picket_tolerance_get(const picket_result *result, int i,
                                    picket_tolerance_answer *out) {
-  if (i < 0 || i >= picket_tolerance_count(result) || !out) {
-    return PICKET_ERROR_ARGUMENT;
+  picket_status status = pk_border_answer(result, PK_RESULT_TOLERANCE, i, out);
+  if (status == PICKET_OK) {
+    *out = result->tolerance[i];
   }
-  *out = result->tolerance[i];
-  return PICKET_OK;
+  return status;
 }

@@ -29,6 +29,15 @@ picket_status pk_border_prepare(picket_problem *problem, const picket_options *o
 picket_status pk_border_study(picket_problem *problem, const picket_options *options,
                               picket_result **out, pk_study study);
 
+/* What a question to a finished object ends with when it is wrong: PICKET_ERROR_ARGUMENT, with a
+ * message unless another call is using the context. */
+picket_status pk_border_refuse(picket_context *context, const char *format, ...)
+    __attribute__((format(printf, 2, 3)));
+
+/* PICKET_OK if the result has answer i of a kind and there is a place for it. */
+picket_status pk_border_answer(const picket_result *result, pk_result_kind kind, int i,
+                               const void *out);
+
 /* Answers of a result: 0 if it is null or of another kind. */
 int pk_border_count(const picket_result *result, pk_result_kind kind);
 

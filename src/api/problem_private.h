@@ -10,6 +10,7 @@
 struct picket_problem {
   picket_context *context; /* held */
   pk_document *document;
+  char *text;             /* given out last, or null */
   pk_problem *understood; /* what the document says; null until asked for and after a change */
 };
 

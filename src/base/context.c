@@ -8,14 +8,16 @@
 
 #include "base/context_private.h"
 #include "base/memory.h"
+#include "base/stamp.h"
 
-void picket_context_options_init(picket_context_options *options) {
-  if (!options) {
-    return;
-  }
-  memset(options, 0, sizeof *options);
-  options->size = sizeof *options;
-  options->log_level = PICKET_LOG_INFO;
+/* In parentheses where the header has a macro of the same name. */
+void picket_context_options_init_sized(picket_context_options *options, size_t size) {
+  const picket_context_options usual = {.log_level = PICKET_LOG_INFO};
+  pk_stamp_give(&usual, sizeof usual, options, size);
+}
+
+void(picket_context_options_init)(picket_context_options *options) {
+  picket_context_options_init_sized(options, sizeof *options);
 }
 
 static void *allocate_first(const picket_context_options *options, size_t bytes) {
@@ -23,20 +25,24 @@ static void *allocate_first(const picket_context_options *options, size_t bytes)
 }
 
 picket_status picket_context_create(const picket_context_options *options, picket_context **out) {
-  picket_context_options defaults;
-  picket_context_options_init(&defaults);
-  if (!options) {
-    options = &defaults;
-  }
-  if (!out || options->size != sizeof *options || !options->allocate != !options->release) {
+  picket_context_options chosen;
+  picket_context_options_init(&chosen);
+  if (!out || (options && !pk_stamp_fits(options->size, sizeof chosen))) {
     return PICKET_ERROR_ARGUMENT;
   }
-  picket_context *context = allocate_first(options, sizeof *context);
+  if (options) {
+    memcpy(&chosen, options, options->size);
+    chosen.size = sizeof chosen;
+  }
+  if (!chosen.allocate != !chosen.release) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  picket_context *context = allocate_first(&chosen, sizeof *context);
   if (!context) {
     return PICKET_ERROR_MEMORY;
   }
   memset(context, 0, sizeof *context);
-  context->options = *options;
+  context->options = chosen;
   atomic_init(&context->holds, 1);
   atomic_flag_clear(&context->busy);
   *out = context;
@@ -56,6 +62,35 @@ void pk_context_release(picket_context *context) {
 
 void picket_context_free(picket_context *context) {
   pk_context_release(context);
+}
+
+picket_status picket_context_set_log(picket_context *context, picket_log_callback log, void *user,
+                                     picket_log_level level) {
+  if (!context) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  if (!pk_context_enter(context)) {
+    return PICKET_ERROR_BUSY;
+  }
+  context->options.log = log;
+  context->options.log_user = user;
+  context->options.log_level = level;
+  pk_context_leave(context);
+  return PICKET_OK;
+}
+
+picket_status picket_context_set_progress(picket_context *context,
+                                          picket_progress_callback progress, void *user) {
+  if (!context) {
+    return PICKET_ERROR_ARGUMENT;
+  }
+  if (!pk_context_enter(context)) {
+    return PICKET_ERROR_BUSY;
+  }
+  context->options.progress = progress;
+  context->options.progress_user = user;
+  pk_context_leave(context);
+  return PICKET_OK;
 }
 
 const char *picket_context_message(const picket_context *context) {

@@ -4,7 +4,9 @@
 
 #include <picket/options.h>
 
-/* PICKET_OK if every option is in its range; else PICKET_ERROR_ARGUMENT with a message. */
-picket_status pk_options_check(picket_context *context, const picket_options *options);
+/* The caller's options, or the defaults for null; those of a smaller struct are filled up.
+ * PICKET_ERROR_ARGUMENT with a message if one is out of its range; `chosen` is then undefined. */
+picket_status pk_options_take(picket_context *context, const picket_options *options,
+                              picket_options *chosen);
 
 #endif

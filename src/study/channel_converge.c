@@ -6,6 +6,7 @@
 #include <stdio.h>
 
 #include "base/memory.h"
+#include "study/converge.h"
 #include "study/harmonics.h"
 
 /* Grids of each attempt, zeros left out, at `BASE` harmonics; and harmonics on the first grid. */
@@ -83,7 +84,8 @@ static picket_status take_rows(run *r, int attempt) {
   picket_status status = PICKET_OK;
   int steps = r->grids + r->rows + 1;
   for (int i = 0; status == PICKET_OK && i < steps; i++) {
-    status = pk_progress(r->context, r->request->phase, (attempt + (double)i / steps) / ATTEMPTS);
+    status =
+        pk_progress(r->context, r->request->phase, pk_converge_done(attempt, (double)i / steps));
     if (status == PICKET_OK) {
       status = i < r->grids ? take(r, r->m[i], r->base)
                : i < r->grids + r->rows
@@ -271,6 +273,9 @@ picket_status pk_channel_converge(const pk_channel_request *request, picket_quan
   }
   if (status == PICKET_OK) {
     status = conclude(&r, quantities, worst, result);
+  }
+  if (status == PICKET_OK) {
+    status = pk_progress(r.context, request->phase, 1);
   }
   for (int i = 0; i < r.count; i++) {
     pk_free(r.context, r.sample[i].values);

@@ -54,6 +54,7 @@ typedef struct family {
   int member[MOST_MEMBERS];
   double *values;     /* [members][quantities] */
   double *span_error; /* [quantities] of cutting off open sides */
+  double shown;       /* how much was said to be done: open sides that move out start anew */
 } family;
 
 /* The values of a member, or null. */
@@ -75,12 +76,17 @@ static picket_status sample_member(family *f, int m) {
   return status;
 }
 
+double pk_converge_done(int attempt, double part) {
+  static const double FIRST = 0.6; /* most questions are answered by the first attempt */
+  return 1 - pow(1 - FIRST, attempt) * (1 - FIRST * part);
+}
+
 /* Members known from an attempt before are not solved again. */
 static picket_status sample_grids(family *f, int attempt) {
   picket_status status = PICKET_OK;
   for (int g = 0; status == PICKET_OK && g < f->count; g++) {
-    double done = (attempt + (double)g / f->count) / ATTEMPTS;
-    status = pk_progress(f->context, f->request->phase, done);
+    f->shown = fmax(f->shown, pk_converge_done(attempt, (double)g / f->count));
+    status = pk_progress(f->context, f->request->phase, f->shown);
     if (status == PICKET_OK) {
       status = values_of(f, f->m[g]) ? PICKET_OK : sample_member(f, f->m[g]);
     }
@@ -333,6 +339,9 @@ picket_status pk_converge(const pk_converge_request *request, picket_quantity *q
   picket_status status = f.values && f.span_error ? lay_base(&f) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
     status = run_family(&f, quantities, result);
+  }
+  if (status == PICKET_OK) {
+    status = pk_progress(f.context, request->phase, 1);
   }
   pk_cell_grid_clear(f.context, &f.base);
   pk_free(f.context, f.values);

@@ -26,6 +26,9 @@ typedef struct pk_converge_request {
                     int i);
 } pk_converge_request;
 
+/* How much of the work is done, 0 to 1: which attempt, and what part of it. */
+double pk_converge_done(int attempt, double part);
+
 /* quantities[count]; the result is marked partial if a bar stays above the accuracy asked. For open
  * sides the error of cutting them off is measured (walls of both kinds) and added to each bar. */
 picket_status pk_converge(const pk_converge_request *request, picket_quantity *quantities,

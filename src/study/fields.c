@@ -228,6 +228,9 @@ picket_status pk_mode_field(const pk_problem *problem, pk_polarization polarizat
   pk_level level = {0};
   picket_status status = check_cell(problem);
   if (status == PICKET_OK) {
+    status = pk_progress(problem->context, "mode field", 0);
+  }
+  if (status == PICKET_OK) {
     status =
         pk_look_take(problem, polarization, wavelength_um, order + 1, options->accuracy, &look);
   }
@@ -237,6 +240,9 @@ picket_status pk_mode_field(const pk_problem *problem, pk_polarization polarizat
   }
   if (status == PICKET_OK && i == look.count) {
     status = no_mode(problem, order, wavelength_um);
+  }
+  if (status == PICKET_OK) {
+    status = pk_progress(problem->context, "mode field", 0.5);
   }
   if (status == PICKET_OK) {
     status = open_grid(&look, options, &level);

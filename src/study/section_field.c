@@ -29,12 +29,14 @@ static const double LOW_ACCURACY = 1e-3, HIGH_ACCURACY = 1e-4;
  * of a symmetric mode. */
 static const double EQUALLY_LARGE = 1e-6;
 
+static const char PHASE[] = "mode fields";
 enum { NOTE_BYTES = 512, ALL_MODES = 20 };
 
 typedef struct finder {
   const pk_problem *problem;
   const picket_options *options;
   double wavelength_um;
+  double from, part; /* of the progress: where this wavelength begins, and its share */
   pk_section_survey survey;
   pk_section_families families;
   int count; /* fields found so far */
@@ -303,8 +305,10 @@ static picket_status no_mode(const pk_problem *problem, int order, double wavele
 
 /* All fields of the finder, by falling index; PICKET_ERROR_NO_MODE without one. */
 static picket_status find(finder *f, int most) {
-  picket_status status =
-      pk_section_survey_take(f->problem, &f->problem->section, f->wavelength_um, &f->survey);
+  picket_status status = pk_progress(f->problem->context, PHASE, f->from);
+  if (status == PICKET_OK) {
+    status = pk_section_survey_take(f->problem, &f->problem->section, f->wavelength_um, &f->survey);
+  }
   if (status == PICKET_OK) {
     status = pk_section_look_at(&f->survey, most, &f->families);
   }
@@ -312,7 +316,9 @@ static picket_status find(finder *f, int most) {
     keep_highest(f, most);
   }
   for (int i = 0; status == PICKET_OK && i < f->families.count; i++) {
-    if (f->families.family[i].count > 0) {
+    double done = (i + 1.0) / (f->families.count + 1);
+    status = pk_progress(f->problem->context, PHASE, f->from + f->part * done);
+    if (status == PICKET_OK && f->families.family[i].count > 0) {
       status = solve_family(f, &f->families.family[i]);
     }
   }
@@ -343,6 +349,7 @@ static picket_status finder_new(const pk_problem *problem, const picket_options 
   f->problem = problem;
   f->options = options;
   f->wavelength_um = wavelength_um;
+  f->part = 1;
   *out = f;
   return PICKET_OK;
 }
@@ -389,6 +396,7 @@ picket_status pk_section_field(const pk_problem *problem, double wavelength_um,
 
 typedef struct run {
   const pk_section_sink *sink;
+  double from, part;   /* of the progress: where this wavelength begins, and its share */
   int found;           /* fields taken so far */
   picket_status first; /* the first failure of a wavelength, and what it said */
   char note[NOTE_BYTES];
@@ -402,6 +410,8 @@ static picket_status take_point(const pk_problem *problem, const picket_options 
   if (status != PICKET_OK) {
     return status;
   }
+  f->from = r->from;
+  f->part = r->part;
   status = find(f, most);
   for (int i = 0; status == PICKET_OK && i < f->count; i++) {
     status = r->sink->take(r->sink->user, f->field[i]);
@@ -431,10 +441,9 @@ picket_status pk_study_section_fields(const pk_problem *problem, const picket_op
                         "mode fields need \"light.wavelength_nm\", which is not given");
   }
   for (int i = 0; status == PICKET_OK && i < light->count; i++) {
-    status = pk_progress(problem->context, "mode fields", (double)i / light->count);
-    if (status == PICKET_OK) {
-      status = take_point(problem, options, light->wavelength_um[i], &r);
-    }
+    r.from = (double)i / light->count;
+    r.part = 1.0 / light->count;
+    status = take_point(problem, options, light->wavelength_um[i], &r);
   }
   if (status == PICKET_OK && r.found == 0) {
     status = pk_fail(problem->context, r.first, "%s", r.note);

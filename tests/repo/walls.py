@@ -171,7 +171,7 @@ def _check_words(where, text):
                 found.append(f'{where}:{line}: {word}: {what} is not for a library')
     if room is None:
         found += [f'{where}:{line}: the public macro {name} lacks the prefix PICKET_'
-                  for line, name in c_source.macros(text) if not name.startswith('PICKET_')]
+                  for line, name in c_source.macros(text) if not name.startswith(('PICKET_', 'picket_'))]
     return found
 
 

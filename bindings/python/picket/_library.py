@@ -10,7 +10,7 @@ import os
 import pathlib
 
 from . import records
-from ._layout import text
+from ._layout import RECORDS, text
 from ._version import __version__
 
 NAME = 'libpicket.so.0'
@@ -62,15 +62,26 @@ STAMPED = {'picket_context_options_init': ContextOptions, 'picket_sweep_request_
            'picket_match_request_init': records.MatchRequest.C}
 
 FUNCTIONS = {
-    # context.h, status.h
+    # version.h
     'picket_version': (Text,),
+    'picket_abi': (Int,),
+    'picket_build': (Text,),
+    'picket_struct_size': (Size, Text),
+    'picket_struct_name': (Text, Int),
+    # context.h, status.h
     'picket_status_name': (Text, Status),
+    'picket_status_text': (Text, Status),
     'picket_context_options_init': (None, Object),
+    'picket_context_options_init_sized': (None, Object, Size),
+    'picket_context_set_log': (Status, Object, TakeLog, Object, Int),
+    'picket_context_set_progress': (Status, Object, AskProgress, Object),
     'picket_context_create': (Status, Object, Out),
     'picket_context_free': (None, Object),
     'picket_context_message': (Text, Object),
     # options.h
     'picket_options_init': (None, Object),
+    'picket_options_init_sized': (None, Object, Size),
+    'picket_options_choose': (Status, Object, Object, Text, Double),
     'picket_option_at': (ctypes.POINTER(OptionDescription), Int),
     'picket_options_set': (Status, Object, Text, Double),
     # problem.h
@@ -79,6 +90,10 @@ FUNCTIONS = {
     'picket_problem_read_text': (Status, Object, Text, Size, Text, Out),
     'picket_problem_set': (Status, Object, Text, Text),
     'picket_problem_set_number': (Status, Object, Text, Double),
+    'picket_problem_number': (Status, Object, Text, Doubles),
+    'picket_problem_text': (Status, Object, Text, Out),
+    'picket_problem_number_count': (Int, Object),
+    'picket_problem_number_at': (Status, Object, Int, Out, Doubles),
     'picket_problem_check': (Status, Object),
     'picket_problem_free': (None, Object),
     # result.h, summary.h
@@ -88,6 +103,8 @@ FUNCTIONS = {
     'picket_result_shortfall': (Text, Object),
     'picket_result_json': (Text, Object),
     'picket_result_csv': (Text, Object),
+    'picket_result_json_get': (Status, Object, Out),
+    'picket_result_csv_get': (Status, Object, Out),
     'picket_result_free': (None, Object),
     'picket_summary_find': (Status, Object, Out),
     'picket_summary_line': (Text, Object, Int),
@@ -111,12 +128,18 @@ FUNCTIONS = {
     'picket_section_field_permittivity': (Status, Object, Int, Doubles, Size),
     'picket_section_field_free': (None, Object),
     'picket_section_fields_write': (Status, Object, Object, Text),
-    # index.h, modes.h, besides what every study has
+    # aim.h, index.h, modes.h, slab.h, besides what every study has
+    'picket_derivative_way_name': (Text, Int),
+    'picket_side_name': (Text, Int),
+    'picket_slab_polarization_name': (Text, Int),
     'picket_index_find_resumable': (Status, Object, Object, Text, Out),
     'picket_modes_find_resumable': (Status, Object, Object, Text, Out),
     # match.h, sweep.h
     'picket_match_request_init': (None, Object),
+    'picket_match_request_init_sized': (None, Object, Size),
     'picket_sweep_request_init': (None, Object),
+    'picket_sweep_request_init_sized': (None, Object, Size),
+    'picket_question_name': (Text, Int),
     'picket_sweep_spread': (Status, Double, Double, Int, Doubles),
     'picket_sweep_find': (Status, Object, Object, Object, Out),
     'picket_sweep_path': (Text, Object),
@@ -193,6 +216,10 @@ def _check():
     version = text(lib.picket_version())
     if version.split('.')[:2] != __version__.split('.')[:2]:
         raise ImportError(f'{PATH} is Picket {version}, this package is for {__version__}')
+    for record in RECORDS:
+        size = lib.picket_struct_size(record.c_name.encode())
+        if size != ctypes.sizeof(record.C):
+            raise ImportError(f'{PATH}: {record.c_name} has {size} bytes, must be {ctypes.sizeof(record.C)}')
     for init, struct in STAMPED.items():
         size = _stamped_size(getattr(lib, init))
         if size != ctypes.sizeof(struct):

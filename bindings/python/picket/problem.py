@@ -29,7 +29,8 @@ class Problem(Owned):
         Problem.from_file('bus.yaml')
         Problem.from_text('format: 1\\n...')
 
-    Values are reached by dotted paths, list elements by number, and set like this: `problem['cell.pitch_nm'] = 310`.
+    Values are reached by dotted paths, list elements by number, and set like this: `problem['cell.pitch_nm'] = 310`
+    (`problem['cell.pitch_nm']` reads a number back).
     Lengths in a problem are nm. The whole is checked when it is first used; `check` does it now.
 
     The questions take keywords, all optional: those of `picket.options()`, such as accuracy (wanted relative
@@ -79,6 +80,12 @@ class Problem(Owned):
             self.context._call(lib.picket_problem_set, self, path.encode(), flow(value).encode())
 
     __setitem__ = set
+
+    def __getitem__(self, path: str) -> float:
+        """The number at a path, in the unit of the file. InputError if there is none."""
+        value = ctypes.c_double()
+        self.context._call(lib.picket_problem_number, self, path.encode(), ctypes.byref(value))
+        return value.value
 
     def check(self) -> None:
         """Raises InputError with the first fault, if there is one."""

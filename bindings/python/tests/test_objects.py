@@ -38,6 +38,9 @@ def test_text_file_and_mapping_are_the_same(tmp_path):
 def test_values_are_set():
     problem = picket.Problem(film())
     problem['slab.films.0.thickness_nm'] = 500
+    assert problem['slab.films.0.thickness_nm'] == 500
+    with pytest.raises(picket.InputError):
+        problem['slab.films.7.thickness_nm']
     assert value(problem) == value(picket.Problem(film(thickness_nm=500)))
     problem.set('slab.films', [{'fill': 'film', 'thickness_nm': np.float64(400)}])
     problem['light.wavelength_nm'] = np.array([1550.0])
