@@ -68,12 +68,16 @@ typedef struct picket_modes_answer {
 /* Guided modes of the problem's `section` at each wavelength of its `light`: the first
  * `options->count` by index, all of them (up to 20) if that is 0. Mirror planes are used where the
  * section has them. The window is chosen from how fast the modes decay unless the section gives
- * one, whose border is then an electric wall.
+ * one, whose border is then an electric wall. If nothing varies along x or y in a window that is
+ * given, its walls there are the guide's own and every mode between them counts; otherwise it is cut
+ * out of surroundings that go on, only modes above their index count, and the bars hold what the
+ * walls may do.
  *
  * `index` and `group_index` are refined until their bars are below options->accuracy. Modes above
  * the highest index that a wave can have far out are guided. If there is none because a side (a
  * substrate) has a higher index than the guide's modes, the modes of the guide without that side
- * are followed into it: they leak, and loss_db_per_cm says how much.
+ * are followed into it: they leak, and loss_db_per_cm says how much. If no medium is above the
+ * surroundings at all (a core between holes), modes leak on all sides.
  *
  * A section with a `bend_radius_um` is bent about the line x = -radius: its index is that of the
  * arc at x = 0 (β s, s the length there), dβ/dk0 at a fixed radius is its group index. Each guided

@@ -142,24 +142,39 @@ static picket_status lay_closed(run *r) {
   return status;
 }
 
+/* The values on member m with other walls along x or y: adds how far they are off. */
+static picket_status add_span_error(run *r, const pk_axis *x, const pk_axis *y, int m,
+                                    double *moved) {
+  picket_status status = sample(r, x, y, m, false, moved);
+  const double *known = values_of(r, m);
+  for (int i = 0; status == PICKET_OK && i < r->family->count * PK_NUMBERS; i++) {
+    r->span_error[i] += fabs(moved[i] - known[i]);
+  }
+  return status;
+}
+
 /* Magnetic walls move a value the other way than electric ones, by the same amount to first order:
- * half the difference is the error of either. The whole difference is taken, as the second order
- * is not known. */
+ * half the difference is the error of either. The whole difference is taken, as the second order is
+ * not known. The walls of one axis at a time: an electric wall is a zero to the field along it and
+ * a free end to the one across, so that the two axes may cancel. */
 static picket_status sample_span_error(run *r, int m) {
+  int count = r->family->count * PK_NUMBERS;
+  memset(r->span_error, 0, (size_t)count * sizeof *r->span_error);
   if (r->survey->closed[0] && r->survey->closed[1]) {
     return PICKET_OK;
   }
   pk_axis x = {0}, y = {0};
-  picket_status status = lay(r, PK_END_FREE, &x, &y);
-  if (status == PICKET_OK) {
-    status = sample(r, &x, &y, m, false, r->span_error);
+  double *moved = PK_NEW(r->context, count, double);
+  picket_status status = moved ? lay(r, PK_END_FREE, &x, &y) : PICKET_ERROR_MEMORY;
+  if (status == PICKET_OK && !r->survey->closed[0]) {
+    status = add_span_error(r, &x, &r->y, m, moved);
   }
-  const double *known = values_of(r, m);
-  for (int i = 0; status == PICKET_OK && i < r->family->count * PK_NUMBERS; i++) {
-    r->span_error[i] = fabs(r->span_error[i] - known[i]);
+  if (status == PICKET_OK && !r->survey->closed[1]) {
+    status = add_span_error(r, &r->x, &y, m, moved);
   }
   pk_axis_clear(r->context, &x);
   pk_axis_clear(r->context, &y);
+  pk_free(r->context, moved);
   return status;
 }
 
@@ -226,7 +241,9 @@ static double walls_matter(const run *r, int m) {
 static picket_status lay_wide_enough(run *r, int m) {
   picket_status status = PICKET_OK;
   r->reach = reach_for(r->options->accuracy);
-  for (int i = 0; status == PICKET_OK && i <= WIDENINGS; i++) {
+  const double *span = r->survey->block->span_um;
+  int widenings = span[0] > 0 && span[1] > 0 ? 0 : WIDENINGS; /* walls that are given stay */
+  for (int i = 0; status == PICKET_OK && i <= widenings; i++) {
     pk_axis_clear(r->context, &r->x);
     pk_axis_clear(r->context, &r->y);
     pk_axis_clear(r->context, &r->closed_x);

@@ -125,6 +125,62 @@ static void nodes_rise_with_the_order(void **state) {
   pk_result_free(r);
 }
 
+/* A wire so narrow that its modes reach over more than a micrometre: the first look has to go
+ * there, and the answer must not depend on where the walls stand. */
+static void weak_modes_are_found(void **state) {
+  (void)state;
+#define NARROW "{rect: {fill: core, width_nm: 400, height_nm: 200}}"
+  picket_result *chosen = study(MATERIALS SECTION("oxide", "", NARROW), 0);
+  picket_result *wide = study(MATERIALS SECTION("oxide", "span_nm: [20000, 20000], ", NARROW), 0);
+  int count = chosen->modes->points[0].mode_count;
+  assert_true(count > 0);
+  assert_int_equal(wide->modes->points[0].mode_count, count);
+  for (int i = 0; i < count; i++) {
+    check_near(mode_of(chosen, i)->index, mode_of(wide, i)->index);
+    assert_true(mode_of(wide, i)->index.value > 1.444);
+  }
+  pk_result_free(chosen);
+  pk_result_free(wide);
+}
+
+/* A window cut out of surroundings that go on: modes of the window itself are not the guide's, and
+ * its walls are part of the bars. */
+static void modes_of_the_window_are_not_guided(void **state) {
+  (void)state;
+  picket_result *open = study(MATERIALS SECTION("oxide", "", WIRE("[0, 0]")), 0);
+  picket_result *tight =
+      study(MATERIALS SECTION("oxide", "span_nm: [2600, 1400], ", WIRE("[0, 0]")), 0);
+  int count = tight->modes->points[0].mode_count;
+  assert_true(count > 0 && count <= open->modes->points[0].mode_count);
+  for (int i = 0; i < count; i++) {
+    assert_true(mode_of(tight, i)->index.value > 1.444);
+  }
+  check_near(mode_of(tight, 0)->index, mode_of(open, 0)->index);
+  pk_result_free(open);
+  pk_result_free(tight);
+}
+
+/* A square standing on a corner against the same square upright, whose corners are corrected. */
+static void a_turned_square_is_the_same_guide(void **state) {
+  (void)state;
+  picket_result *upright = study(
+      MATERIALS SECTION("oxide", "", "{rect: {fill: core, width_nm: 800, height_nm: 800}}"), 2);
+  picket_result *turned =
+      study(MATERIALS SECTION("oxide", "",
+                              "{polygon: {fill: core, corners_nm: [[565.685424949, 0], [0, "
+                              "565.685424949], [-565.685424949, 0], [0, -565.685424949]]}}"),
+            2);
+  for (int i = 0; i < 2; i++) {
+    picket_quantity bar = mode_of(turned, i)->index;
+    assert_true(isfinite(bar.uncertainty) && bar.uncertainty < 1e-3 * bar.value);
+    check_near(bar, mode_of(upright, i)->index);
+    check_near(mode_of(turned, i)->group_index, mode_of(upright, i)->group_index);
+  }
+  check_near(mode_of(upright, 0)->index, mode_of(upright, 1)->index);
+  pk_result_free(upright);
+  pk_result_free(turned);
+}
+
 /* Each allocation fails once: out of memory, and nothing is left behind. */
 static void short_of_memory(void **state) {
   (void)state;
@@ -164,6 +220,9 @@ int main(void) {
       cmocka_unit_test_setup_teardown(absorption_in_a_metal_guide, set_up, tear_down),
       cmocka_unit_test_setup_teardown(mirror_planes_change_nothing, set_up, tear_down),
       cmocka_unit_test_setup_teardown(nodes_rise_with_the_order, set_up, tear_down),
+      cmocka_unit_test_setup_teardown(weak_modes_are_found, set_up, tear_down),
+      cmocka_unit_test_setup_teardown(modes_of_the_window_are_not_guided, set_up, tear_down),
+      cmocka_unit_test_setup_teardown(a_turned_square_is_the_same_guide, set_up, tear_down),
       cmocka_unit_test_setup_teardown(short_of_memory, set_up, tear_down),
   };
   return cmocka_run_group_tests(tests, NULL, NULL);
