@@ -19,6 +19,9 @@ static const int HARMONICS[ATTEMPTS][ROW] = {
 static const int BASE[ATTEMPTS] = {2, 3, 3, 3};
 static const int UNIFORM[1] = {0};
 
+/* α of a rectangular edge of silicon in glass. */
+static const double USUAL_ALPHA = 0.77;
+
 /* Part of the mixed term that the bar holds: the law in m is that of its leading term alone. */
 static const double MIXED_SHARE = 0.3;
 /* A mixed value that is left by more than this part of what harmonics add tells nothing of the
@@ -135,7 +138,7 @@ static double mixed_term(const run *r, int i, double along, double *bar) {
   const int m0 = r->m[0], m1 = r->m[1], h0 = r->base, h1 = r->harmonics[r->rows - 1];
   double v00 = value_of(r, m0, h0)[i], v01 = value_of(r, m0, h1)[i];
   double difference = value_of(r, m1, h1)[i] - v01 - value_of(r, m1, h0)[i] + v00;
-  double left = (v01 - along) / (v00 - along), grid = 1 - pow((double)m1 / m0, -2);
+  double left = (v01 - along) / (v00 - along), grid = 1 - pow((double)m1 / m0, -r->law.exponent[0]);
   bool sound = fabs(left) < MOST_LEFT;
   double mixed = difference / grid / (sound ? 1 - left : 1);
   *bar = (sound ? MIXED_SHARE : 2) * fabs(mixed);
@@ -257,6 +260,20 @@ static picket_status conclude(const run *r, const picket_quantity *q, double wor
                           r->request->options->accuracy, r->request->options->unknowns);
 }
 
+/* Edges parallel to z are corrected as in a section; those parallel to x and y, where teeth end,
+ * are not, and leave an error h^2α (channel.h). They hold the media of the others, so α is that of
+ * the law of the section; without one there, that of a strong contrast. */
+static void add_tooth_ends(run *r) {
+  double alpha = r->law.corners ? 0.5 * (4 - r->law.exponent[1]) : USUAL_ALPHA;
+  if (!r->law_z.uniform && r->law.smooth) {
+    r->law = (pk_error_law){.count = 3,
+                            .exponent = {2 * alpha, 2, 4 - 2 * alpha},
+                            .smooth = 1,
+                            .corners = 1,
+                            .no_bar = r->law.no_bar};
+  }
+}
+
 picket_status pk_channel_converge(const pk_channel_request *request, picket_quantity *quantities,
                                   picket_result *result) {
   run r = {.request = request,
@@ -269,6 +286,7 @@ picket_status pk_channel_converge(const pk_channel_request *request, picket_quan
     status = pk_section_survey_law(&request->survey->section, &r.x, &r.y, &r.law);
   }
   if (status == PICKET_OK) {
+    add_tooth_ends(&r);
     status = refine(&r, quantities, &worst);
   }
   if (status == PICKET_OK) {
