@@ -86,6 +86,7 @@ picket_status pk_read_path(pk_reader *reader, const pk_node *node);
 picket_status pk_read_aim(pk_reader *reader, const pk_document *document, const pk_node *node);
 picket_status pk_read_tolerance(pk_reader *reader, const pk_document *document,
                                 const pk_node *node);
+picket_status pk_read_taper(pk_reader *reader, const pk_document *document, const pk_node *node);
 picket_status pk_read_rules(pk_reader *reader, const pk_node *node);
 
 /* The path of a single number of the document that can be varied; the text is the caller's. */
@@ -126,6 +127,7 @@ typedef struct pk_shape_plane {
   char letter[2];                 /* of the axes u and v */
   const char *rect_size[2];       /* keys of a rect's size along u and v */
   double farthest_nm, largest_nm; /* bounds of coordinates and of sizes */
+  bool seen_from_above;           /* v is not the height: walls cannot lean in this plane */
   double pitch_nm;                /* above 0: shapes may have a range along z, inside the pitch */
 } pk_shape_plane;
 
@@ -135,6 +137,8 @@ typedef struct pk_shape {
   pk_shape_kind kind;
   int material;
   double at[2], size[2];  /* of a rect and a disc */
+  double radius;          /* of a rect's corners */
+  double lean;            /* of a rect's side walls from the vertical, rad */
   pk_axis_name across;    /* of a stripe */
   int corner_count;       /* of a polygon */
   double (*corners)[2];   /* lives as long as the call that hands it on */

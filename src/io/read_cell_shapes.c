@@ -9,7 +9,8 @@
 static const pk_shape_plane PLANE = {.letter = {'z', 'x'},
                                      .rect_size = {"length_nm", "width_nm"},
                                      .farthest_nm = PK_LENGTH_HIGH_NM,
-                                     .largest_nm = PK_LENGTH_HIGH_NM};
+                                     .largest_nm = PK_LENGTH_HIGH_NM,
+                                     .seen_from_above = true};
 
 typedef struct canvas {
   picket_context *context;

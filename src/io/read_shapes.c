@@ -19,7 +19,9 @@ static const char *const kinds[] = {[PK_SHAPE_RECT] = "rect",
 enum { KIND_COUNT = PK_SHAPE_STRIPE + 1 };
 
 /* Keys of a shape: the fill first, those of its kind, and the limits along z where allowed. */
-enum { FILL, OWN, MOST_OWN = 3, MOST_KEYS = OWN + MOST_OWN + 1 };
+enum { FILL, OWN, MOST_OWN = 5, MOST_KEYS = OWN + MOST_OWN + 1 };
+
+static const double PI = 3.14159265358979323846;
 
 typedef struct painter {
   const pk_reader *reader;
@@ -74,14 +76,58 @@ static picket_status read_along(const painter *p, const pk_node *node, pk_shape 
   return PICKET_OK;
 }
 
+/* Of leaning walls the wider end, as if its corners were sharp. */
 static void surround(pk_shape *shape) {
+  const double wider = shape->size[PK_V] * tan(fabs(shape->lean));
   for (int axis = 0; axis < 2; axis++) {
-    shape->low[axis] = shape->at[axis] - shape->size[axis] / 2;
-    shape->high[axis] = shape->at[axis] + shape->size[axis] / 2;
+    const double extent = shape->size[axis] + (axis == PK_U ? wider : 0);
+    shape->low[axis] = shape->at[axis] - extent / 2;
+    shape->high[axis] = shape->at[axis] + extent / 2;
   }
 }
 
 /* --- Kinds ------------------------------------------------------------------------------------ */
+
+/* The angle of the side walls from the vertical. Beyond 30 degrees a wall is a slope, drawn as a
+ * polygon. Needs the sizes. */
+static picket_status read_wall(const painter *p, const pk_node *node, pk_shape *shape) {
+  const pk_limits limits = {-30, 30, false, false, false, "deg"};
+  double degrees = 0;
+  if (p->plane->seen_from_above) {
+    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
+                      "%s has no meaning in a cell, which is seen from above: walls lean in a "
+                      "section or a channel",
+                      pk_node_path(node).text);
+  }
+  picket_status status = pk_read_number(p->context, node, &limits, &degrees);
+  const double tangent = tan(degrees * PI / 180), width = shape->size[PK_U];
+  const double height = shape->size[PK_V];
+  if (status == PICKET_OK && !(height * fabs(tangent) < width)) {
+    return pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
+                      "%s is %s deg, must be between -%.4g and %.4g deg, where walls %.10g nm high "
+                      "and %.10g nm apart at half height meet",
+                      pk_node_path(node).text, node->text, atan2(width, height) * 180 / PI,
+                      atan2(width, height) * 180 / PI, height, width);
+  }
+  shape->lean = degrees * PI / 180;
+  return status;
+}
+
+/* Needs the sizes and the lean. */
+static picket_status read_corners(const painter *p, const pk_node *node, pk_shape *shape) {
+  const double most = pk_geometry_largest_radius(shape->size, shape->lean);
+  const double slack = most * PK_BORDER_TOLERANCE;
+  const pk_limits limits = {0, INFINITY, false, false, false, "nm"};
+  double radius = 0;
+  picket_status status = pk_read_number(p->context, node, &limits, &radius);
+  if (status == PICKET_OK && radius > most + slack) {
+    status = pk_fail_at(p->context, PICKET_ERROR_INPUT, node->place,
+                        "%s is %s nm, must be at most %.10g nm, the largest arcs that fit in",
+                        pk_node_path(node).text, node->text, most);
+  }
+  shape->radius = fmin(radius, most);
+  return status;
+}
 
 static picket_status read_rect(const painter *p, const pk_node *const *own, pk_shape *shape) {
   picket_status status = read_size(p, own[0], &shape->size[PK_U]);
@@ -90,6 +136,12 @@ static picket_status read_rect(const painter *p, const pk_node *const *own, pk_s
   }
   if (status == PICKET_OK) {
     status = read_point(p, own[2], shape->at);
+  }
+  if (status == PICKET_OK && own[3]) {
+    status = read_wall(p, own[3], shape);
+  }
+  if (status == PICKET_OK && own[4]) {
+    status = read_corners(p, own[4], shape);
   }
   surround(shape);
   return status;
@@ -165,7 +217,9 @@ static int list_keys(const pk_shape_plane *plane, pk_shape_kind kind, pk_key *ke
   const pk_key own[KIND_COUNT][MOST_OWN] = {
       [PK_SHAPE_RECT] = {{plane->rect_size[0], true},
                          {plane->rect_size[1], true},
-                         {"at_nm", false}},
+                         {"at_nm", false},
+                         {"wall_angle_deg", false},
+                         {"corner_radius_nm", false}},
       [PK_SHAPE_DISC] = {{"diameter_nm", true}, {"at_nm", false}},
       [PK_SHAPE_POLYGON] = {{"corners_nm", true}},
       [PK_SHAPE_STRIPE] = {{"across", true}, {"from_nm", true}, {"to_nm", true}},
@@ -251,7 +305,9 @@ picket_status pk_shape_paint(picket_context *context, const pk_shape *s, pk_geom
   const double at[2] = {s->at[PK_U] / PK_NM_PER_UM, s->at[PK_V] / PK_NM_PER_UM};
   const double size[2] = {s->size[PK_U] / PK_NM_PER_UM, s->size[PK_V] / PK_NM_PER_UM};
   switch (s->kind) {
-    case PK_SHAPE_RECT: return pk_geometry_add_rect(geometry, place, s->material, at, size);
+    case PK_SHAPE_RECT:
+      return pk_geometry_add_rounded_rect(geometry, place, s->material, at, size, s->lean,
+                                          s->radius / PK_NM_PER_UM);
     case PK_SHAPE_DISC: return pk_geometry_add_disc(geometry, place, s->material, at, size[PK_U]);
     case PK_SHAPE_POLYGON: return paint_polygon(context, s, geometry);
     default:

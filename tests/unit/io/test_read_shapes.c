@@ -1,5 +1,8 @@
 /* shapes: where the paint of each kind lands, and what has no place in a cell. */
 #include "reading.h"
+
+#include <math.h>
+
 #include "unit/near.h"
 
 static const bad_text bad_shapes[] = {
@@ -237,6 +240,51 @@ static const bad_text bad_shapes[] = {
                       "    - stripe: {fill: si, across: x, from_nm: 500, to_nm: .inf}\n"),
 };
 
+#define TOOTH(keys)                                                         \
+  MATERIALS "cell: {pitch_nm: 300, cladding: oxide, shapes: [{rect: {" keys \
+            ", fill: si, length_nm: "                                       \
+            "150, width_nm: 450}}]}\n"
+#define WALL(keys)                                              \
+  MATERIALS "section: {cladding: oxide, shapes: [{rect: {" keys \
+            ", fill: si, width_nm: 150, "                       \
+            "height_nm: 300}}]}\n"
+
+/* Roundings and leaning walls. */
+static const bad_text bad_rects[] = {
+    REFUSED("3:75", "cell.shapes.0.rect.corner_radius_nm is 75.1 nm, must be at most 75 nm",
+            TOOTH("corner_radius_nm: 75.1")),
+    REFUSED("3:75", "cell.shapes.0.rect.corner_radius_nm is -1, must be at least 0",
+            TOOTH("corner_radius_nm: -1")),
+    REFUSED("3:75", "cell.shapes.0.rect.corner_radius_nm is \".nan\"",
+            TOOTH("corner_radius_nm: .nan")),
+    REFUSED("3:75", "cell.shapes.0.rect.corner_radius_nm is .inf", TOOTH("corner_radius_nm: .inf")),
+    REFUSED("3:75", "cell.shapes.0.rect.corner_radius_nm is a list",
+            TOOTH("corner_radius_nm: [1]")),
+    REFUSED("3:73",
+            "cell.shapes.0.rect.wall_angle_deg has no meaning in a cell, which is seen from above",
+            TOOTH("wall_angle_deg: 3")),
+    REFUSED("3:61",
+            "section.shapes.0.rect.wall_angle_deg is 31, must be at least -30 and at most 30",
+            WALL("wall_angle_deg: 31")),
+    REFUSED("3:61", "section.shapes.0.rect.wall_angle_deg is \".nan\"",
+            WALL("wall_angle_deg: .nan")),
+    REFUSED("3:61",
+            "section.shapes.0.rect.wall_angle_deg is 27 deg, must be between -26.57 and 26.57 deg, "
+            "where walls 300 nm high and 150 nm apart at half height meet",
+            WALL("wall_angle_deg: 27")),
+    REFUSED("3:61", "section.shapes.0.rect.wall_angle_deg is -27 deg", WALL("wall_angle_deg: -27")),
+    /* The circle in the top: (150 - 300 tan 20°)/2 tan(45° + 10°). */
+    REFUSED("3:83", "section.shapes.0.rect.corner_radius_nm is 30 nm, must be at most 29.140595",
+            WALL("wall_angle_deg: 20, corner_radius_nm: 30")),
+    REFUSED("3:45", "unknown key \"corner_radius_nm\" in section.shapes.0.disc",
+            MATERIALS "section: {cladding: oxide, shapes: [{disc: {corner_radius_nm: 3}}]}\n"),
+};
+
+static void refuses_bad_rects(void **state) {
+  (void)state;
+  CHECK_ALL_REFUSED(bad_rects);
+}
+
 static void refuses_bad_shapes(void **state) {
   (void)state;
   CHECK_ALL_REFUSED(bad_shapes);
@@ -282,6 +330,10 @@ static void paints_where_it_says(void **state) {
       {START("lateral: uniform, ") "{stripe: {fill: si, across: z, from_nm: -50, to_nm: 70}}" END,
        {{-49, 0}, {69, 499}, {0, -9999}},
        {{-51, 0}, {71, 0}, {149, 499}}},
+      /* The diagonal point of the arc is 40 (1 - 1/sqrt 2) = 11.7 nm inside both sides. */
+      {START("") "{rect: {fill: si, length_nm: 100, width_nm: 400, corner_radius_nm: 40}}" END,
+       {{38, 188}, {-38, -188}, {49, 0}},
+       {{39, 189}, {-39, -189}, {49, 199}}},
       /* Across a periodic boundary: wraps. */
       {START("") "{rect: {fill: si, length_nm: 100, width_nm: 400, at_nm: [140, 0]}}" END,
        {{91, 0}, {149, 0}, {-111, 0}},
@@ -314,6 +366,76 @@ static void paints_where_it_says(void **state) {
   picket_context_free(context);
 }
 
+/* The share of silicon in the box of a section's rect of 150 x 300 nm, grown by 50 nm all round. */
+static double silicon(const char *keys) {
+  char text[400];
+  snprintf(text, sizeof text, WALL("%s"), keys);
+  picket_context *context = plain_context();
+  pk_document *document = NULL;
+  pk_problem *p = sound(context, text, &document);
+  const pk_section_block *section = &p->section;
+  /* The window of the guide holds the wider end. */
+  assert_near(section->high_um[0] - section->low_um[0],
+              strstr(keys, "angle") ? 0.15 + 0.3 * tan(10 * acos(-1) / 180) : 0.15, 1e-12);
+  pk_box box;
+  assert_int_equal(
+      pk_geometry_box(section->geometry, (double[2]){-0.125, -0.2}, (double[2]){0.125, 0.2}, &box),
+      PICKET_OK);
+  double share = 0;
+  for (int i = 0; i < box.count; i++) {
+    share += box.medium[i] == pk_materials_find(p->materials, "si") ? box.fraction[i] : 0;
+  }
+  pk_problem_free(p);
+  pk_document_free(document);
+  picket_context_free(context);
+  return share * 250 * 400;
+}
+
+/* Areas in nm², to 1e-9 of them: coordinates of a section are the same within 1e-4 nm, and none is
+ * moved here. */
+static void rounds_and_leans_the_walls(void **state) {
+  (void)state;
+  const double pi = acos(-1), whole = 150 * 300, close = 1e-9 * whole;
+  assert_near(silicon("corner_radius_nm: 0, wall_angle_deg: 10"), whole, close);
+  assert_near(silicon("wall_angle_deg: -10"), whole, close);
+  assert_near(silicon("corner_radius_nm: 60"), whole - (4 - pi) * 3600, close);
+  double lost = 0;
+  for (int end = -1; end <= 1; end += 2) {
+    double turn = pi / 2 + end * 10 * pi / 180;
+    lost += 2 * 400 * (tan(turn / 2) - turn / 2);
+  }
+  assert_near(silicon("corner_radius_nm: 20, wall_angle_deg: 10"), whole - lost, close);
+}
+
+/* In a channel too, in the slices that the shape reaches. */
+static void leans_in_a_channel(void **state) {
+  (void)state;
+  picket_context *context = plain_context();
+  pk_document *document = NULL;
+  pk_problem *p = sound(context,
+                        MATERIALS
+                        "channel: {pitch_nm: 300, cladding: oxide, shapes: [{rect: "
+                        "{fill: si, width_nm: 400, height_nm: 200, wall_angle_deg: 10, "
+                        "corner_radius_nm: 5, along_nm: [-75, 75]}}]}\n",
+                        &document);
+  int found = 0;
+  for (int i = 0; i < p->channel.slices; i++) {
+    const pk_geometry *slice = p->channel.slice[i];
+    if (pk_geometry_shape_count(slice) > 0) {
+      /* 0.2 ± 0.1 tan 10° at the base and the top; 5 nm below the edge the arc still is near. */
+      int si = pk_materials_find(p->materials, "si");
+      assert_int_equal(pk_geometry_medium_at(slice, 0.214, -0.094), si);
+      assert_int_equal(pk_geometry_medium_at(slice, 0.214, 0.094), 0);
+      assert_false(pk_geometry_has_corners(slice));
+      found++;
+    }
+  }
+  assert_int_equal(found, 1);
+  pk_problem_free(p);
+  pk_document_free(document);
+  picket_context_free(context);
+}
+
 /* Later shapes cover earlier ones. */
 static void keeps_the_order(void **state) {
   (void)state;
@@ -334,9 +456,9 @@ static void keeps_the_order(void **state) {
 
 int main(void) {
   const struct CMUnitTest tests[] = {
-      cmocka_unit_test(refuses_bad_shapes),
-      cmocka_unit_test(paints_where_it_says),
-      cmocka_unit_test(keeps_the_order),
+      cmocka_unit_test(refuses_bad_shapes),         cmocka_unit_test(refuses_bad_rects),
+      cmocka_unit_test(rounds_and_leans_the_walls), cmocka_unit_test(leans_in_a_channel),
+      cmocka_unit_test(paints_where_it_says),       cmocka_unit_test(keeps_the_order),
   };
   return cmocka_run_group_tests(tests, NULL, NULL);
 }
