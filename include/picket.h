@@ -21,6 +21,7 @@
 #include <picket/status.h>
 #include <picket/summary.h>
 #include <picket/sweep.h>
+#include <picket/taper.h>
 #include <picket/tolerance.h>
 #include <picket/version.h>
 

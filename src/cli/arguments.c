@@ -217,12 +217,13 @@ static int check_extras(const pk_arguments *a) {
                        name);
   }
   bool tolerance = a->command->find == picket_tolerance_find;
-  if (a->resume && !index && !modes && !tolerance && !a->sweep.path) {
-    return pk_complain(
-        PK_EXIT_WRONG,
-        "--resume is for picket index, modes and tolerance, and for --sweep; picket %s keeps no "
-        "journal",
-        name);
+  bool taper = a->command->find == picket_taper_find;
+  if (a->resume && !index && !modes && !tolerance && !taper && !a->sweep.path) {
+    return pk_complain(PK_EXIT_WRONG,
+                       "--resume is for picket index, modes, taper and tolerance, and for --sweep; "
+                       "picket %s keeps "
+                       "no journal",
+                       name);
   }
   if (a->fields && !index && !modes) {
     return pk_complain(

@@ -70,6 +70,7 @@ void pk_bands_print(const pk_arguments *arguments, const picket_result *result);
 void pk_index_print(const pk_arguments *arguments, const picket_result *result);
 void pk_modes_print(const pk_arguments *arguments, const picket_result *result);
 void pk_match_print(const pk_arguments *arguments, const picket_result *result);
+void pk_taper_print(const pk_arguments *arguments, const picket_result *result);
 void pk_tolerance_print(const pk_arguments *arguments, const picket_result *result);
 void pk_slab_print(const pk_arguments *arguments, const picket_result *result);
 picket_status pk_check_find(picket_problem *problem, const picket_options *options,

@@ -27,7 +27,9 @@ const pk_command pk_commands[] = {
      "tolerance, and a cell or a section", picket_tolerance_find, pk_tolerance_print},
     {"match", "what a mode of a section shares with a Gaussian beam, or a mode of a second section",
      "section, light; a second file needs section", pk_match_find, pk_match_print},
-    {"taper", NULL, NULL, NULL, NULL},
+    {"taper",
+     "a row that changes along its length: each tooth, its overlap with the next, warnings",
+     "taper, and a cell or a channel", picket_taper_find, pk_taper_print},
     {"report", NULL, NULL, NULL, NULL},
     {"start", NULL, NULL, NULL, NULL},
     {NULL, NULL, NULL, NULL, NULL},
@@ -89,6 +91,9 @@ static picket_status ask(const pk_arguments *a, picket_context *context, picket_
   }
   if (!a->resume) {
     return a->command->find(problem, &a->options, out);
+  }
+  if (a->command->find == picket_taper_find) {
+    return picket_taper_find_resumable(problem, &a->options, a->resume, out);
   }
   if (a->command->find == picket_tolerance_find) {
     return picket_tolerance_find_resumable(problem, &a->options, a->resume, out);

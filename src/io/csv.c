@@ -371,6 +371,7 @@ picket_status pk_csv_write(const picket_result *result, char **out) {
       [PK_RESULT_MATCH] = write_match,
       [PK_RESULT_SUMMARY] = write_summary,
       [PK_RESULT_AIM] = pk_csv_aim,
+      [PK_RESULT_TAPER] = pk_csv_taper,
       [PK_RESULT_TOLERANCE] = pk_csv_tolerance,
       [PK_RESULT_EDGE_DERIVATIVES] = write_edge_derivatives,
       [PK_RESULT_INDEX_DERIVATIVES] = write_index_derivatives,

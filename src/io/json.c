@@ -440,6 +440,7 @@ static const writer WRITER[] = {
     [PK_RESULT_MATCH] = {"match", match_answer},
     [PK_RESULT_SUMMARY] = {"check", summary_item},
     [PK_RESULT_AIM] = {"aim", pk_json_aim},
+    [PK_RESULT_TAPER] = {"taper", pk_json_taper},
     [PK_RESULT_TOLERANCE] = {"tolerance", pk_json_tolerance},
     [PK_RESULT_EDGE_DERIVATIVES] = {"edge derivatives", edge_derivatives},
     [PK_RESULT_INDEX_DERIVATIVES] = {"index derivatives", index_derivatives},

@@ -11,7 +11,7 @@ enum {
   FORMAT = 1
 };
 
-/* Keys of a file; the last ones belong to blocks that this version knows but does not do. */
+/* Keys of a file. */
 enum {
   KEY_FORMAT,
   KEY_NAME,
@@ -26,7 +26,7 @@ enum {
   KEY_AIM,
   KEY_RULES,
   KEY_TOLERANCE,
-  KEY_LATER, /* blocks of the format that no command reads yet: any content is let through */
+  KEY_TAPER,
   KEY_COUNT
 };
 static const pk_key keys[KEY_COUNT] = {
@@ -43,7 +43,7 @@ static const pk_key keys[KEY_COUNT] = {
     [KEY_AIM] = {"aim", false},
     [KEY_RULES] = {"rules", false},
     [KEY_TOLERANCE] = {"tolerance", false},
-    [KEY_LATER] = {"taper", false},
+    [KEY_TAPER] = {"taper", false},
 };
 
 static picket_status check_format(picket_context *context, const pk_node *root,
@@ -107,6 +107,9 @@ static picket_status read_blocks(pk_reader *reader, const pk_document *document,
   }
   if (status == PICKET_OK && values[KEY_TOLERANCE]) {
     status = pk_read_tolerance(reader, document, values[KEY_TOLERANCE]);
+  }
+  if (status == PICKET_OK && values[KEY_TAPER]) {
+    status = pk_read_taper(reader, document, values[KEY_TAPER]);
   }
   if (status == PICKET_OK && values[KEY_RULES]) {
     status = pk_read_rules(reader, values[KEY_RULES]);

@@ -23,6 +23,11 @@ const char *pk_word_slab_polarization(picket_slab_polarization polarization);
 static const double PK_NM_OF_UM = 1000.0;
 static const double PK_DEGREES = 57.29577951308232088; /* of a radian */
 
+/* What the numbers of a row leave out. */
+#define PK_TAPER_LIMITS                                                                       \
+  "overlaps of neighbouring cells as if each went on for ever; what a joint loses counts as " \
+  "lost, reflection is not included; sizes and shares are of the lateral direction alone"
+
 /* What the overlap of a match leaves out. */
 #define PK_MATCH_LIMITS \
   "reflection where the two meet, of a facet too, is not included; a tilt counts as a phase"

@@ -12,10 +12,11 @@
 
 #include "base/memory.h"
 #include "study/aim_private.h"
+#include "study/feature.h"
 
 static const double MET = 0.5; /* of the accuracy asked */
 static const double NM_PER_UM = 1e3;
-static const double SLACK = 1e-9; /* of a rule: what rounding may take from a feature */
+static const double SLACK = 1e-9; /* of a bound: what rounding may take from a value on the grid */
 
 picket_status pk_aim_measure(pk_aim_search *s, int k, const double *values, double accuracy,
                              pk_measurement *out) {
@@ -81,38 +82,13 @@ picket_status pk_aim_decline(pk_aim_search *s, const char *format, ...) {
 /* --- Rules of the mask ------------------------------------------------------------------------
  */
 
-/* The smallest feature that a mask draws: of a section or a channel across and along it, for its
- * heights are those of films. NaN if there is none. */
-static double smallest_feature(const pk_problem *problem, pk_structure structure) {
-  double um = INFINITY;
-  if (structure == PK_STRUCTURE_CELL) {
-    um = problem->smallest_um;
-  } else if (structure == PK_STRUCTURE_SECTION) {
-    um = pk_geometry_smallest_along(problem->section.geometry, PK_U);
-  } else {
-    const pk_channel_block *channel = &problem->channel;
-    for (int i = 0; i < channel->slices; i++) {
-      um = fmin(um, pk_geometry_smallest_along(channel->slice[i], PK_U));
-      um = channel->slices > 1 ? fmin(um, channel->from_um[i + 1] - channel->from_um[i]) : um;
-    }
-  }
-  return isfinite(um) ? um : NAN;
-}
-
-static int respects(const pk_rules_block *rules, double smallest_um) {
-  if (rules->smallest_um == 0) {
-    return -1;
-  }
-  return isnan(smallest_um) || smallest_um >= rules->smallest_um * (1 - SLACK);
-}
-
 static picket_status judge_rules(pk_aim_search *s, const double *values, double *smallest_um,
                                  int *verdict) {
   pk_problem *problem = NULL;
   picket_status status = s->variants->make(s->variants->user, values, &problem);
   if (status == PICKET_OK) {
-    *smallest_um = smallest_feature(problem, s->question[0].structure);
-    *verdict = respects(&s->problem->rules, *smallest_um);
+    *smallest_um = pk_smallest_feature(problem, s->question[0].structure);
+    *verdict = pk_feature_respects(&s->problem->rules, *smallest_um);
   }
   pk_problem_free(problem);
   return status;

@@ -177,9 +177,8 @@ static int member_for(const pk_cell_grid *base, const picket_options *options) {
   return m;
 }
 
-/* One mode of the look on the grid of the fields. */
-static picket_status solve_mode(const pk_look *look, pk_level *level, const pk_followed *mode,
-                                picket_field **out) {
+picket_status pk_field_on(const pk_look *look, pk_level *level, const pk_followed *mode,
+                          picket_field **out) {
   pk_wave wave = {0};
   pk_character character;
   bool same = false;
@@ -248,7 +247,7 @@ picket_status pk_mode_field(const pk_problem *problem, pk_polarization polarizat
     status = open_grid(&look, options, &level);
   }
   if (status == PICKET_OK) {
-    status = solve_mode(&look, &level, &look.mode[i], out);
+    status = pk_field_on(&look, &level, &look.mode[i], out);
     pk_level_close(&level);
   }
   pk_look_clear(&look);
@@ -276,7 +275,7 @@ static bool is_of_the_point(picket_status status) {
 /* A mode that cannot be followed is left out; the others stand. */
 static picket_status take_mode(sweep *s, const pk_look *look, pk_level *level, int i) {
   picket_field *field = NULL;
-  picket_status status = solve_mode(look, level, &look->mode[i], &field);
+  picket_status status = pk_field_on(look, level, &look->mode[i], &field);
   if (status == PICKET_OK) {
     status = s->sink->take(s->sink->user, field);
     pk_mode_field_free(field);

@@ -7,7 +7,7 @@
 #include <picket/field.h>
 
 #include "operator/components.h"
-#include "study/problem.h"
+#include "study/look.h"
 
 struct picket_field {
   picket_context *context; /* held */
@@ -27,6 +27,11 @@ void pk_mode_field_free(picket_field *field); /* accepts null and half-built fie
 picket_status pk_mode_field(const pk_problem *problem, pk_polarization polarization,
                             double wavelength_um, const picket_options *options, int order,
                             picket_field **out);
+
+/* One mode of a look on a grid of the caller's. PICKET_ERROR_NUMERIC if it cannot be followed there.
+ */
+picket_status pk_field_on(const pk_look *look, pk_level *level, const pk_followed *mode,
+                          picket_field **out);
 
 /* Takes what a sweep finds; a status other than PICKET_OK ends the sweep with it. */
 typedef struct pk_field_sink {

@@ -42,6 +42,9 @@ void pk_problem_free(pk_problem *problem) {
     pk_free(context, problem->aim.part[i].vary);
   }
   clear_tolerance(context, &problem->tolerance);
+  for (int i = 0; i < PK_TAPER_CHANGES; i++) {
+    pk_free(context, problem->taper.change[i].vary);
+  }
   pk_free(context, problem);
   pk_context_release(context);
 }

@@ -11,6 +11,7 @@
 #include "operator/operator.h"
 #include "study/measured.h"
 #include "study/spread.h"
+#include "study/taper_law.h"
 
 typedef struct pk_light {
   bool given;
@@ -121,6 +122,7 @@ typedef struct pk_problem {
   pk_channel_block channel;
   pk_aim_block aim;
   pk_tolerance_block tolerance;
+  pk_taper_block taper;
   pk_rules_block rules;
 } pk_problem;
 

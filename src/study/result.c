@@ -10,6 +10,7 @@
 #include "study/index.h"
 #include "study/modes.h"
 #include "study/slab_answer.h"
+#include "study/taper.h"
 #include "study/tolerance.h"
 
 enum { FIRST_TEXTS = 16 };
@@ -169,6 +170,13 @@ static void free_tolerance(picket_context *context, int count, picket_tolerance_
   pk_free(context, answers);
 }
 
+static void free_taper(picket_context *context, int count, picket_taper_answer *answers) {
+  for (int i = 0; answers && i < count; i++) {
+    pk_taper_answer_clear(context, &answers[i]);
+  }
+  pk_free(context, answers);
+}
+
 void pk_result_free(picket_result *result) {
   if (!result) {
     return;
@@ -184,6 +192,8 @@ void pk_result_free(picket_result *result) {
   free_summary(result);
   free_aim(context, result->count, result->aim);
   free_tolerance(context, result->count, result->tolerance);
+  free_taper(context, result->count, result->taper);
+  pk_taper_cells_free(context, result->count, result->taper_cells);
   for (int i = 0; i < result->text_count; i++) {
     pk_free(context, result->texts[i]);
   }

@@ -11,6 +11,7 @@
 #include <picket/match.h>
 #include <picket/modes.h>
 #include <picket/slab.h>
+#include <picket/taper.h>
 #include <picket/tolerance.h>
 
 #include "base/context.h"
@@ -26,7 +27,8 @@ typedef enum pk_result_kind {
   PK_RESULT_INDEX_DERIVATIVES,
   PK_RESULT_SUMMARY,
   PK_RESULT_MATCH,
-  PK_RESULT_TOLERANCE
+  PK_RESULT_TOLERANCE,
+  PK_RESULT_TAPER
 } pk_result_kind;
 
 /* One line of a summary: a dotted name, and a number with a unit or a text. */
@@ -49,6 +51,8 @@ struct picket_result {
   picket_bands_answer *bands;
   picket_aim_answer *aim;
   picket_tolerance_answer *tolerance;
+  picket_taper_answer *taper;
+  struct pk_taper_cell *taper_cells; /* [count] on the way to a taper, else null */
   picket_slab_answer *slab;
   picket_modes_answer *modes;
   picket_match_answer *match;

@@ -5,7 +5,7 @@ import unittest
 import tool
 
 COMMANDS = ('check', 'edges', 'bands', 'index', 'modes', 'slab', 'match')
-LATER = ('tolerance', 'taper', 'report', 'start')
+LATER = ('tolerance', 'report', 'start')
 
 
 class CommandLine(tool.ToolTest):

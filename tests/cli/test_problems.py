@@ -38,9 +38,6 @@ class Files(tool.ToolTest):
         self.assert_refused('slab', path, says=['silicon', '633', '1200'])
         self.assert_refused('check', path, says=['silicon', '633', '1200'])
 
-    def test_blocks_of_later_commands_do_not_disturb(self):
-        self.run_tool('slab', self.write(tool.film() + 'taper: {teeth: 100}\n'))
-
 
 class StandardInput(tool.ToolTest):
     def test_the_same_as_a_file(self):
