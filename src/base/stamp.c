@@ -7,7 +7,10 @@
 
 #include "base/context.h"
 
-enum { WORD = sizeof(size_t) };
+enum {
+  WORD = sizeof(size_t),
+  MOST = 4096 /* no struct with a stamp will ever be as large: a size above is nonsense */
+};
 
 bool pk_stamp_fits(size_t stamp, size_t own) {
   return stamp % WORD == 0 && stamp > WORD && stamp <= own;
@@ -29,7 +32,7 @@ picket_status pk_stamp_take(picket_context *context, const char *what, const voi
 }
 
 void pk_stamp_give(const void *defaults, size_t own, void *out, size_t size) {
-  if (!out || size < WORD) {
+  if (!out || size < WORD || size > MOST) {
     return;
   }
   memset(out, 0, size);

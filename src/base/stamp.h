@@ -20,7 +20,8 @@ picket_status pk_stamp_take(picket_context *context, const char *what, const voi
                             size_t size);
 
 /* Writes the beginning of `defaults`, which has `own` bytes, into a caller's struct of `size` bytes
- * stamped so; what the caller has beyond it is zeroed. Nothing for null or no room for a stamp. */
+ * stamped so; what the caller has beyond it is zeroed. Nothing for null, no room for a stamp,
+ * or more than any such struct has. */
 void pk_stamp_give(const void *defaults, size_t own, void *out, size_t size);
 
 #endif
