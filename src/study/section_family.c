@@ -287,6 +287,9 @@ static picket_status refine(run *r, picket_result *result) {
     if (worst <= 1) {
       return PICKET_OK;
     }
+    if (walls_matter(r, MEMBERS_SMOOTH[0][0]) > 1) { /* finer grids do not help */
+      break;
+    }
   }
   return mark_partial(r, worst, result);
 }
