@@ -64,6 +64,28 @@ PICKET_EXPORT int picket_edges_count(const picket_result *result);
 PICKET_EXPORT picket_status picket_edges_get(const picket_result *result, int i,
                                              picket_edges_answer *out);
 
+/* What a two-dimensional model of a channel says of the long edge of its first stop band. */
+typedef struct picket_edge_comparison {
+  int answer;               /* number of the answer it stands beside */
+  const char *method;       /* static text */
+  picket_quantity long_um;  /* NaN with a note where the model has no such edge */
+  picket_quantity error_um; /* minus the edge of the channel */
+} picket_edge_comparison;
+
+/* As picket_edges_find for a channel, with the models in use beside each answer: the cell seen from
+ * above with slab indices, and the section of the homogenised row.
+ * PICKET_ERROR_INPUT also for a problem with a cell. */
+PICKET_EXPORT picket_status picket_edges_compare(picket_problem *problem,
+                                                 const picket_options *options,
+                                                 picket_result **out);
+
+/* Comparisons in the result of picket_edges_compare; 0 for another result. */
+PICKET_EXPORT int picket_edges_comparison_count(const picket_result *result);
+
+/* PICKET_ERROR_ARGUMENT if i or the kind of result is wrong; `out` is then untouched. */
+PICKET_EXPORT picket_status picket_edges_comparison_get(const picket_result *result, int i,
+                                                        picket_edge_comparison *out);
+
 #ifdef __cplusplus
 }
 #endif

@@ -16,6 +16,7 @@ typedef enum option_kind {
   OPTION_SET,
   OPTION_SWEEP,
   OPTION_MATCH, /* of match_option.c */
+  OPTION_COMPARE,
   OPTION_QUIET,
   OPTION_VERBOSE,
   OPTION_HELP,
@@ -35,6 +36,7 @@ static const option OPTIONS[] = {
     {"csv", OPTION_CSV, "a file name"},
     {"set", OPTION_SET, "KEY=VALUE"},
     {"resume", OPTION_RESUME, "a file name"},
+    {"compare", OPTION_COMPARE, NULL},
     {"quiet", OPTION_QUIET, NULL},
     {"verbose", OPTION_VERBOSE, NULL},
     {"help", OPTION_HELP, NULL},
@@ -124,6 +126,7 @@ static int set_file(const char **out, const char *name, const char *value) {
 static int apply(pk_arguments *a, const option *o, const char *value) {
   switch (o->kind) {
     case OPTION_JSON: a->json = true; break;
+    case OPTION_COMPARE: a->compare = true; break;
     case OPTION_QUIET: a->quiet = true; break;
     case OPTION_VERBOSE: a->verbose = true; break;
     case OPTION_HELP: a->help = true; break;
@@ -218,6 +221,9 @@ static int check_extras(const pk_arguments *a) {
   }
   bool tolerance = a->command->find == picket_tolerance_find;
   bool taper = a->command->find == picket_taper_find;
+  if (a->compare && (a->command->find != picket_edges_find || a->sweep.path)) {
+    return pk_complain(PK_EXIT_WRONG, "--compare is for picket edges of a channel, without --sweep");
+  }
   if (a->resume && !index && !modes && !tolerance && !taper && !a->sweep.path) {
     return pk_complain(PK_EXIT_WRONG,
                        "--resume is for picket index, modes, taper and tolerance, and for --sweep; "

@@ -41,6 +41,7 @@ typedef struct pk_arguments {
   const pk_command *command; /* null with --version and --help alone */
   const char *file;          /* null until given; "-" is standard input */
   bool json, quiet, verbose, help, version;
+  bool compare;       /* a channel with its two-dimensional models */
   const char *csv;    /* or null */
   const char *resume; /* a journal, or null */
   const char *fields; /* an HDF5 file of mode fields, or null */

@@ -132,12 +132,30 @@ static void print_sweep(const picket_result *result, pk_notes *notes) {
   }
 }
 
+/* What the two-dimensional models of a channel say, beside the answer. */
+static void print_comparisons(const picket_result *result, int answer, pk_notes *notes) {
+  pk_text_table t = {.columns = 3};
+  picket_edge_comparison c;
+  pk_table_cell(&t, "model");
+  pk_table_cell(&t, "long edge, nm");
+  pk_table_cell(&t, "off by, nm");
+  for (int i = 0; picket_edges_comparison_get(result, i, &c) == PICKET_OK; i++) {
+    if (c.answer == answer) {
+      pk_table_cell(&t, "%s", c.method);
+      pk_table_quantity(&t, notes, c.long_um, NM_PER_UM);
+      pk_table_quantity(&t, notes, c.error_um, NM_PER_UM);
+    }
+  }
+  pk_table_print(&t);
+}
+
 static void print_answers(const picket_result *result, pk_notes *notes) {
   picket_edges_answer answer;
   for (int i = 0; picket_edges_get(result, i, &answer) == PICKET_OK; i++) {
     print_operating(&answer.operating, picket_polarization_name(answer.polarization), notes);
     print_stop_bands(&answer, notes);
     print_estimate(&answer.estimate, notes);
+    print_comparisons(result, i, notes);
     printf("\n");
   }
 }

@@ -89,6 +89,9 @@ static picket_status ask(const pk_arguments *a, picket_context *context, picket_
   if (a->sweep.path) {
     return pk_sweep_ask(a, problem, out);
   }
+  if (a->compare && a->command->find == picket_edges_find) {
+    return picket_edges_compare(problem, &a->options, out);
+  }
   if (!a->resume) {
     return a->command->find(problem, &a->options, out);
   }

@@ -199,6 +199,7 @@ void pk_result_free(picket_result *result) {
   }
   pk_free(context, result->texts);
   pk_free(context, result->name);
+  pk_free(context, result->comparison);
   pk_free(context, result->sweep_path);
   pk_free(context, result->sweep_value);
   pk_free(context, result->shortfall);

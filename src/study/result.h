@@ -48,6 +48,8 @@ struct picket_result {
   char *shortfall;            /* or null */
   int count;                  /* answers; for a summary: items */
   picket_edges_answer *edges; /* arrays inside the answers are owned by the result */
+  int comparison_count;
+  picket_edge_comparison *comparison; /* or null */
   picket_bands_answer *bands;
   picket_aim_answer *aim;
   picket_tolerance_answer *tolerance;
