@@ -147,23 +147,6 @@ static json_t *estimate(const picket_edge_estimate *e) {
   return finish(object, good);
 }
 
-/* What a channel's models say of an answer. */
-static json_t *comparisons(const picket_result *result, int answer) {
-  json_t *list = json_array();
-  bool good = list != NULL;
-  for (int i = 0; good && i < result->comparison_count; i++) {
-    const picket_edge_comparison *c = &result->comparison[i];
-    if (c->answer == answer) {
-      json_t *object = json_object();
-      bool filled = put(object, "method", text(c->method)) &&
-                    put(object, "long_nm", quantity(c->long_um, PK_NM_OF_UM)) &&
-                    put(object, "error_nm", quantity(c->error_um, PK_NM_OF_UM));
-      good = json_array_append_new(list, finish(object, filled)) == 0;
-    }
-  }
-  return finish(list, good);
-}
-
 static json_t *edges_answer(const void *user, int i) {
   const picket_result *result = user;
   const picket_edges_answer *answer = result->edges + i;
@@ -172,7 +155,7 @@ static json_t *edges_answer(const void *user, int i) {
               put(object, "stop_bands", array(answer->band_count, stop_band, answer->bands)) &&
               put(object, "operating", operating(&answer->operating)) &&
               put(object, "estimate", estimate(&answer->estimate)) &&
-              (!result->comparison || put(object, "compare", comparisons(result, i))) &&
+              (!result->comparison || put(object, "compare", pk_json_comparisons(result, i))) &&
               failure(object, answer->failed, answer->note);
   return finish(object, good);
 }
