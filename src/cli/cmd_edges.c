@@ -167,6 +167,8 @@ void pk_edges_print(const pk_arguments *arguments, const picket_result *result) 
   } else {
     print_answers(result, &seen);
   }
+  picket_edges_answer first = {.polarization = PICKET_EY};
+  (void)picket_edges_get(result, 0, &first);
   pk_notes_print(&seen);
-  pk_cautions_print(arguments);
+  pk_cautions_print_of(arguments, first.polarization);
 }

@@ -143,6 +143,8 @@ void pk_index_print(const pk_arguments *arguments, const picket_result *result) 
       printf("\n");
     }
   }
+  picket_index_answer first = {.polarization = PICKET_EY};
+  (void)picket_index_get(result, 0, &first);
   pk_notes_print(&seen);
-  pk_cautions_print(arguments);
+  pk_cautions_print_of(arguments, first.polarization);
 }

@@ -164,3 +164,13 @@ void pk_cautions_print(const pk_arguments *arguments) {
         "not in it.\nThe foundry's design rules and measured data come first.\n");
   }
 }
+
+void pk_cautions_print_of(const pk_arguments *arguments, picket_polarization polarization) {
+  if (polarization < PICKET_TM_LIKE) {
+    pk_cautions_print(arguments);
+  } else if (!arguments->quiet) {
+    printf(
+        "Three-dimensional model with ideal walls: side-wall slope, roughness and rounded corners "
+        "are not in it.\nThe foundry's design rules and measured data come first.\n");
+  }
+}

@@ -47,5 +47,7 @@ void pk_table_print(pk_text_table *table);
 
 /* What a reader must know before using the numbers of a cell. */
 void pk_cautions_print(const pk_arguments *arguments);
+/* The same of a cell or a channel, which the polarization of its answers tells. */
+void pk_cautions_print_of(const pk_arguments *arguments, picket_polarization polarization);
 
 #endif
