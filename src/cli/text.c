@@ -159,9 +159,9 @@ void pk_table_print(pk_text_table *table) {
 void pk_cautions_print(const pk_arguments *arguments) {
   if (!arguments->quiet) {
     printf(
-        "Two-dimensional model with ideal walls: side-wall slope, roughness and rounded corners "
-        "are "
-        "not in it.\nThe foundry's design rules and measured data come first.\n");
+        "Two-dimensional model with ideal walls: roughness and side-wall slope are not in it, "
+        "rounded corners only as drawn.\nThe foundry's design rules and measured data come "
+        "first.\n");
   }
 }
 
@@ -170,7 +170,8 @@ void pk_cautions_print_of(const pk_arguments *arguments, picket_polarization pol
     pk_cautions_print(arguments);
   } else if (!arguments->quiet) {
     printf(
-        "Three-dimensional model with ideal walls: side-wall slope, roughness and rounded corners "
-        "are not in it.\nThe foundry's design rules and measured data come first.\n");
+        "Three-dimensional model with ideal walls: roughness is not in it, side-wall slope and "
+        "rounded corners only as drawn.\nThe foundry's design rules and measured data come "
+        "first.\n");
   }
 }
