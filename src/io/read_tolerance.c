@@ -305,6 +305,7 @@ picket_status pk_read_tolerance(pk_reader *reader, const pk_document *document,
   if (status == PICKET_OK && values[KEY_FAMILY]) {
     status = pk_read_choice(reader->context, values[KEY_FAMILY], families, 3, &family);
   }
+  block->family_given = values[KEY_FAMILY] != NULL;
   block->wanted[0] = family != 1;
   block->wanted[1] = family != 0;
   return status;

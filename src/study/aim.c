@@ -254,34 +254,13 @@ static picket_status ask(const pk_problem *problem, pk_question *question) {
   return PICKET_OK;
 }
 
-/* The families to answer for, in the order of answers: of a cell and, unless the aim names them, of
- * a channel those of the polarizations of light. */
-static int list_families(const pk_problem *problem, pk_structure structure, pk_family out[2]) {
-  const bool *light = problem->light.wanted, *named = problem->aim.wanted;
-  bool by_light = structure == PK_STRUCTURE_CHANNEL && !problem->aim.family_given;
-  int count = 0;
-  if (structure == PK_STRUCTURE_CELL) {
-    for (int p = 0; p < 2; p++) {
-      if (light[p]) {
-        out[count++] = p == PK_EY ? PK_FAMILY_EY : PK_FAMILY_HY;
-      }
-    }
-    return count;
-  }
-  if (by_light ? light[PK_HY] : named[0]) {
-    out[count++] = PK_FAMILY_TE_LIKE;
-  }
-  if (by_light ? light[PK_EY] : named[1]) {
-    out[count++] = PK_FAMILY_TM_LIKE;
-  }
-  return count;
-}
-
 static picket_status all_families(const pk_problem *problem, const pk_variants *variants,
                                   const double *start, const picket_options *options,
                                   const pk_question *question, picket_result *result) {
   pk_family family[2];
-  int count = list_families(problem, question[0].structure, family);
+  const pk_aim_block *aim = &problem->aim;
+  int count =
+      pk_question_families(problem, question[0].structure, aim->family_given, aim->wanted, family);
   picket_status status = PICKET_OK;
   for (int f = 0; f < count && status == PICKET_OK; f++) {
     pk_aim_search s = {.problem = problem,

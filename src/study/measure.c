@@ -92,6 +92,28 @@ picket_status pk_question_structure(const pk_problem *problem, pk_measured what,
   return fail_structure(problem, what, place);
 }
 
+int pk_question_families(const pk_problem *problem, pk_structure structure, bool given,
+                         const bool wanted[2], pk_family out[2]) {
+  const bool *light = problem->light.wanted;
+  bool by_light = structure == PK_STRUCTURE_CHANNEL && !given;
+  int count = 0;
+  if (structure == PK_STRUCTURE_CELL) {
+    for (int p = 0; p < 2; p++) {
+      if (light[p]) {
+        out[count++] = p == PK_EY ? PK_FAMILY_EY : PK_FAMILY_HY;
+      }
+    }
+    return count;
+  }
+  if (by_light ? light[PK_HY] : wanted[0]) {
+    out[count++] = PK_FAMILY_TE_LIKE;
+  }
+  if (by_light ? light[PK_EY] : wanted[1]) {
+    out[count++] = PK_FAMILY_TM_LIKE;
+  }
+  return count;
+}
+
 void pk_lit_make(const pk_problem *problem, double wavelength_um, int polarization, pk_lit *out) {
   out->problem = *problem;
   out->wavelength_um = wavelength_um;

@@ -45,6 +45,12 @@ typedef struct pk_question {
 picket_status pk_question_structure(const pk_problem *problem, pk_measured what, const char *path,
                                     pk_place place, pk_structure *out);
 
+/* The families to answer for, in the order of answers, with their number: of a cell and, unless the
+ * block names some (`given`), of a channel those of the polarizations of light; else those that are
+ * wanted, te-like and tm-like. */
+int pk_question_families(const pk_problem *problem, pk_structure structure, bool given,
+                         const bool wanted[2], pk_family out[2]);
+
 /* Which mode it was. All zeros: nothing is known, and the first measurement decides. */
 typedef struct pk_measure_memory {
   bool known;

@@ -95,8 +95,9 @@ typedef struct pk_tolerance_block {
   double least, most; /* required of it; infinite where nothing is */
   pk_place place;     /* of the quantity */
   int samples, seed;
-  int direct;     /* most samples that are solved directly */
-  bool wanted[2]; /* families of a section or a channel: te-like, tm-like */
+  int direct;        /* most samples that are solved directly */
+  bool family_given; /* else a channel's families are those of light */
+  bool wanted[2];    /* families of a section or a channel: te-like, tm-like */
 } pk_tolerance_block;
 
 /* What a mask allows. */

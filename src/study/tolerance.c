@@ -189,15 +189,15 @@ static picket_status make_question(const pk_problem *problem, pk_question *out) 
 
 static picket_status all_families(const pk_problem *problem, const pk_spreading *spreading,
                                   pk_direct *direct, picket_result *result) {
-  bool cell = direct->question.structure == PK_STRUCTURE_CELL;
+  const pk_tolerance_block *block = &problem->tolerance;
+  pk_family family[2];
+  int count = pk_question_families(problem, direct->question.structure, block->family_given,
+                                   block->wanted, family);
   picket_status status = PICKET_OK;
-  for (int f = 0; f < 2 && status == PICKET_OK; f++) {
-    if (!(cell ? problem->light.wanted[f] : problem->tolerance.wanted[f])) {
-      continue;
-    }
-    direct->question.family = (pk_family)(cell ? PK_FAMILY_EY + f : PK_FAMILY_TE_LIKE + f);
+  for (int f = 0; f < count && status == PICKET_OK; f++) {
+    direct->question.family = family[f];
     pk_tolerance_study s = {.problem = problem,
-                            .block = &problem->tolerance,
+                            .block = block,
                             .spreading = spreading,
                             .direct = direct,
                             .result = result,

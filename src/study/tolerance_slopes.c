@@ -60,37 +60,43 @@ picket_status pk_tolerance_ask_slopes(pk_tolerance_study *s) {
   return status;
 }
 
-/* Differences of what was found on both sides; `centre` is the value between, for values. */
-static picket_quantity second_of(const pk_tolerance_study *s, int i, picket_quantity middle) {
-  picket_quantity at[PK_SENSITIVITY_TASKS];
-  double centre = 0, step = outer_step(s, i, &centre), off = 0;
+/* What can be differenced at the centre: `inner` and `outer` are D(H/2) and D(H). False where there
+ * is but one difference. */
+static bool differences(const pk_tolerance_study *s, int i, const double at[PK_SENSITIVITY_TASKS],
+                        double *inner, double *outer) {
+  double centre = 0, step = outer_step(s, i, &centre), middle = s->answer->nominal.value;
+  double wide = at[OUTER_UP] + at[OUTER_DOWN], close = at[INNER_UP] + at[INNER_DOWN];
+  if (is_analytic(s)) {
+    *outer = (at[OUTER_UP] - at[OUTER_DOWN]) / (2 * step);
+    *inner = (at[INNER_UP] - at[INNER_DOWN]) / step;
+    return true;
+  }
+  if (centre == s->spreading->start[i]) {
+    *outer = (wide - 2 * middle) / (step * step);
+    *inner = 4 * (close - 2 * middle) / (step * step);
+    return true;
+  }
+  *outer = *inner = (wide - close) / (0.75 * step * step);
+  return false;
+}
+
+static picket_quantity second_of(const pk_tolerance_study *s, int i) {
+  double at[PK_SENSITIVITY_TASKS] = {0}, off = 0, inner = NAN, outer = NAN;
   for (int k = OUTER_UP; k < PK_SENSITIVITY_TASKS; k++) {
     const pk_direct_answer *a = pk_tolerance_answered(s, tasks_of(s, i)[k]);
-    at[k] = a->q;
     if (!isfinite(a->q.value)) {
-      return a->q;
+      return (picket_quantity){NAN, NAN, a->q.note};
     }
-    off = fmax(off, a->q.uncertainty / (isfinite(a->scale) ? a->scale : fabs(a->q.value)));
+    at[k] = a->q.value;
+    off = fmax(off, a->q.uncertainty / (is_analytic(s) ? fabs(a->q.value) : a->scale));
   }
-  double outer, inner;
-  if (is_analytic(s)) {
-    outer = (at[OUTER_UP].value - at[OUTER_DOWN].value) / (2 * step);
-    inner = (at[INNER_UP].value - at[INNER_DOWN].value) / step;
-  } else if (centre == s->spreading->start[i]) {
-    outer = (at[OUTER_UP].value - 2 * middle.value + at[OUTER_DOWN].value) / (step * step);
-    inner = 4 * (at[INNER_UP].value - 2 * middle.value + at[INNER_DOWN].value) / (step * step);
-  } else { /* no value in the middle: what both say together, without the better one */
-    outer = inner =
-        (at[OUTER_UP].value - at[INNER_UP].value - at[INNER_DOWN].value + at[OUTER_DOWN].value) /
-        (0.75 * step * step);
-  }
+  bool twice = differences(s, i, at, &inner, &outer);
   double value = (4 * inner - outer) / 3;
-  picket_quantity q = {value, fabs(inner - value) + off * fabs(value), NULL};
-  if (!(isfinite(q.uncertainty)) || (inner == outer && !is_analytic(s))) {
-    q.uncertainty = NAN;
-    q.note = "the bar of a second derivative at the end of a range is not known";
-  }
-  return q;
+  double bar = twice ? fabs(inner - value) + off * fabs(value) : NAN;
+  return (picket_quantity){value, isfinite(bar) ? bar : NAN,
+                           isfinite(bar) ? NULL
+                           : twice       ? "what was differenced has no bar"
+                                   : "at the end of a range there is but one second difference"};
 }
 
 /* By what its path says it is. */
@@ -123,7 +129,7 @@ static picket_status fill(pk_tolerance_study *s, int i, picket_tolerance_sensiti
       .to = spread->to,
       .per_unit = first->q,
       .per_unit_way = way_of(first->way),
-      .second_per_unit2 = second_of(s, i, s->answer->nominal)};
+      .second_per_unit2 = second_of(s, i)};
   return out->vary && (out->group || !spread->group) ? PICKET_OK : PICKET_ERROR_MEMORY;
 }
 
