@@ -8,6 +8,10 @@
 #include <math.h>
 #include <string.h>
 
+/* Member 2 of the family then has steps of a sixth of the pitch, up to which its law holds
+ * (channel.h). */
+static const double STEP_PER_PITCH = 1.0 / 3;
+
 picket_polarization pk_channel_word(pk_polarization polarization) {
   return polarization == PK_HY ? PICKET_TE_LIKE : PICKET_TM_LIKE;
 }
@@ -49,7 +53,9 @@ picket_status pk_channel_survey_lay(const pk_channel_survey *s, double index, do
                                     bool closed, double accuracy, pk_end outer, pk_axis *x,
                                     pk_axis *y) {
   const bool te = s->polarization == PK_HY;
+  const pk_channel_block *channel = &s->problem->channel;
   const pk_section_wish wish = {
+      .step = channel->slices > 1 ? STEP_PER_PITCH * channel->pitch_um : 0,
       .index = index,
       .reach = reach,
       .closed = closed,

@@ -408,6 +408,7 @@ static picket_status lay_axis(const pk_section_survey *s, const pk_section_wish 
     double size = fmin(block->high_um[0] - block->low_um[0], block->high_um[1] - block->low_um[1]);
     w.step = fmin(w.step, size / STEPS_PER_SHAPE);
   }
+  w.step = wish->step > 0 ? fmin(w.step, wish->step) : w.step;
   place_ends(s, wish, axis, &w);
   double *chosen = PK_NEW(context, count + 2, double);
   if (chosen) {

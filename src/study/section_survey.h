@@ -48,6 +48,7 @@ typedef struct pk_section_wish {
   double accuracy; /* of the absorbing layers */
   pk_end outer;    /* what stands in for infinity */
   pk_end plane[2]; /* what the mirror planes are, where there are any */
+  double step;     /* largest spacing at the shapes besides; 0: as the wavelength wants */
 } pk_section_wish;
 
 picket_status pk_section_survey_lay(const pk_section_survey *survey, const pk_section_wish *wish,
