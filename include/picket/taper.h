@@ -37,7 +37,7 @@ typedef enum picket_taper_warning {
   PICKET_TAPER_ABRUPT = 16        /* towards the next cell `adiabatic` is 1 or more */
 } picket_taper_warning;
 
-/* The words of one warning: "stop band", "past the stop band", "radiating", "small feature",
+/* The words of one warning: "stop-band", "past-band", "radiating", "small-feature",
  * "abrupt"; "unknown" for anything else. Static text. */
 PICKET_EXPORT const char *picket_taper_warning_name(picket_taper_warning warning);
 
@@ -45,7 +45,7 @@ PICKET_EXPORT const char *picket_taper_warning_name(picket_taper_warning warning
  *
  * Fields are compared at the planes z = ±pitch/2 of the cells, where one ends and the next begins
  * (in the middle of the gap if the tooth stands in the middle of its cell). Numbers made of them
- * come from two grids; their bars are the difference of the two. They are missing, and say why, for
+ * come from two grids; their bars are twice the difference. They are missing, and say why, for
  * channels, inside a stop band and where no mode was found. */
 typedef struct picket_taper_tooth {
   int number;      /* from 1 */
@@ -61,7 +61,9 @@ typedef struct picket_taper_tooth {
   picket_quantity mode_size_um; /* 4σ of the power flow across the guide; of a Gaussian beam its
                                    diameter at 1/e² */
   picket_quantity overlap_next; /* share of the power that the mode of the next cell takes over */
-  picket_quantity fibre_share;  /* share that the mode has in common with the fibre's beam */
+  picket_quantity reflection_next; /* share that its own mode takes back, were there only the two
+                                      modes */
+  picket_quantity fibre_share;     /* share that the mode has in common with the fibre's beam */
   double next_index; /* of what the mode couples to first: the next guided mode of its symmetry
                         (from a coarse grid) or the denser open side; NaN if there is neither */
   double adiabatic;  /* how fast the mode changes its size towards the next cell, as a part of what
@@ -93,11 +95,16 @@ typedef struct picket_taper_answer {
  *
  *   η = |∫(E_a × H_b*)_z dx ∫(E_b × H_a*)_z dx| / |∫(E_a × H_a*)_z dx ∫(E_b × H_b*)_z dx|,
  *
- * is 1 for equal cells. Not included: reflection at the joint, light that radiates there and is
- * caught again, and what two joints do together. So the product of the shares is what passes if
- * whatever a joint loses stays lost; for a slow row it is too low, and where the group index rises
- * near a stop band reflection makes it too high. A cell is two-dimensional: sizes and shares,
- * that with the fibre too, speak of the lateral direction alone.
+ * is 1 for equal cells; it does not count what the joint reflects,
+ *
+ *   R = |∫(E_b × H_a - E_a × H_b)_z dx|² / |∫(E_a* × H_b + E_b × H_a*)_z dx|²,
+ *
+ * the wave of a and its way back against the wave of b: exact for a stack, an estimate elsewhere.
+ * Not included: light that radiates at a joint and is caught again, and what two joints do
+ * together. So the product of the shares is what passes if whatever a joint loses stays lost and
+ * nothing comes back; for a slow row it is too low, and where reflections add up, as near a stop
+ * band, too high. A cell is two-dimensional: sizes and shares, that with the fibre too, speak of
+ * the lateral direction alone.
  *
  * The criterion (J. D. Love, W. M. Henry, W. J. Stewart, R. J. Black, S. Lacroix and F. Gonthier,
  * IEE Proc. J 138, 343 (1991): the length over which the guide tapers must exceed the beat length

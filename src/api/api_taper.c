@@ -95,10 +95,10 @@ const char *picket_taper_law_name(picket_taper_law law) {
 
 const char *picket_taper_warning_name(picket_taper_warning warning) {
   switch (warning) {
-    case PICKET_TAPER_STOP_BAND: return "stop band";
-    case PICKET_TAPER_PAST_BAND: return "past the stop band";
+    case PICKET_TAPER_STOP_BAND: return "stop-band";
+    case PICKET_TAPER_PAST_BAND: return "past-band";
     case PICKET_TAPER_RADIATING: return "radiating";
-    case PICKET_TAPER_SMALL_FEATURE: return "small feature";
+    case PICKET_TAPER_SMALL_FEATURE: return "small-feature";
     case PICKET_TAPER_ABRUPT: return "abrupt";
   }
   return "unknown";

@@ -5,7 +5,7 @@
 #include "cli/text.h"
 
 static const double NM_PER_UM = 1000;
-enum { FIXED_COLUMNS = 10, WARNING_BYTES = 120 };
+enum { FIXED_COLUMNS = 11, WARNING_BYTES = 120 };
 
 static void print_change(const picket_taper_change *change) {
   printf("  %s from %.10g to %.10g, %s", change->vary, change->from, change->to,
@@ -47,6 +47,7 @@ static void put_head(pk_text_table *t, const picket_taper_answer *answer) {
   pk_table_cell(t, "clearance, nm");
   pk_table_cell(t, "mode size, um");
   pk_table_cell(t, "overlap with next");
+  pk_table_cell(t, "reflection");
   if (isfinite(answer->fibre_um)) {
     pk_table_cell(t, "share with fibre");
   }
@@ -69,8 +70,10 @@ static void put_tooth(pk_text_table *t, pk_notes *notes, const picket_taper_answ
   pk_table_quantity(t, notes, tooth->mode_size_um, 1);
   if (last) {
     pk_table_cell(t, "-");
+    pk_table_cell(t, "-");
   } else {
     pk_table_quantity(t, notes, tooth->overlap_next, 1);
+    put_number(t, tooth->reflection_next.value);
   }
   if (isfinite(answer->fibre_um)) {
     pk_table_quantity(t, notes, tooth->fibre_share, 1);
@@ -126,10 +129,12 @@ static void print_answer(const picket_taper_answer *answer, pk_notes *notes) {
 static void print_meaning(void) {
   printf(
       "Overlaps: of the modes of neighbouring cells, each as if its cell went on for ever, where "
-      "the cells meet.\nTheir product is what passes if whatever a joint loses stays lost; "
-      "reflection is not in it. Sizes (4 sigma of\nthe power flow) and shares speak of the lateral "
-      "direction alone. Adiabatic: |d size/dz| over what the\nlength-scale criterion of Love et "
-      "al., IEE Proc. J 138, 343 (1991), allows; it holds below 1.\n");
+      "the cells meet.\nTheir product is what passes if whatever a joint loses stays lost; what it "
+      "reflects stands beside it.\nSizes (4 sigma of the power flow) and shares speak of the "
+      "lateral "
+      "direction alone. Adiabatic: how fast\nthe size changes, over what the length-scale "
+      "criterion "
+      "of Love et al., IEE Proc. J 138, 343 (1991),\nallows; it holds below 1.\n");
 }
 
 void pk_taper_print(const pk_arguments *arguments, const picket_result *result) {

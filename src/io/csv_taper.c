@@ -6,7 +6,7 @@
 
 enum { WARNING_BYTES = 120 };
 
-/* "stop band; small feature" */
+/* "stop-band; small-feature" */
 static void put_warnings(sheet *s, int warnings) {
   char text[WARNING_BYTES] = "";
   size_t used = 0;
@@ -35,6 +35,7 @@ static void write_tooth(sheet *s, const picket_taper_answer *answer, const picke
   put_text(s, known ? picket_regime_name(t->regime) : NULL);
   put_quantity(s, t->mode_size_um, 1);
   put_quantity(s, t->overlap_next, 1);
+  put_quantity(s, t->reflection_next, 1);
   put_quantity(s, t->fibre_share, 1);
   put_number(s, t->next_index);
   put_number(s, t->adiabatic);
@@ -61,6 +62,8 @@ void pk_csv_taper(sheet *s, const picket_result *result) {
                                      "mode_size_uncertainty_um",
                                      "overlap_next",
                                      "overlap_next_uncertainty",
+                                     "reflection_next",
+                                     "reflection_next_uncertainty",
                                      "fibre_share",
                                      "fibre_share_uncertainty",
                                      "next_index",

@@ -60,6 +60,7 @@ static struct json_t *tooth_of(const picket_taper_tooth *t) {
       pk_json_put(object, "regime", pk_json_text(known ? picket_regime_name(t->regime) : NULL)) &&
       pk_json_put(object, "mode_size_um", pk_json_quantity(t->mode_size_um, 1)) &&
       pk_json_put(object, "overlap_next", pk_json_quantity(t->overlap_next, 1)) &&
+      pk_json_put(object, "reflection_next", pk_json_quantity(t->reflection_next, 1)) &&
       pk_json_put(object, "fibre_share", pk_json_quantity(t->fibre_share, 1)) &&
       pk_json_put(object, "next_index", pk_json_number(t->next_index)) &&
       pk_json_put(object, "adiabatic", pk_json_number(t->adiabatic)) &&

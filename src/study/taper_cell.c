@@ -312,8 +312,12 @@ void pk_taper_cell_clear(picket_context *context, pk_taper_cell *cell) {
   }
 }
 
+/* The error of the finer grid is at most the difference when it falls in first order, as next to
+ * singular corners; twice that also covers what rounding adds to both. */
+static const double BAR = 2;
+
 picket_quantity pk_taper_pair(double coarse, double fine, const char *missing) {
   bool known = isfinite(coarse) && isfinite(fine);
-  return known ? (picket_quantity){fine, fabs(fine - coarse), NULL}
+  return known ? (picket_quantity){fine, BAR * fabs(fine - coarse), NULL}
                : (picket_quantity){NAN, NAN, missing};
 }

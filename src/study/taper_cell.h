@@ -41,7 +41,7 @@ void pk_taper_cell_write(const pk_taper_cell *cell, pk_record *record);
 picket_status pk_taper_cell_read(picket_result *result, pk_record_reader *reader,
                                  pk_taper_cell *cell);
 
-/* The two grids of a number as one: the finer one's value, their difference as bar. */
+/* The two grids of a number as one: the finer one's value, twice their difference as bar. */
 picket_quantity pk_taper_pair(double coarse, double fine, const char *missing);
 
 #endif

@@ -3,7 +3,12 @@
  *   η = |∫E_a h_b* ∫E_b h_a*| / |∫E_a h_a* ∫E_b h_b*|
  *
  * is the overlap of section/overlap.h (A. W. Snyder and J. D. Love, Optical Waveguide Theory
- * (1983), ch. 20 and 31) in one dimension: ratios of impedance, which reflect, drop out.
+ * (1983), ch. 20 and 31) in one dimension: ratios of impedance, which reflect, drop out. What
+ * reflects is found from the power form q(F, G) = ∫(E_F h_G* + E_G* h_F), in which the waves (E, h)
+ * and (E*, -h*) that a lossless guide carries forth and back are orthogonal: a + r a' = t b has no
+ * part along b', so
+ *   r = ∫(E_b h_a - E_a h_b) / ∫(E_a* h_b + E_b h_a*),
+ * which is exact where nothing varies across.
  *
  * Between its places a field is a polynomial through the four nearest ones, none of which lies
  * beyond an interface: there h has a kink, and E may have a jump, of which the place on the
@@ -166,7 +171,17 @@ static int merge(const pk_plane *a, const pk_plane *b, double *x) {
 
 typedef struct products {
   double complex aa, ab, ba, bb; /* ∫E_a h_a*, ∫E_a h_b*, … */
+  double complex differ;         /* ∫(E_b h_a - E_a h_b) */
 } products;
+
+static void add_place(products *sum, double dx, double complex ea, double complex ha,
+                      double complex eb, double complex hb) {
+  sum->aa += dx * ea * conj(ha);
+  sum->ab += dx * ea * conj(hb);
+  sum->ba += dx * eb * conj(ha);
+  sum->bb += dx * eb * conj(hb);
+  sum->differ += dx * (eb * ha - ea * hb);
+}
 
 static void add_interval(walker *a, walker *b, double low, double high, products *sum) {
   for (int n = 0; n < NODES; n++) {
@@ -178,10 +193,7 @@ static void add_interval(walker *a, walker *b, double low, double high, products
     if (walk(b, x)) {
       values_at(b, x, &eb, &hb);
     }
-    sum->aa += dx * ea * conj(ha);
-    sum->ab += dx * ea * conj(hb);
-    sum->ba += dx * eb * conj(ha);
-    sum->bb += dx * eb * conj(hb);
+    add_place(sum, dx, ea, ha, eb, hb);
   }
 }
 
@@ -190,13 +202,8 @@ static bool is_point(const pk_plane *plane) {
   return plane->count == 1;
 }
 
-picket_status pk_plane_overlap(picket_context *context, const pk_plane *a, const pk_plane *b,
-                               double *share) {
-  products sum = {0};
-  if (is_point(a) || is_point(b)) {
-    *share = is_point(a) && is_point(b) ? 1 : NAN;
-    return PICKET_OK;
-  }
+static picket_status add_all(picket_context *context, const pk_plane *a, const pk_plane *b,
+                             products *sum) {
   double *x = PK_NEW(context, (size_t)a->count + (size_t)b->count, double);
   if (!x) {
     return PICKET_ERROR_MEMORY;
@@ -204,12 +211,28 @@ picket_status pk_plane_overlap(picket_context *context, const pk_plane *a, const
   walker on_a = {a, 0}, on_b = {b, 0};
   int count = merge(a, b, x);
   for (int i = 0; i + 1 < count; i++) {
-    add_interval(&on_a, &on_b, x[i], x[i + 1], &sum);
+    add_interval(&on_a, &on_b, x[i], x[i + 1], sum);
   }
   pk_free(context, x);
-  double both = cabs(sum.aa * sum.bb);
-  *share = both > 0 ? cabs(sum.ab * sum.ba) / both : NAN;
   return PICKET_OK;
+}
+
+picket_status pk_plane_meet(picket_context *context, const pk_plane *a, const pk_plane *b,
+                            pk_joint *out) {
+  products sum = {0};
+  picket_status status = PICKET_OK;
+  if (is_point(a) && is_point(b)) {
+    add_place(&sum, 1, a->e[0], a->h[0], b->e[0], b->h[0]);
+  } else if (!is_point(a) && !is_point(b)) {
+    status = add_all(context, a, b, &sum);
+  }
+  if (status == PICKET_OK) {
+    double both = cabs(sum.aa * sum.bb), together = cabs(conj(sum.ab) + sum.ba);
+    double r = together > 0 ? cabs(sum.differ) / together : NAN;
+    out->share = both > 0 ? cabs(sum.ab * sum.ba) / both : NAN;
+    out->reflection = both > 0 ? r * r : NAN;
+  }
+  return status;
 }
 
 /* --- One plane ---------------------------------------------------------------------------------

@@ -22,10 +22,14 @@ void pk_plane_clear(picket_context *context, pk_plane *plane); /* accepts zeros 
 /* The plane z = pitch/2 of a field, without absorbing layers. */
 picket_status pk_plane_of_field(const picket_field *field, pk_plane *out);
 
-/* |∫E_a h_b* ∫E_b h_a*| / |∫E_a h_a* ∫E_b h_b*|: 1 for equal planes to rounding; NaN if one of them
+/* What the mode of a passes on to that of b where the two planes are one; NaN if one of them
  * carries nothing. */
-picket_status pk_plane_overlap(picket_context *context, const pk_plane *a, const pk_plane *b,
-                               double *share);
+typedef struct pk_joint {
+  double share; /* |∫E_a h_b* ∫E_b h_a*| / |∫E_a h_a* ∫E_b h_b*|: 1 for equal planes to rounding */
+  double reflection; /* |∫(E_b h_a - E_a h_b)|² / |∫(E_a* h_b + E_b h_a*)|²: 0 for equal planes */
+} pk_joint;
+picket_status pk_plane_meet(picket_context *context, const pk_plane *a, const pk_plane *b,
+                            pk_joint *out);
 
 /* Centroid and 4σ of Re E h*; NaN where there is no positive power. */
 void pk_plane_size(const pk_plane *plane, double *centroid, double *size);

@@ -130,6 +130,7 @@ static picket_status take_tooth(const row *r, int i, double from_um) {
                                 .clearance_um = cell->clearance_um,
                                 .regime = cell->regime,
                                 .overlap_next = {NAN, NAN, NO_NEXT},
+                                .reflection_next = {NAN, NAN, NO_NEXT},
                                 .next_index = cell->next_index,
                                 .adiabatic = NAN,
                                 .smallest_feature_um = cell->smallest_um,
@@ -149,20 +150,28 @@ static bool fit(const row *r, const pk_plane *a, const pk_plane *b) {
   return r->problem->cell.lateral == PK_LATERAL_OPEN || fabs(other - width) <= SLACK * width;
 }
 
+/* Near a stop band E and h of a wave differ in shape, and the formula, which leaves out waves that
+ * go back, can exceed 1 a little: a share does not, and what was cut off is part of its bar. */
+static picket_quantity cut(picket_quantity share) {
+  double excess = share.value - 1;
+  return excess > 0 ? (picket_quantity){1, share.uncertainty + excess, NULL} : share;
+}
+
 static picket_status take_overlap(const row *r, int i) {
   const pk_taper_cell *a = cell_of(r, i), *b = cell_of(r, i + 1);
   const char *why = a->why ? a->why : b->why;
   if (!why && !fit(r, &a->plane[0], &b->plane[0])) {
     why = OTHER_WIDTH;
   }
-  double share[PK_TAPER_GRIDS];
+  pk_joint joint[PK_TAPER_GRIDS];
   picket_status status = PICKET_OK;
-  r->teeth[i].overlap_next = (picket_quantity){NAN, NAN, why};
+  r->teeth[i].overlap_next = r->teeth[i].reflection_next = (picket_quantity){NAN, NAN, why};
   for (int g = 0; !why && g < PK_TAPER_GRIDS && status == PICKET_OK; g++) {
-    status = pk_plane_overlap(r->context, &a->plane[g], &b->plane[g], &share[g]);
+    status = pk_plane_meet(r->context, &a->plane[g], &b->plane[g], &joint[g]);
   }
   if (!why && status == PICKET_OK) {
-    r->teeth[i].overlap_next = pk_taper_pair(share[0], share[1], NO_POWER);
+    r->teeth[i].overlap_next = cut(pk_taper_pair(joint[0].share, joint[1].share, NO_POWER));
+    r->teeth[i].reflection_next = pk_taper_pair(joint[0].reflection, joint[1].reflection, NO_POWER);
   }
   return status;
 }

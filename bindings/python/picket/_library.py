@@ -134,6 +134,9 @@ FUNCTIONS = {
     'picket_slab_polarization_name': (Text, Int),
     'picket_index_find_resumable': (Status, Object, Object, Text, Out),
     'picket_modes_find_resumable': (Status, Object, Object, Text, Out),
+    'picket_taper_find_resumable': (Status, Object, Object, Text, Out),
+    'picket_taper_law_name': (Text, Int),
+    'picket_taper_warning_name': (Text, Int),
     # match.h, sweep.h
     'picket_match_request_init': (None, Object),
     'picket_match_request_init_sized': (None, Object, Size),
@@ -154,6 +157,7 @@ STUDIES = {
     'slab': (records.SlabAnswer,),
     'modes': (records.ModesAnswer,),
     'aim': (records.AimAnswer,),
+    'taper': (records.TaperAnswer,),
     'match': (records.MatchAnswer,),
     'edge_derivatives': (records.EdgeDerivatives, Text),
     'index_derivatives': (records.IndexDerivatives, Text),

@@ -16,7 +16,7 @@ from .errors import ArgumentError, Status
 from .field import Field, SectionField
 from .options import packed
 from .records import (AimAnswer, BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, MatchAlong, MatchAnswer,
-                      ModesAnswer, Polarization, Question, SlabAnswer)
+                      ModesAnswer, Polarization, Question, SlabAnswer, TaperAnswer)
 from .result import Result, Summary
 
 Path = Union[str, 'os.PathLike[str]']
@@ -161,6 +161,13 @@ class Problem(Owned):
         """The value of `aim.vary` between its bounds at which `aim.quantity` meets `aim.target`, for each polarization
         of `light` or each family of modes. That there is none is an outcome: `found` is False, `reason` says why."""
         return self._study('aim', progress=progress, options=options)
+
+    def taper(self, *, journal: Optional[Path] = None, progress: Optional[ProgressCallable] = None,
+              **options: float) -> Result[TaperAnswer]:
+        """A row that changes tooth by tooth, as `taper` of the problem says, for each polarization of `light`: what
+        each cell is, what its mode has in common with the next one and with a fibre, and what may be wrong with it.
+        Jobs and journal as for `index`."""
+        return self._study('taper', progress=progress, options=options, journal=journal)
 
     def match(self, other: Optional[Problem] = None, *, gaussian_um: Union[float, tuple[float, float], None] = None,
               mode: int = 0, mode_b: int = -1, along: Union[MatchAlong, str] = MatchAlong.BEST,

@@ -491,6 +491,93 @@ class AimAnswer:
     """as above, on the mask grid"""
 
 
+# --- taper.h
+
+class TaperLaw(_Word):
+    """How a number goes from its first value (t = 0) to its last (t = 1)."""
+    LINEAR = 0
+    POWER = 1
+    COSINE = 2
+
+
+class TaperWarning(_Word):
+    """What may be wrong with a tooth; bits of its `warnings`."""
+    STOP_BAND = 1
+    PAST_BAND = 2
+    RADIATING = 4
+    SMALL_FEATURE = 8
+    ABRUPT = 16
+
+
+@record('picket_taper_change')
+class TaperChange:
+    """One number of the problem that changes along the row, in the unit of the problem file."""
+    vary: str
+    """dotted path"""
+    start: float = stored(name='from')
+    to: float
+    law: TaperLaw
+    exponent: float
+    """of the power law"""
+
+
+@record('picket_taper_tooth')
+class TaperTooth:
+    """One cell of the row as if it went on for ever."""
+    number: int
+    """from 1"""
+    at_um: float
+    """its middle, from the beginning of the row"""
+    pitch_um: float
+    values: Tuple[float, ...] = many('value_count')
+    """of the numbers that change, in their order"""
+    bloch_index: Quantity
+    group_index: Quantity
+    loss_db_per_cm: Quantity
+    clearance_um: Quantity
+    """the wavelength minus the long edge of the first stop band"""
+    regime: Regime
+    mode_size_um: Quantity
+    """4 sigma of the power flow across the guide"""
+    overlap_next: Quantity
+    """share of the power that the mode of the next cell takes over"""
+    reflection_next: Quantity
+    """share that its own mode takes back, were there only the two modes"""
+    fibre_share: Quantity
+    """share that the mode has in common with the fibre's beam"""
+    next_index: float
+    """of what the mode couples to first: the next mode of its symmetry, or the denser open side"""
+    adiabatic: float
+    """how fast the mode changes its size, as a part of what the length-scale criterion allows"""
+    smallest_feature_um: float
+    warnings: int
+    """sum of TaperWarning"""
+    note: Optional[str]
+    """why the tooth has no numbers"""
+    failed: bool = stored(ctypes.c_int)
+
+    @property
+    def warned(self):
+        """The words of its warnings."""
+        return tuple(warning.word for warning in TaperWarning if warning & self.warnings)
+
+
+@record('picket_taper_answer')
+class TaperAnswer:
+    """A row in one polarization."""
+    polarization: Polarization
+    wavelength_um: float
+    fibre_um: float
+    """mode-field diameter of the fibre; NaN without one"""
+    length_um: float
+    changes: Tuple[TaperChange, ...] = many('change_count')
+    teeth: Tuple[TaperTooth, ...] = many('tooth_count', rows=True)
+    transmission: Quantity
+    """the product of all overlaps"""
+    fibre_share: Quantity
+    """of the last tooth"""
+
+
 # --- match.h
 
 class MatchAlong(_Word):

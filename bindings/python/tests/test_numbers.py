@@ -155,6 +155,22 @@ def test_aim():
     assert math.isnan(result['ey'].parts[0].value.value) and result.columns()['found'][0] == False  # noqa: E712
 
 
+def test_taper():
+    problem = picket.Problem({**stack(), 'taper': {
+        'teeth': 3, 'at_nm': 1550, 'changes': [{'vary': 'materials.high.constant.index', 'from': 2, 'to': 2.2}]}})
+    [row] = problem.taper(accuracy=1e-6)
+    assert row.polarization == picket.Polarization.EY and math.isnan(row.fibre_um)
+    assert (row.changes[0].start, row.changes[0].to, row.changes[0].law.word) == (2, 2.2, 'linear')
+    assert [tooth.values for tooth in row.teeth] == [(2.0,), (2.1,), (2.2,)]
+    for tooth in row.teeth:
+        exact = math.acos(half_trace(1.55, n1=tooth.values[0])) * 1.55 / (2 * math.pi * PITCH)
+        assert abs(tooth.bloch_index.value - exact) <= tooth.bloch_index.uncertainty
+        assert tooth.warned == () and not tooth.failed
+    assert row.transmission.value == pytest.approx(1, abs=1e-14) and 0 < row.teeth[0].reflection_next.value < 0.01
+    table = problem.taper().columns()
+    assert list(table['number']) == [1, 2, 3] and len(table['bloch_index_uncertainty']) == 3
+
+
 def strip(width_nm=600, **cladding):
     return {'light': {'wavelength_nm': 1550},
             'materials': {'core': {'constant': {'index': HIGH}}, 'around': {'constant': {'index': LOW}}},

@@ -18,12 +18,13 @@ HEADERS = {path.name: re.sub(r'/\*.*?\*/', '', path.read_text(encoding='utf-8'),
 
 # Headers whose every function the binding has.
 BOUND = ('aim.h', 'bands.h', 'context.h', 'derivative.h', 'edges.h', 'field.h', 'index.h', 'match.h', 'modes.h', 'options.h',
-         'problem.h', 'result.h', 'section_field.h', 'slab.h', 'status.h', 'summary.h', 'sweep.h', 'version.h')
+         'problem.h', 'result.h', 'section_field.h', 'slab.h', 'status.h', 'summary.h', 'sweep.h', 'taper.h', 'version.h')
 
 ENUMERATIONS = {
     'PICKET_': (picket.Status, records.SlabPolarization, records.Verdict),
     'PICKET_COMPONENT_': (records.Component,), 'PICKET_LOG_': (records.LogLevel,),
-    'PICKET_DERIVATIVE_': (records.DerivativeWay,), 'PICKET_QUESTION_': (records.Question,), 'PICKET_REGIME_': (records.Regime,), 'PICKET_SIDE_': (records.Side,)}
+    'PICKET_DERIVATIVE_': (records.DerivativeWay,), 'PICKET_QUESTION_': (records.Question,), 'PICKET_REGIME_': (records.Regime,), 'PICKET_SIDE_': (records.Side,),
+    'PICKET_TAPER_': (records.TaperLaw, records.TaperWarning)}
 
 
 def structs():
