@@ -135,6 +135,7 @@ FUNCTIONS = {
     'picket_index_find_resumable': (Status, Object, Object, Text, Out),
     'picket_modes_find_resumable': (Status, Object, Object, Text, Out),
     'picket_taper_find_resumable': (Status, Object, Object, Text, Out),
+    'picket_tolerance_find_resumable': (Status, Object, Object, Text, Out),
     'picket_taper_law_name': (Text, Int),
     'picket_taper_warning_name': (Text, Int),
     # match.h, sweep.h
@@ -158,6 +159,7 @@ STUDIES = {
     'modes': (records.ModesAnswer,),
     'aim': (records.AimAnswer,),
     'taper': (records.TaperAnswer,),
+    'tolerance': (records.ToleranceAnswer,),
     'match': (records.MatchAnswer,),
     'edge_derivatives': (records.EdgeDerivatives, Text),
     'index_derivatives': (records.IndexDerivatives, Text),

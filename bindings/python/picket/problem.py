@@ -16,7 +16,7 @@ from .errors import ArgumentError, Status
 from .field import Field, SectionField
 from .options import packed
 from .records import (AimAnswer, BandsAnswer, EdgeDerivatives, EdgesAnswer, IndexAnswer, IndexDerivatives, MatchAlong, MatchAnswer,
-                      ModesAnswer, Polarization, Question, SlabAnswer, TaperAnswer)
+                      ModesAnswer, Polarization, Question, SlabAnswer, TaperAnswer, ToleranceAnswer)
 from .result import Result, Summary
 
 Path = Union[str, 'os.PathLike[str]']
@@ -168,6 +168,12 @@ class Problem(Owned):
         each cell is, what its mode has in common with the next one and with a fibre, and what may be wrong with it.
         Jobs and journal as for `index`."""
         return self._study('taper', progress=progress, options=options, journal=journal)
+
+    def tolerance(self, *, journal: Optional[Path] = None, progress: Optional[ProgressCallable] = None,
+                  **options: float) -> Result[ToleranceAnswer]:
+        """What the spreads of `tolerance` do to the quantity it requires: sensitivities, corners, and the yield from
+        seeded samples on a surrogate that is held against direct solves. Jobs and journal as for `index`."""
+        return self._study('tolerance', progress=progress, options=options, journal=journal)
 
     def match(self, other: Optional[Problem] = None, *, gaussian_um: Union[float, tuple[float, float], None] = None,
               mode: int = 0, mode_b: int = -1, along: Union[MatchAlong, str] = MatchAlong.BEST,

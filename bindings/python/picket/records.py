@@ -491,6 +491,116 @@ class AimAnswer:
     """as above, on the mask grid"""
 
 
+# --- tolerance.h
+
+@record('picket_tolerance_sensitivity')
+class ToleranceSensitivity:
+    """One number that spreads, in the unit of the problem file, and what the quantity makes of it."""
+    vary: str
+    """dotted path"""
+    group: Optional[str]
+    """None: it varies by itself"""
+    unit: str
+    """of the number: 'nm', 'um', 'K', 'deg' or ''"""
+    nominal: float
+    sigma: float
+    """of a normal spread, else NaN"""
+    start: float = stored(name='from')
+    """of a uniform spread, else NaN"""
+    to: float
+    per_unit: Quantity
+    """change of the quantity per unit of this number alone"""
+    per_unit_way: DerivativeWay
+    second_per_unit2: Quantity
+    """second derivative"""
+
+
+@record('picket_tolerance_deviate')
+class ToleranceDeviate:
+    """What is drawn once for a sample; derivatives of the surrogate per standard deviation, or half a range."""
+    name: str
+    """of the group, or the path of the number"""
+    normal: bool = stored(ctypes.c_int)
+    first: float
+    second: float
+
+
+@record('picket_tolerance_place')
+class TolerancePlace:
+    """A number at a corner."""
+    vary: str
+    value: float
+
+
+@record('picket_tolerance_corner')
+class ToleranceCorner:
+    """All spreads at an end at once."""
+    places: Tuple[TolerancePlace, ...] = many('place_count')
+    value: Quantity
+    direct: bool = stored(ctypes.c_int)
+    """by a direct solve; else by the surrogate, its error in the bar"""
+
+
+@record('picket_tolerance_check')
+class ToleranceCheck:
+    """A direct solve that the surrogate was held against."""
+    direct: Quantity
+    surrogate: float
+    near_limit: bool = stored(ctypes.c_int)
+    """chosen where the surrogate meets the limit; else at random"""
+
+
+@record('picket_tolerance_yield')
+class ToleranceYield:
+    """How the samples were judged."""
+    value: Quantity
+    """share that meets the requirement; the bar reaches to the farther end of the 95 % interval, and by the share of
+    the undecided samples beyond"""
+    low: float
+    """95 % interval of the count (Wilson)"""
+    high: float
+    samples: int
+    seed: int
+    by_surrogate: int
+    direct: int
+    estimated: int
+    """too near to the limit for the surrogate, but more than may be solved"""
+    undecided: int
+    """nearer to the limit than the bar of the quantity"""
+    without_value: int
+    """counted as not met"""
+
+
+@record('picket_tolerance_answer')
+class ToleranceAnswer:
+    """What the process does to a quantity, for one polarization."""
+    polarization: str
+    """'ey', 'hy', 'te-like' or 'tm-like'"""
+    quantity: str
+    unit: str
+    at_um: float
+    at_least: float
+    """NaN where nothing is required"""
+    at_most: float
+    nominal: Quantity
+    nominal_meets: int
+    """1 or 0; -1 if it is not known within its bar"""
+    sensitivities: Tuple[ToleranceSensitivity, ...] = many('sensitivity_count', rows=True)
+    deviates: Tuple[ToleranceDeviate, ...] = many('deviate_count')
+    corners: Tuple[ToleranceCorner, ...] = many('corner_count')
+    corner_convention: str
+    worst: int
+    """number of the worst corner; -1 if a corner has no value"""
+    worst_value: Quantity
+    checks: Tuple[ToleranceCheck, ...] = many('check_count')
+    surrogate_error: float
+    """largest at the checks; NaN without a surrogate"""
+    surrogate_note: Optional[str]
+    """why there is none, or None"""
+    yielded: ToleranceYield = stored(name='yield')
+    solves: int
+
+
 # --- taper.h
 
 class TaperLaw(_Word):

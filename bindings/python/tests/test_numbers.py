@@ -155,6 +155,24 @@ def test_aim():
     assert math.isnan(result['ey'].parts[0].value.value) and result.columns()['found'][0] == False  # noqa: E712
 
 
+def test_tolerance(tmp_path):
+    # The index spreads normally and the edge follows it nearly on a line; it is limited where the index is one standard
+    # deviation up.
+    problem = picket.Problem({**stack(), 'tolerance': {
+        'spreads': [{'vary': 'materials.high.constant.index', 'sigma': 0.02}],
+        'require': {'quantity': 'long_nm', 'at_most': 1000 * edge(1.0, 1.4, n1=HIGH + 0.02)}}})
+    [answer] = problem.tolerance(accuracy=1e-6, journal=tmp_path / 'journal')
+    share = 0.5 * math.erfc(-1 / math.sqrt(2))
+    assert abs(answer.yielded.value.value - share) <= answer.yielded.value.uncertainty < 0.01
+    assert answer.yielded.low <= share <= answer.yielded.high and answer.yielded.samples == 10000
+    [one] = answer.sensitivities
+    slope = 1000 * (edge(1.0, 1.4, n1=HIGH + 1e-4) - edge(1.0, 1.4, n1=HIGH - 1e-4)) / 2e-4
+    assert one.per_unit.value == pytest.approx(slope, rel=1e-4) and one.sigma == 0.02 and math.isnan(one.start)
+    assert [c.places[0].value for c in answer.corners] == pytest.approx([HIGH - 0.06, HIGH + 0.06], rel=1e-14)
+    assert answer.worst == 1 and answer.worst_value.value == answer.corners[1].value.value
+    assert len(answer.checks) == 12 and answer.deviates[0].normal
+
+
 def test_taper():
     problem = picket.Problem({**stack(), 'taper': {
         'teeth': 3, 'at_nm': 1550, 'changes': [{'vary': 'materials.high.constant.index', 'from': 2, 'to': 2.2}]}})

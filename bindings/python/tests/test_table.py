@@ -18,7 +18,7 @@ HEADERS = {path.name: re.sub(r'/\*.*?\*/', '', path.read_text(encoding='utf-8'),
 
 # Headers whose every function the binding has.
 BOUND = ('aim.h', 'bands.h', 'context.h', 'derivative.h', 'edges.h', 'field.h', 'index.h', 'match.h', 'modes.h', 'options.h',
-         'problem.h', 'result.h', 'section_field.h', 'slab.h', 'status.h', 'summary.h', 'sweep.h', 'taper.h', 'version.h')
+         'problem.h', 'result.h', 'section_field.h', 'slab.h', 'status.h', 'summary.h', 'sweep.h', 'taper.h', 'tolerance.h', 'version.h')
 
 ENUMERATIONS = {
     'PICKET_': (picket.Status, records.SlabPolarization, records.Verdict),
