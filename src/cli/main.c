@@ -24,7 +24,7 @@ const pk_command pk_commands[] = {
     {"aim", "the dimension that meets a target, with its bar and what a mask makes of it",
      "aim, and a cell, a channel or a section", picket_aim_find, pk_aim_print},
     {"tolerance", "what the process does to a quantity: sensitivities, corners and yield",
-     "tolerance, and a cell or a section", picket_tolerance_find, pk_tolerance_print},
+     "tolerance, and a cell, a channel or a section", picket_tolerance_find, pk_tolerance_print},
     {"match", "what a mode of a section shares with a Gaussian beam, or a mode of a second section",
      "section, light; a second file needs section", pk_match_find, pk_match_print},
     {"taper",
