@@ -17,6 +17,7 @@ static const struct {
     STRUCT(picket_confinement),
     STRUCT(picket_context_options),
     STRUCT(picket_coupling),
+    STRUCT(picket_edge_comparison),
     STRUCT(picket_edge_derivative),
     STRUCT(picket_edge_derivatives),
     STRUCT(picket_edge_estimate),

@@ -32,7 +32,7 @@ GOOD = {('picket_problem_read_file', 'path'): 'e->file', ('picket_struct_size', 
         (ANY, 'progress'): 'NULL', (ANY, 'other'): 'NULL', (ANY, 'request'): '&e->{type}'}
 
 # Long work: only what is refused before it begins is tried.
-SLOW = re.compile(r'_(find|find_resumable|write)$')
+SLOW = re.compile(r'_(find|find_resumable|compare|write)$')
 # Always right where it is asked: anything goes.
 HARMLESS = {('picket_problem_set_number', 'value', '-1'), ('picket_problem_set_number', 'value', '0'),
             ('picket_problem_set_number', 'value', 'HUGE_VAL'), ('picket_problem_set_number', 'value', '-HUGE_VAL'),
@@ -83,7 +83,7 @@ class Writer:
         """The kind of result that a function asks: picket_edges_get wants one of edges."""
         kind = re.sub(r'^picket_|_(get|count)$', '', function)
         return {'result_json': 'slab', 'result_json_get': 'slab', 'result_csv': 'slab', 'result_csv_get': 'slab',
-                'summary_line': 'summary', 'sweep_path': 'sweep', 'sweep_value': 'sweep'}.get(kind, kind)
+                'edges_comparison': 'comparison', 'summary_line': 'summary', 'sweep_path': 'sweep', 'sweep_value': 'sweep'}.get(kind, kind)
 
     def good(self, f, a):
         """(declaration or '', expression, check that the output is untouched or '', how to let go of it)"""
@@ -117,7 +117,7 @@ class Writer:
             found = [('NULL', not allowed)]
             if a.base == 'char' and a.depth == 1:
                 found += [('""', False), ('e->endless', False), ('"\\xff\\xfe\\x01"', False), ('"..."', False)]
-            if a.base == 'picket_result':
+            if a.base == 'picket_result' and a.depth == 1:
                 found += [('result(e, "summary")', f.name.endswith('_get') and not re.search('json|csv', f.name)),
                           ('result(e, "edges")', False)]
             if a.base == 'picket_options' and a.const:

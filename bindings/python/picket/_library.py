@@ -128,7 +128,10 @@ FUNCTIONS = {
     'picket_section_field_permittivity': (Status, Object, Int, Doubles, Size),
     'picket_section_field_free': (None, Object),
     'picket_section_fields_write': (Status, Object, Object, Text),
-    # aim.h, index.h, modes.h, slab.h, besides what every study has
+    # edges.h, aim.h, index.h, modes.h, slab.h, besides what every study has
+    'picket_edges_compare': (Status, Object, Object, Out),
+    'picket_edges_comparison_count': (Int, Object),
+    'picket_edges_comparison_get': (Status, Object, Int, Object),
     'picket_derivative_way_name': (Text, Int),
     'picket_side_name': (Text, Int),
     'picket_slab_polarization_name': (Text, Int),
