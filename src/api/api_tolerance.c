@@ -80,7 +80,7 @@ static picket_status find(picket_problem *problem, const picket_options *options
   const pk_problem *understood = NULL;
   status = journal && journal[0] == '\0'
                ? pk_fail(problem->context, PICKET_ERROR_ARGUMENT,
-                         "journal_path is empty, must be a file name")
+                         "journal_path is null or empty, must be a file name")
                : pk_border_prepare(problem, options, out, &chosen, &understood);
   if (status == PICKET_OK) {
     status = run(problem, understood, &chosen, journal, out);
