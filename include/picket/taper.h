@@ -58,9 +58,9 @@ typedef struct picket_taper_tooth {
   picket_quantity loss_db_per_cm;
   picket_quantity clearance_um; /* the wavelength minus the long edge of the first stop band */
   picket_regime regime;
-  picket_quantity mode_size_um; /* 4σ of the power flow across the guide; of a Gaussian beam its
-                                   diameter at 1/e² */
-  picket_quantity overlap_next; /* share of the power that the mode of the next cell takes over */
+  picket_quantity mode_size_um;    /* 4σ of the power flow across the guide; of a Gaussian beam its
+                                      diameter at 1/e² */
+  picket_quantity overlap_next;    /* of its mode with that of the next cell, see below */
   picket_quantity reflection_next; /* share that its own mode takes back, were there only the two
                                       modes */
   picket_quantity fibre_share;     /* share that the mode has in common with the fibre's beam */
@@ -91,11 +91,14 @@ typedef struct picket_taper_answer {
  * are those of `channel`), for each polarization of `light`, at the wavelength `at_nm`. Every tooth
  * is solved for itself.
  *
- * The share between neighbours a and b, with all fields at the plane where they meet,
+ * Neighbours a and b are compared by the shapes of their transverse H, which has no jumps, at the
+ * plane where they meet,
  *
- *   η = |∫(E_a × H_b*)_z dx ∫(E_b × H_a*)_z dx| / |∫(E_a × H_a*)_z dx ∫(E_b × H_b*)_z dx|,
+ *   η = |∫ H_a · H_b* dx|² / (∫|H_a|² dx ∫|H_b|² dx),
  *
- * is 1 for equal cells; it does not count what the joint reflects,
+ * 1 for equal cells and less for all others. Where the impedance of the modes is the same all over
+ * the plane (a plain guide in ey) this is the share of the power that goes on; elsewhere it says
+ * how much the two are alike. It does not count what the joint reflects,
  *
  *   R = |∫(E_b × H_a - E_a × H_b)_z dx|² / |∫(E_a* × H_b + E_b × H_a*)_z dx|²,
  *
@@ -103,8 +106,8 @@ typedef struct picket_taper_answer {
  * Not included: light that radiates at a joint and is caught again, and what two joints do
  * together. So the product of the shares is what passes if whatever a joint loses stays lost and
  * nothing comes back; for a slow row it is too low, and where reflections add up, as near a stop
- * band, too high. A cell is two-dimensional: sizes and shares, that with the fibre too, speak of
- * the lateral direction alone.
+ * band, too high. The share with a fibre is that of picket_match_find, the beam centred on the
+ * mode. A cell is two-dimensional: sizes and shares speak of the lateral direction alone.
  *
  * The criterion (J. D. Love, W. M. Henry, W. J. Stewart, R. J. Black, S. Lacroix and F. Gonthier,
  * IEE Proc. J 138, 343 (1991): the length over which the guide tapers must exceed the beat length

@@ -128,13 +128,13 @@ static void print_answer(const picket_taper_answer *answer, pk_notes *notes) {
 
 static void print_meaning(void) {
   printf(
-      "Overlaps: of the modes of neighbouring cells, each as if its cell went on for ever, where "
-      "the cells meet.\nTheir product is what passes if whatever a joint loses stays lost; what it "
-      "reflects stands beside it.\nSizes (4 sigma of the power flow) and shares speak of the "
-      "lateral "
-      "direction alone. Adiabatic: how fast\nthe size changes, over what the length-scale "
-      "criterion "
-      "of Love et al., IEE Proc. J 138, 343 (1991),\nallows; it holds below 1.\n");
+      "Overlaps: of the transverse H of neighbouring cells' modes, each as if its cell went on for "
+      "ever, where\nthe cells meet. Their product is what passes if whatever a joint loses stays "
+      "lost; what it reflects stands\nbeside it. Sizes (4 sigma of the power flow) and shares "
+      "speak "
+      "of the lateral direction alone. Adiabatic:\nhow fast the size changes, over what the "
+      "length-scale criterion of Love et al., IEE Proc. J 138, 343\n(1991), allows; it holds below "
+      "1.\n");
 }
 
 void pk_taper_print(const pk_arguments *arguments, const picket_result *result) {

@@ -24,8 +24,9 @@ static const double PK_NM_OF_UM = 1000.0;
 static const double PK_DEGREES = 57.29577951308232088; /* of a radian */
 
 /* What the numbers of a row leave out. */
-#define PK_TAPER_LIMITS                                                                       \
-  "overlaps of neighbouring cells as if each went on for ever; what a joint loses counts as " \
+#define PK_TAPER_LIMITS                                                                         \
+  "overlaps of the transverse H of neighbours as if each went on for ever; what a joint loses " \
+  "counts as "                                                                                  \
   "lost, reflection is not included; sizes and shares are of the lateral direction alone"
 
 /* What the overlap of a match leaves out. */

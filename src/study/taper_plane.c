@@ -1,14 +1,18 @@
 /* See taper_plane.h.
  *
- *   η = |∫E_a h_b* ∫E_b h_a*| / |∫E_a h_a* ∫E_b h_b*|
+ *   η = |∫h_a h_b*|² / (∫|h_a|² ∫|h_b|²)
  *
+ * never exceeds 1 (Cauchy and Schwarz) and is 1 for equal shapes alone. Where E is everywhere the
+ * same multiple of h, as in a plain guide in ey and nearly so where one medium fills the plane, it
  * is the overlap of section/overlap.h (A. W. Snyder and J. D. Love, Optical Waveguide Theory
- * (1983), ch. 20 and 31) in one dimension: ratios of impedance, which reflect, drop out. What
- * reflects is found from the power form q(F, G) = ∫(E_F h_G* + E_G* h_F), in which the waves (E, h)
- * and (E*, -h*) that a lossless guide carries forth and back are orthogonal: a + r a' = t b has no
- * part along b', so
- *   r = ∫(E_b h_a - E_a h_b) / ∫(E_a* h_b + E_b h_a*),
- * which is exact where nothing varies across.
+ * (1983), ch. 20 and 31). Where the media of hy differ across the plane that one is no share: E
+ * jumps at other places in a than in b, waves that go back count against those that go on, and it
+ * exceeds 1 (a film of 2.8 in 1.444 that narrows from 450 to 420 nm at 1550 nm: 1.0007).
+ *
+ * What reflects is found from the power form q(F, G) = ∫(E_F h_G* + E_G* h_F), in which the waves
+ * (E, h) and (E*, -h*) that a lossless guide carries forth and back are orthogonal: a + r a' = t b
+ * has no part along b', so r = ∫(E_b h_a - E_a h_b) / ∫(E_a* h_b + E_b h_a*), which is exact where
+ * nothing varies across.
  *
  * Between its places a field is a polynomial through the four nearest ones, none of which lies
  * beyond an interface: there h has a kink, and E may have a jump, of which the place on the
@@ -171,6 +175,8 @@ static int merge(const pk_plane *a, const pk_plane *b, double *x) {
 
 typedef struct products {
   double complex aa, ab, ba, bb; /* ∫E_a h_a*, ∫E_a h_b*, … */
+  double complex shape;          /* ∫h_a h_b* */
+  double shape_a, shape_b;       /* ∫|h_a|², ∫|h_b|² */
   double complex differ;         /* ∫(E_b h_a - E_a h_b) */
 } products;
 
@@ -180,6 +186,9 @@ static void add_place(products *sum, double dx, double complex ea, double comple
   sum->ab += dx * ea * conj(hb);
   sum->ba += dx * eb * conj(ha);
   sum->bb += dx * eb * conj(hb);
+  sum->shape += dx * ha * conj(hb);
+  sum->shape_a += dx * creal(ha * conj(ha));
+  sum->shape_b += dx * creal(hb * conj(hb));
   sum->differ += dx * (eb * ha - ea * hb);
 }
 
@@ -229,7 +238,8 @@ picket_status pk_plane_meet(picket_context *context, const pk_plane *a, const pk
   if (status == PICKET_OK) {
     double both = cabs(sum.aa * sum.bb), together = cabs(conj(sum.ab) + sum.ba);
     double r = together > 0 ? cabs(sum.differ) / together : NAN;
-    out->share = both > 0 ? cabs(sum.ab * sum.ba) / both : NAN;
+    double shapes = sum.shape_a * sum.shape_b, alike = cabs(sum.shape);
+    out->share = both > 0 ? fmin(1, alike * alike / shapes) : NAN; /* 1 but for rounding */
     out->reflection = both > 0 ? r * r : NAN;
   }
   return status;

@@ -25,7 +25,7 @@ picket_status pk_plane_of_field(const picket_field *field, pk_plane *out);
 /* What the mode of a passes on to that of b where the two planes are one; NaN if one of them
  * carries nothing. */
 typedef struct pk_joint {
-  double share; /* |∫E_a h_b* ∫E_b h_a*| / |∫E_a h_a* ∫E_b h_b*|: 1 for equal planes to rounding */
+  double share;      /* |∫h_a h_b*|² / (∫|h_a|² ∫|h_b|²): 1 for equal planes to rounding */
   double reflection; /* |∫(E_b h_a - E_a h_b)|² / |∫(E_a* h_b + E_b h_a*)|²: 0 for equal planes */
 } pk_joint;
 picket_status pk_plane_meet(picket_context *context, const pk_plane *a, const pk_plane *b,

@@ -74,6 +74,13 @@ static const char *no_width(const row *r, const pk_taper_cell *cell) {
   }
 }
 
+/* E and h of a mode differ in shape, and the formula, which leaves out waves that go back, can
+ * exceed 1: a share does not, and what was cut off is part of its bar. */
+static picket_quantity cut(picket_quantity share) {
+  double excess = share.value - 1;
+  return excess > 0 ? (picket_quantity){1, share.uncertainty + excess, NULL} : share;
+}
+
 static void take_width(const row *r, const pk_taper_cell *cell, picket_taper_tooth *tooth) {
   const char *why = no_width(r, cell);
   double fibre = r->problem->taper.fibre_um, size[PK_TAPER_GRIDS], share[PK_TAPER_GRIDS];
@@ -92,7 +99,7 @@ static void take_width(const row *r, const pk_taper_cell *cell, picket_taper_too
   }
   tooth->mode_size_um = pk_taper_pair(size[0], size[1], NO_POWER);
   if (fibre > 0) {
-    tooth->fibre_share = pk_taper_pair(share[0], share[1], NO_POWER);
+    tooth->fibre_share = cut(pk_taper_pair(share[0], share[1], NO_POWER));
   }
 }
 
@@ -150,13 +157,6 @@ static bool fit(const row *r, const pk_plane *a, const pk_plane *b) {
   return r->problem->cell.lateral == PK_LATERAL_OPEN || fabs(other - width) <= SLACK * width;
 }
 
-/* Near a stop band E and h of a wave differ in shape, and the formula, which leaves out waves that
- * go back, can exceed 1 a little: a share does not, and what was cut off is part of its bar. */
-static picket_quantity cut(picket_quantity share) {
-  double excess = share.value - 1;
-  return excess > 0 ? (picket_quantity){1, share.uncertainty + excess, NULL} : share;
-}
-
 static picket_status take_overlap(const row *r, int i) {
   const pk_taper_cell *a = cell_of(r, i), *b = cell_of(r, i + 1);
   const char *why = a->why ? a->why : b->why;
@@ -170,7 +170,7 @@ static picket_status take_overlap(const row *r, int i) {
     status = pk_plane_meet(r->context, &a->plane[g], &b->plane[g], &joint[g]);
   }
   if (!why && status == PICKET_OK) {
-    r->teeth[i].overlap_next = cut(pk_taper_pair(joint[0].share, joint[1].share, NO_POWER));
+    r->teeth[i].overlap_next = pk_taper_pair(joint[0].share, joint[1].share, NO_POWER);
     r->teeth[i].reflection_next = pk_taper_pair(joint[0].reflection, joint[1].reflection, NO_POWER);
   }
   return status;

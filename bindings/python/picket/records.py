@@ -650,7 +650,7 @@ class TaperTooth:
     mode_size_um: Quantity
     """4 sigma of the power flow across the guide"""
     overlap_next: Quantity
-    """share of the power that the mode of the next cell takes over"""
+    """of its mode with that of the next cell: 1 for equal shapes of the transverse H"""
     reflection_next: Quantity
     """share that its own mode takes back, were there only the two modes"""
     fibre_share: Quantity

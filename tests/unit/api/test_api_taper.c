@@ -159,6 +159,79 @@ static void plain_guides(void **state) {
   }
 }
 
+/* The even mode of a film of index 2.8 in 1.444: u = cos κx inside, falling as exp(-γx) outside;
+ * κ tan(κw/2) = γ (ey), γ n₁²/n₂² (hy). */
+typedef struct film {
+  double half, kappa, gamma;
+  bool hy;
+} film;
+
+static film film_of(double width_um, bool hy) {
+  const double n1 = 2.8, n2 = 1.444, k0 = 2 * 3.141592653589793238 / 1.55;
+  double most = k0 * sqrt(n1 * n1 - n2 * n2), half = 0.5 * width_um;
+  double low = 0, high = fmin(most, 0.5 * 3.141592653589793238 / half);
+  for (int i = 0; i < 100; i++) {
+    double k = 0.5 * (low + high), gamma = sqrt(most * most - k * k);
+    if (k * tan(k * half) < gamma * (hy ? n1 * n1 / (n2 * n2) : 1)) {
+      low = k;
+    } else {
+      high = k;
+    }
+  }
+  return (film){half, low, sqrt(most * most - low * low), hy};
+}
+
+/* E and h of the power E h but for factors: u twice (ey), u/ε and u (hy). */
+static double film_field(const film *f, double x, bool electric) {
+  double u =
+      x < f->half ? cos(f->kappa * x) : cos(f->kappa * f->half) * exp(-f->gamma * (x - f->half));
+  return electric && f->hy ? u / (x < f->half ? 2.8 * 2.8 : 1.444 * 1.444) : u;
+}
+
+/* ∫E_a h_b x^power over both halves; middles of intervals that end at both walls, 1e-7 and better.
+ */
+static double film_product(const film *a, const film *b, int power) {
+  const double end[] = {0, fmin(a->half, b->half), fmax(a->half, b->half), 5};
+  double sum = 0;
+  for (int part = 0; part < 3; part++) {
+    double step = (end[part + 1] - end[part]) / 4000;
+    for (int i = 0; i < 4000; i++) {
+      double x = end[part] + (i + 0.5) * step;
+      sum += 2 * step * film_field(a, x, true) * film_field(b, x, false) * pow(x, power);
+    }
+  }
+  return sum;
+}
+
+/* Guides without teeth, of 450 and 420 nm: overlap, reflection, size from the modes of a film. With
+ * fields of unit power h of ey and E of hy carry the index. */
+static void two_films(void **state) {
+  (void)state;
+  for (int p = 0; p < 2; p++) {
+    picket_result *result = NULL;
+    picket_taper_answer row = find(PLAIN
+                                   "taper: {teeth: 2, at_nm: 1550, changes: [{vary: "
+                                   "cell.shapes.0.width_nm, from: 450, to: 420}]}\n",
+                                   1e-4, &result, p);
+    const film a = film_of(0.45, p == 1), b = film_of(0.42, p == 1);
+    const film h_a = {a.half, a.kappa, a.gamma, false}, h_b = {b.half, b.kappa, b.gamma, false};
+    double both = film_product(&h_a, &h_b, 0);
+    double lost = 1 - both * both / (film_product(&h_a, &h_a, 0) * film_product(&h_b, &h_b, 0));
+    double ab = film_product(&a, &b, 0), ba = film_product(&b, &a, 0);
+    double na = row.teeth[0].bloch_index.value, nb = row.teeth[1].bloch_index.value;
+    double there = p == 1 ? na * ab : nb * ab, back = p == 1 ? nb * ba : na * ba;
+    double r = (back - there) / (back + there);
+    double size = 4 * sqrt(film_product(&a, &a, 2) / film_product(&a, &a, 0));
+    const picket_taper_tooth *t = &row.teeth[0];
+    assert_near(1 - t->overlap_next.value, lost, t->overlap_next.uncertainty + 2e-7);
+    assert_true(t->overlap_next.uncertainty < 0.02 * lost);
+    assert_near(t->reflection_next.value, r * r, t->reflection_next.uncertainty + 1e-2 * r * r);
+    assert_near(t->mode_size_um.value, size, t->mode_size_um.uncertainty + 1e-6);
+    assert_true(t->mode_size_um.uncertainty < 3e-3 * size);
+    picket_result_free(result);
+  }
+}
+
 static const char NARROWING[] = BUS
     "rules: {smallest_feature_nm: 160}\n"
     "taper: {teeth: 4, at_nm: 1550, fibre: {gaussian_um: 3}, changes: [{vary: "
@@ -400,10 +473,15 @@ static void memory_runs_out(void **state) {
 
 int main(void) {
   const struct CMUnitTest tests[] = {
-      cmocka_unit_test(a_stack),         cmocka_unit_test(fresnel),
-      cmocka_unit_test(plain_guides),    cmocka_unit_test(a_narrowing_row),
-      cmocka_unit_test(half_the_step),   cmocka_unit_test(into_the_band),
-      cmocka_unit_test(arguments),       cmocka_unit_test(jobs),
+      cmocka_unit_test(a_stack),
+      cmocka_unit_test(fresnel),
+      cmocka_unit_test(two_films),
+      cmocka_unit_test(plain_guides),
+      cmocka_unit_test(a_narrowing_row),
+      cmocka_unit_test(half_the_step),
+      cmocka_unit_test(into_the_band),
+      cmocka_unit_test(arguments),
+      cmocka_unit_test(jobs),
       cmocka_unit_test(memory_runs_out),
   };
   return cmocka_run_group_tests(tests, open_context, close_context);
