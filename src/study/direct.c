@@ -207,7 +207,7 @@ picket_status pk_direct_resume(pk_direct *d, const char *path, uint64_t key) {
   return pk_journal_open(d->variants->context, path, key, take_kept, d, &d->journal);
 }
 
-picket_status pk_direct_solve(pk_direct *d) {
+picket_status pk_direct_solve(pk_direct *d, const char *phase) {
   picket_context *context = d->variants->context;
   int *number = PK_NEW(context, d->count + 1, int), missing = 0;
   if (!number) {
@@ -219,7 +219,7 @@ picket_status pk_direct_solve(pk_direct *d) {
     }
   }
   int jobs = d->options->jobs > 0 ? (int)d->options->jobs : pk_workers_cores();
-  pk_work work = {context, jobs, missing, number, d->count - missing, d->phase, solve, take, d};
+  pk_work work = {context, jobs, missing, number, 0, phase, solve, take, d};
   picket_status status = missing > 0 ? pk_workers_run(&work) : PICKET_OK;
   pk_free(context, number);
   return status;

@@ -34,7 +34,6 @@ typedef struct pk_direct_task {
 typedef struct pk_direct {
   const pk_variants *variants;
   const picket_options *options;
-  const char *phase; /* for the progress; static text */
   picket_result *result;
   pk_question question;     /* may change between rounds */
   pk_measure_memory memory; /* of the question's mode; never changed */
@@ -51,8 +50,8 @@ picket_status pk_direct_resume(pk_direct *direct, const char *path, uint64_t key
  * task, which may have been asked for before. */
 picket_status pk_direct_ask(pk_direct *direct, const double *values, int slope, int *number);
 
-/* Solves what was asked for and is not done. */
-picket_status pk_direct_solve(pk_direct *direct);
+/* Solves what was asked for and is not done; `phase` is for the progress, static text. */
+picket_status pk_direct_solve(pk_direct *direct, const char *phase);
 
 /* The solves that the answers took which the question's family asked for. */
 int pk_direct_solves(const pk_direct *direct);

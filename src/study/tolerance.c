@@ -110,7 +110,7 @@ static picket_status ask_first(pk_tolerance_study *s) {
   if (status == PICKET_OK) {
     status = pk_tolerance_ask_corners(s);
   }
-  return status == PICKET_OK ? pk_direct_solve(s->direct) : status;
+  return status == PICKET_OK ? pk_direct_solve(s->direct, "design, corners, derivatives") : status;
 }
 
 static picket_status ask_second(pk_tolerance_study *s) {
@@ -118,7 +118,7 @@ static picket_status ask_second(pk_tolerance_study *s) {
   if (status == PICKET_OK) {
     status = pk_tolerance_ask_worst(s);
   }
-  return status == PICKET_OK ? pk_direct_solve(s->direct) : status;
+  return status == PICKET_OK ? pk_direct_solve(s->direct, "checks near the limit") : status;
 }
 
 static picket_status take(pk_tolerance_study *s) {
@@ -222,7 +222,7 @@ picket_status pk_study_tolerance(const pk_problem *problem, const pk_variants *v
                                  const double *start, const picket_options *options,
                                  uint64_t document, const char *journal, picket_result **out) {
   pk_spreading spreading;
-  pk_direct direct = {.variants = variants, .options = options, .phase = "direct solves"};
+  pk_direct direct = {.variants = variants, .options = options};
   picket_status status = make_question(problem, &direct.question);
   if (status == PICKET_OK) {
     status = pk_result_create(problem->context, PK_RESULT_TOLERANCE, problem->name,

@@ -50,7 +50,7 @@ static picket_status draw_all(pk_tolerance_study *s, int *task, count *c) {
       status = pk_progress(context, "samples", (double)n / s->block->samples);
     }
   }
-  return status;
+  return status == PICKET_OK ? pk_progress(context, "samples", 1) : status;
 }
 
 static void judge_solved(const pk_tolerance_study *s, const int *task, count *c) {
@@ -106,7 +106,7 @@ picket_status pk_tolerance_count_yield(pk_tolerance_study *s) {
   int *task = PK_NEW(s->problem->context, room, int);
   picket_status status = task ? draw_all(s, task, &c) : PICKET_ERROR_MEMORY;
   if (status == PICKET_OK) {
-    status = pk_direct_solve(s->direct);
+    status = pk_direct_solve(s->direct, "samples near the limit");
   }
   if (status == PICKET_OK) {
     judge_solved(s, task, &c);
