@@ -37,7 +37,7 @@ static picket_status run(picket_problem *problem, const char *path, const picket
 
 static picket_status find(picket_problem *problem, const char *path, const picket_options *options,
                           derivative_study study, picket_result **out) {
-  if (!problem || !path) {
+  if (!problem) {
     return PICKET_ERROR_ARGUMENT;
   }
   picket_status status = pk_border_enter(problem->context);
@@ -46,7 +46,9 @@ static picket_status find(picket_problem *problem, const char *path, const picke
   }
   picket_options chosen;
   const pk_problem *understood = NULL;
-  status = pk_border_prepare(problem, options, out, &chosen, &understood);
+  status = path ? pk_border_prepare(problem, options, out, &chosen, &understood)
+                : pk_fail(problem->context, PICKET_ERROR_ARGUMENT,
+                          "path is null, must name a number of the problem, e.g. cell.pitch_nm");
   if (status == PICKET_OK) {
     status = run(problem, path, &chosen, understood, study, out);
   }

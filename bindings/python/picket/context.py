@@ -145,10 +145,11 @@ class Context:
         finally:
             self._lock.release()
 
-    def _call(self, function, *arguments, progress=None, wrap=None):
+    def _call(self, function, *arguments, progress=None, wrap=None, take=None):
         """Makes a call and raises what its status says. Objects stand for their addresses, which are taken only
         when it is this call's turn, so that none is freed meanwhile. With `wrap` the last argument is where the
-        call puts an object, and wrap(its address) is returned; a call that fails may leave a partial one."""
+        call puts an object, and wrap(its address) is returned; a call that fails may leave a partial one. What
+        the call only lends is copied by take(), whose answer is returned, while it is still this call's turn."""
         out = ctypes.c_void_p()
         with self._turn():
             given = [a._address if isinstance(a, Owned) else a for a in arguments]
@@ -158,6 +159,7 @@ class Context:
                 status = function(*given)
             failure, listeners.failure = listeners.failure, None
             message = text(lib.picket_context_message(self._address)) if status != Status.OK else ''
+            taken = take() if take and status == Status.OK else None
         made = wrap(out.value) if out.value else None
         cause = None
         if status != Status.OK:
@@ -169,7 +171,7 @@ class Context:
         interrupts.deliver(cause)
         if status != Status.OK:
             raise cause
-        return made
+        return taken if take else made
 
     @contextlib.contextmanager
     def _listening(self, progress):

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import ctypes
 import os
 from collections.abc import Iterable, Mapping
@@ -86,6 +87,23 @@ class Problem(Owned):
         value = ctypes.c_double()
         self.context._call(lib.picket_problem_number, self, path.encode(), ctypes.byref(value))
         return value.value
+
+    def text(self, path: Optional[str] = None) -> str:
+        """What stands at a path, as `set` would take it from a file; without one the whole problem, as `from_text`
+        reads it. Comments of a file are not kept."""
+        out = ctypes.c_void_p()
+        return self.context._call(lib.picket_problem_text, self, None if path is None else path.encode(),
+                                  ctypes.byref(out), take=lambda: ctypes.string_at(out.value).decode())
+
+    def numbers(self) -> dict[str, float]:
+        """Every number of the problem by its path: what sweeps, derivatives and aims can vary."""
+        path, value, found = ctypes.c_void_p(), ctypes.c_double(), {}
+        with contextlib.suppress(ArgumentError):        # past the last one
+            while True:
+                key = self.context._call(lib.picket_problem_number_at, self, len(found), ctypes.byref(path),
+                                         ctypes.byref(value), take=lambda: ctypes.string_at(path.value).decode())
+                found[key] = value.value
+        return found
 
     def check(self) -> None:
         """Raises InputError with the first fault, if there is one."""

@@ -49,6 +49,20 @@ def test_values_are_set():
     assert problem.slab().to_dict()['name'] == 'a "name": # Γ'
 
 
+def test_what_a_problem_says():
+    problem = picket.Problem(stack())
+    again = picket.Problem.from_text(problem.text())
+    assert again.text() == problem.text()
+    numbers = problem.numbers()
+    assert len(numbers) > 5 and numbers['format'] == 1
+    assert all(problem[path] == value == float(problem.text(path)) for path, value in numbers.items())
+    with pytest.raises(picket.InputError):
+        problem.text('cell.gone')
+    problem.close()
+    with pytest.raises(picket.PicketError):
+        problem.numbers()
+
+
 def test_all_digits_arrive():
     thickness = 400 * (1 + 2**-50)
     by_set, by_content = picket.Problem(film()), picket.Problem(film(thickness_nm=thickness))
