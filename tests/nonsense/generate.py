@@ -145,6 +145,8 @@ class Writer:
                 declared = declared if a is f.arguments[0] and f.name.endswith('_sized') else ''
             elif a is chosen:
                 right = expression
+            if a.name == 'length' and chosen and chosen.name == 'text' and expression != 'NULL':
+                right = f'strlen({expression})'     # a wrong text, but no lie about it
             lines += [declared] if declared else []
             arguments.append(right)
             checks += [untouched] if untouched else []
