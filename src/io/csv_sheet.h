@@ -130,8 +130,8 @@ static inline void put_failed_row(sheet *s, int empty, const char *note) {
 
 /* ---- kinds of results ---- */
 
-void pk_csv_aim(sheet *s, const picket_result *result); /* csv_aim.c */
-void pk_csv_taper(sheet *s, const picket_result *result); /* csv_taper.c */
+void pk_csv_aim(sheet *s, const picket_result *result);       /* csv_aim.c */
+void pk_csv_taper(sheet *s, const picket_result *result);     /* csv_taper.c */
 void pk_csv_tolerance(sheet *s, const picket_result *result); /* csv_tolerance.c */
 
 #endif

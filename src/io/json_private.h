@@ -29,7 +29,7 @@ struct json_t *pk_json_quantity(picket_quantity q, double scale);
 struct json_t *pk_json_aim(const void *user, int i); /* json_aim.c */
 /* Of answer i of edges; json_compare.c. */
 struct json_t *pk_json_comparisons(const void *user, int i);
-struct json_t *pk_json_taper(const void *user, int i); /* json_taper.c */
+struct json_t *pk_json_taper(const void *user, int i);     /* json_taper.c */
 struct json_t *pk_json_tolerance(const void *user, int i); /* json_tolerance.c */
 
 #endif

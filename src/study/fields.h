@@ -28,7 +28,8 @@ picket_status pk_mode_field(const pk_problem *problem, pk_polarization polarizat
                             double wavelength_um, const picket_options *options, int order,
                             picket_field **out);
 
-/* One mode of a look on a grid of the caller's. PICKET_ERROR_NUMERIC if it cannot be followed there.
+/* One mode of a look on a grid of the caller's. PICKET_ERROR_NUMERIC if it cannot be followed
+ * there.
  */
 picket_status pk_field_on(const pk_look *look, pk_level *level, const pk_followed *mode,
                           picket_field **out);
