@@ -9,6 +9,7 @@
 #include <picket/derivative.h>
 #include <picket/edges.h>
 #include <picket/field.h>
+#include <picket/figure.h>
 #include <picket/index.h>
 #include <picket/match.h>
 #include <picket/modes.h>

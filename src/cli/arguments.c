@@ -13,6 +13,8 @@ typedef enum option_kind {
   OPTION_CSV,
   OPTION_RESUME,
   OPTION_FIELDS,
+  OPTION_FIGURE,
+  OPTION_KEEP_SCRIPT,
   OPTION_SET,
   OPTION_SWEEP,
   OPTION_MATCH, /* of match_option.c */
@@ -21,8 +23,7 @@ typedef enum option_kind {
   OPTION_VERBOSE,
   OPTION_HELP,
   OPTION_VERSION,
-  OPTION_NUMBER, /* of picket_option_at */
-  OPTION_LATER   /* known, but not in this version */
+  OPTION_NUMBER /* of picket_option_at */
 } option_kind;
 
 typedef struct option {
@@ -41,7 +42,8 @@ static const option OPTIONS[] = {
     {"verbose", OPTION_VERBOSE, NULL},
     {"help", OPTION_HELP, NULL},
     {"version", OPTION_VERSION, NULL},
-    {"figure", OPTION_LATER, NULL},
+    {"figure", OPTION_FIGURE, "a file name"},
+    {"keep-script", OPTION_KEEP_SCRIPT, NULL},
     {"fields", OPTION_FIELDS, "a file name"},
     {"sweep", OPTION_SWEEP, "PATH=FROM:TO:COUNT"},
     {"mode", OPTION_MATCH, "a number"},
@@ -135,12 +137,11 @@ static int apply(pk_arguments *a, const option *o, const char *value) {
     case OPTION_SWEEP: return pk_sweep_parse(&a->sweep, value);
     case OPTION_MATCH: return pk_match_option(&a->match, o->name, value);
     case OPTION_NUMBER: return set_number(a, o->name, value);
-    case OPTION_LATER:
-      return pk_complain(PK_EXIT_WRONG, "--%s is not in this version (%s)", o->name,
-                         picket_version());
     case OPTION_CSV: return set_file(&a->csv, o->name, value);
     case OPTION_RESUME: return set_file(&a->resume, o->name, value);
     case OPTION_FIELDS: return set_file(&a->fields, o->name, value);
+    case OPTION_FIGURE: return set_file(&a->figure, o->name, value);
+    case OPTION_KEEP_SCRIPT: a->keep_script = true; break;
   }
   return PK_EXIT_DONE;
 }
@@ -155,7 +156,7 @@ static int parse_option(pk_arguments *a, int argc, char **argv, int *i) {
     return unknown_option(name, length);
   }
   const char *value = equals ? equals + 1 : NULL;
-  if (!o.value && value && o.kind != OPTION_LATER) {
+  if (!o.value && value) {
     return pk_complain(PK_EXIT_WRONG, "--%s takes no value", o.name);
   }
   if (o.value && !value) {
@@ -209,6 +210,21 @@ static bool is_same_file(const char *a, const char *b) {
          first.st_ino == second.st_ino;
 }
 
+/* What --figure needs. */
+static int check_figure(const pk_arguments *a) {
+  picket_figure_format format;
+  if (a->keep_script && !a->figure) {
+    return pk_complain(PK_EXIT_WRONG, "--keep-script keeps the script of a --figure; name one");
+  }
+  if (a->figure && !pk_figure_format(a->figure, &format)) {
+    return pk_complain(PK_EXIT_WRONG,
+                       "--figure is \"%.200s\", must be the name of a file that ends in .svg, .png "
+                       "or .pdf",
+                       a->figure);
+  }
+  return PK_EXIT_DONE;
+}
+
 /* Options that not every command has. */
 static int check_extras(const pk_arguments *a) {
   const char *name = a->command->name;
@@ -227,8 +243,8 @@ static int check_extras(const pk_arguments *a) {
   if (a->resume && !index && !modes && !tolerance && !taper && !a->sweep.path) {
     return pk_complain(PK_EXIT_WRONG,
                        "--resume is for picket index, modes, taper and tolerance, and for --sweep; "
-                       "picket %s keeps "
-                       "no journal",
+                       "picket %s keeps no "
+                       "journal",
                        name);
   }
   if (a->fields && !index && !modes) {
@@ -255,6 +271,7 @@ static int check_whole(const pk_arguments *a) {
                        a->command->name);
   }
   int status = check_extras(a);
+  status = status == PK_EXIT_DONE ? check_figure(a) : status;
   if (status != PK_EXIT_DONE) {
     return status;
   }
@@ -266,7 +283,8 @@ static int check_whole(const pk_arguments *a) {
     return pk_complain(PK_EXIT_WRONG, "%s is a problem file; name another file for the answer",
                        a->csv);
   }
-  if (is_same_file(a->file, a->csv) || is_same_file(a->file, a->fields)) {
+  if (is_same_file(a->file, a->csv) || is_same_file(a->file, a->fields) ||
+      is_same_file(a->file, a->figure)) {
     return pk_complain(PK_EXIT_WRONG, "%s is the problem file; name another file for the answer",
                        a->file);
   }

@@ -45,6 +45,8 @@ typedef struct pk_arguments {
   const char *csv;    /* or null */
   const char *resume; /* a journal, or null */
   const char *fields; /* an HDF5 file of mode fields, or null */
+  const char *figure; /* a picture, or null */
+  bool keep_script;   /* of the picture, beside it */
   pk_sweep_words sweep;
   pk_match_words match;
   picket_options options;
@@ -139,6 +141,18 @@ int pk_session_problem(const pk_arguments *arguments, picket_context *context,
 /* Takes the line of progress off the terminal. */
 void pk_session_quiet(void);
 
+/* ---- figure_file.c ---- */
+
+/* By the end of the file's name; false if it is none of .svg, .png, .pdf. */
+bool pk_figure_format(const char *path, picket_figure_format *out);
+/* The name of the script kept beside a picture; the caller's, free(). Null: memory is out. */
+char *pk_figure_script_name(const char *path);
+/* Whether the files of --figure can be written, found out before the work; complains. */
+int pk_figure_probe(const pk_arguments *arguments);
+/* The picture of a result, through gnuplot; complains. */
+int pk_figure_deliver(const pk_arguments *arguments, picket_context *context,
+                      picket_problem *problem, picket_result *result);
+
 /* ---- csv_file.c ---- */
 
 /* A file that appears under its name only when it is whole. */
@@ -146,6 +160,7 @@ typedef struct pk_csv_file pk_csv_file;
 /* Opens it before the work, so that a path that cannot be written is known at once. */
 int pk_csv_open(const char *path, pk_csv_file **out);
 int pk_csv_finish(pk_csv_file *file, const char *text); /* writes, renames and frees */
+int pk_csv_finish_bytes(pk_csv_file *file, const char *bytes, size_t length);
 void pk_csv_drop(pk_csv_file *file);                    /* leaves nothing behind; accepts null */
 
 #endif

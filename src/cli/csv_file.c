@@ -105,7 +105,11 @@ void pk_csv_drop(pk_csv_file *file) {
 }
 
 int pk_csv_finish(pk_csv_file *file, const char *text) {
-  bool good = fputs(text, file->stream) >= 0 && fflush(file->stream) == 0;
+  return pk_csv_finish_bytes(file, text, strlen(text));
+}
+
+int pk_csv_finish_bytes(pk_csv_file *file, const char *bytes, size_t length) {
+  bool good = fwrite(bytes, 1, length, file->stream) == length && fflush(file->stream) == 0;
   good = (fclose(file->stream) == 0) && good;
   file->stream = NULL;
   if (good && file->temporary) {

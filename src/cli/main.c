@@ -108,7 +108,7 @@ static picket_status ask(const pk_arguments *a, picket_context *context, picket_
 
 /* The question and its answer. A failure may leave a part of the answer, which is delivered too. */
 static int ask_and_deliver(const pk_arguments *a, picket_context *context, picket_problem *problem,
-                           pk_csv_file *csv) {
+                           pk_csv_file *csv, bool draw) {
   picket_result *result = NULL;
   picket_status found = ask(a, context, problem, &result);
   pk_session_quiet();
@@ -118,6 +118,8 @@ static int ask_and_deliver(const pk_arguments *a, picket_context *context, picke
   }
   if (result) {
     int delivered = deliver(a, context, result, csv);
+    int drawn = draw ? pk_figure_deliver(a, context, problem, result) : PK_EXIT_DONE;
+    delivered = delivered == PK_EXIT_DONE || drawn == PK_EXIT_MACHINE ? drawn : delivered;
     status = status != PK_EXIT_DONE && delivered != PK_EXIT_MACHINE ? status : delivered;
   } else {
     pk_csv_drop(csv);
@@ -149,7 +151,11 @@ static int answer(const pk_arguments *a, picket_context *context) {
     status = write_fields(a, context, problem);
   }
   if (status == PK_EXIT_DONE || status == PK_EXIT_SHORT) { /* short: there may be indices still */
-    int answered = ask_and_deliver(a, context, problem, csv);
+    /* A picture that could not be written is said at once, and does not stop the numbers. */
+    int figure = a->figure ? pk_figure_probe(a) : PK_EXIT_DONE;
+    int answered =
+        ask_and_deliver(a, context, problem, csv, a->figure && figure == PK_EXIT_DONE);
+    answered = figure == PK_EXIT_DONE || answered == PK_EXIT_INTERRUPTED ? answered : figure;
     status = status == PK_EXIT_DONE ? answered : status;
   } else {
     pk_csv_drop(csv);

@@ -205,6 +205,7 @@ void pk_result_free(picket_result *result) {
   pk_free(context, result->shortfall);
   pk_free(context, result->json);
   pk_free(context, result->csv);
+  pk_free(context, result->figure);
   pk_free(context, result);
   pk_context_release(context);
 }

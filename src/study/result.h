@@ -65,6 +65,7 @@ struct picket_result {
   char *sweep_path;    /* what was swept; null: nothing was */
   double *sweep_value; /* [count] of the answers, or null */
   char *json, *csv;    /* made when first asked for */
+  char *figure;        /* the script given out last, or null */
   char **lines;        /* of a summary, for people; [count], or null */
   char **texts;        /* notes that are not static, each once */
   int text_count, text_capacity;

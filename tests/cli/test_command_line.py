@@ -55,7 +55,6 @@ class CommandLine(tool.ToolTest):
     def test_what_comes_later_says_so(self):
         for command in LATER:
             self.assert_refused(command, 'x.yaml', says=[command, 'not in this version'])
-        self.assert_refused('edges', '--figure', 'a.svg', 'x.yaml', says=['--figure', 'not in this version'])
 
     def test_missing_and_extra_words(self):
         self.assert_refused('edges', says=['problem file'])

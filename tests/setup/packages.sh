@@ -8,7 +8,7 @@ set -eu
 build_packages="gcc libc6-dev cmake make pkg-config
   libsuitesparse-dev libarpack2-dev libopenblas-dev libyaml-dev libjansson-dev libhdf5-dev"
 # gfortran brings the library that a static link of OpenBLAS names.
-test_packages="libcmocka-dev g++ gfortran clang clang-format gcovr
+test_packages="gnuplot-nox libcmocka-dev g++ gfortran clang clang-format gcovr
   python3 python3-numpy python3-scipy python3-mpmath python3-jsonschema python3-yaml python3-h5py
   python3-pytest python3-pip python3-setuptools python3-wheel python3-matplotlib"
 
