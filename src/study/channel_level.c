@@ -45,6 +45,20 @@ void pk_channel_survey_clear(pk_channel_survey *s) {
   pk_section_survey_clear(&s->section);
 }
 
+picket_status pk_channel_survey_set_apart(pk_channel_survey *s, bool *done) {
+  const pk_section_survey before = s->section;
+  picket_status status = pk_section_survey_set_apart(&s->section, done);
+  bool all = true;
+  for (int side = 0; side < PK_SIDES; side++) {
+    all = all && s->section.leaks[side];
+  }
+  if (status == PICKET_OK && all) {
+    s->section = before; /* arrays are the same */
+    *done = false;
+  }
+  return status;
+}
+
 bool pk_channel_survey_is_mixed(const pk_channel_survey *s) {
   return !s->section.mirror[0] && !s->section.mirror[1];
 }

@@ -27,6 +27,10 @@ picket_status pk_channel_survey_take(const pk_problem *problem, pk_polarization 
                                      double wavelength_um, pk_channel_survey *out);
 void pk_channel_survey_clear(pk_channel_survey *survey); /* accepts zeros */
 
+/* As pk_section_survey_set_apart, but only for sides beyond the shapes, such as a substrate: a
+ * channel that lies below all its surroundings in index guides nothing. */
+picket_status pk_channel_survey_set_apart(pk_channel_survey *survey, bool *done);
+
 /* True if the planes of symmetry do not tell te-like from tm-like modes. */
 bool pk_channel_survey_is_mixed(const pk_channel_survey *survey);
 

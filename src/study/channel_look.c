@@ -62,7 +62,7 @@ static picket_status look_at(const pk_problem *problem, pk_polarization polariza
   pk_channel_outlook l = {.leaks = false};
   picket_status status = pk_channel_survey_take(problem, polarization, wavelength_um, &l.survey);
   if (status == PICKET_OK && apart) {
-    status = pk_section_survey_set_apart(&l.survey.section, &l.leaks);
+    status = pk_channel_survey_set_apart(&l.survey, &l.leaks);
   }
   if (status == PICKET_OK) {
     const pk_section_survey *s = &l.survey.section;
@@ -88,7 +88,7 @@ static picket_status guess(const pk_problem *problem, pk_polarization polarizati
       pk_channel_survey_take(problem, polarization, into_range(problem, 4 * pitch), &s);
   bool done = false;
   if (status == PICKET_OK && apart) {
-    status = pk_section_survey_set_apart(&s.section, &done);
+    status = pk_channel_survey_set_apart(&s, &done);
   }
   if (status == PICKET_OK) {
     *index = sqrt(s.section.top * fmax(s.section.cut, 1));

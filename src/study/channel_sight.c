@@ -138,7 +138,7 @@ static picket_status attempt(const pk_problem *problem, pk_polarization polariza
   pk_channel_sight s = {.k0 = 2 * PI / wavelength_um};
   picket_status status = pk_channel_survey_take(problem, polarization, wavelength_um, &s.survey);
   if (status == PICKET_OK && apart) {
-    status = pk_section_survey_set_apart(&s.survey.section, &s.leaks);
+    status = pk_channel_survey_set_apart(&s.survey, &s.leaks);
   }
   double top = s.survey.section.top, cut = s.survey.section.cut;
   if (status == PICKET_OK && top > cut && (!apart || s.leaks)) {
