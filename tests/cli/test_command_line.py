@@ -5,7 +5,7 @@ import unittest
 import tool
 
 COMMANDS = ('check', 'edges', 'bands', 'index', 'modes', 'slab', 'match')
-LATER = ('tolerance', 'report', 'start')
+LATER = ('report', 'start')
 
 
 class CommandLine(tool.ToolTest):
