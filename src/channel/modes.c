@@ -17,19 +17,22 @@
 #include "eigen/eigen.h"
 
 /* Vectors with a larger residual get steps of inverse iteration, each of which gains the distance
- * to the shift over that to the next mode. */
-static const double GOAL = 1e-11;
+ * to the shift over that to the next mode. Of several modes only the nearest would gain for long:
+ * the rest turn into it after a step or two, so they are left as soon as they are good enough. */
+static const double GOAL_ONE = 1e-11, GOAL_MANY = 1e-9;
 enum { REFINEMENTS = 30 };
 /* Below this a residual that no longer halves has met rounding. */
 static const double STALLED = 1e-9;
 /* Of the Ritz values; the values are made from the vectors, by the square. */
-static const double TOLERANCE = 1e-9;
+static const double TOLERANCE = 1e-10;
+enum { BASIS_ONE = 10 }; /* Krylov vectors for a lone one */
 
 typedef struct solve {
   picket_context *context;
   pk_channel *channel;
   int64_t n;
   double k, shift;
+  double goal, growth;  /* of residuals: wanted; allowed in a step */
   double complex *work; /* [n] */
 } solve;
 
@@ -70,8 +73,8 @@ static picket_status refine_vector(solve *s, pk_channel_mode *mode, bool transpo
   for (int step = 0; status == PICKET_OK && step <= REFINEMENTS; step++) {
     take_value(s, mode);
     *residual = pk_channel_residual_of(s->channel, s->k, mode->k0_square, transposed, x, s->work);
-    bool stalled = *residual<STALLED && * residual> 0.5 * before;
-    if (*residual < GOAL || stalled || step == REFINEMENTS) {
+    bool stalled = *residual > before * (*residual < STALLED ? 0.5 : s->growth);
+    if (*residual < s->goal || stalled || step == REFINEMENTS) {
       break;
     }
     before = *residual;
@@ -119,7 +122,11 @@ static picket_status run_arnoldi(solve *s, int wanted, const double complex *sta
     return PICKET_ERROR_MEMORY;
   }
   pk_channel_start(s->channel, start, first);
-  pk_eigen_request request = {.n = s->n, .wanted = wanted, .tolerance = TOLERANCE, .start = first};
+  pk_eigen_request request = {.n = s->n,
+                              .wanted = wanted,
+                              .basis = wanted > 1 ? 0 : BASIS_ONE,
+                              .tolerance = TOLERANCE,
+                              .start = first};
   picket_status status =
       pk_eigen_complex(s->context, &request, apply, s, values, vectors, found, NULL);
   if (status == PICKET_OK && *found == 0) {
@@ -138,6 +145,7 @@ static picket_status take_modes(solve *s, int count, const double complex *vecto
     status = modes[i].right ? PICKET_OK : PICKET_ERROR_MEMORY;
     if (status == PICKET_OK) {
       pk_channel_scale(s->channel, modes[i].right);
+      pk_channel_make_real(s->channel, modes[i].right);
       status = refine(s, &modes[i]);
     }
   }
@@ -149,6 +157,8 @@ picket_status pk_channel_modes_at_k(pk_channel *c, double k, double shift, int w
                                     int *found) {
   solve s = {.context = c->context, .channel = c, .n = c->n, .k = k, .shift = shift};
   wanted = wanted > c->n ? (int)c->n : wanted;
+  s.goal = wanted > 1 ? GOAL_MANY : GOAL_ONE;
+  s.growth = wanted > 1 ? 1 : INFINITY;
   int count = 0;
   double complex *values = PK_NEW(c->context, wanted, double complex);
   double complex *vectors = PK_NEW(c->context, wanted * c->n, double complex);

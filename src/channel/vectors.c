@@ -24,6 +24,12 @@ void pk_channel_scale(const pk_channel *c, double complex *e) {
   }
 }
 
+void pk_channel_make_real(const pk_channel *c, double complex *e) {
+  for (int64_t p = 0; c->factored == PK_REAL && p < c->n; p++) {
+    e[p] = creal(e[p]);
+  }
+}
+
 void pk_channel_start(const pk_channel *c, const double complex *guess, double complex *out) {
   if (guess) {
     memcpy(out, guess, (size_t)c->n * sizeof *out);

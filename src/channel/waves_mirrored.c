@@ -20,11 +20,16 @@
 
 static const double PI = 3.141592653589793238;
 
-/* Residuals worth striving for; each refinement gains |q - q0| over the distance to the next. */
-static const double GOAL = 1e-11;
+/* Residuals worth striving for; each refinement gains |q - q0| over the distance to the next, so of
+ * several waves only the nearest gains for long (modes.c). */
+static const double GOAL_ONE = 1e-11, GOAL_MANY = 1e-9;
 static const double STALLED = 1e-9;
 enum { REFINEMENTS = 30 };
-static const double TOLERANCE = 1e-9;
+/* Of the Ritz values; the values are made from the vectors, by the square. */
+static const double TOLERANCE = 1e-10;
+enum { BASIS_ONE = 10 }; /* Krylov vectors for a lone one */
+/* Of a real matrix q is real or one of a conjugate pair. */
+static const double REAL_ENOUGH = 1e-9;
 
 /* Shifts κ0 in parts of π/Λ: so near to 0 the parts of u could not be told from each other; and
  * nearer to the real axis than this the shift is moved onto it, where factors are real. */
@@ -41,6 +46,7 @@ typedef struct solve {
   pk_channel *channel;
   int64_t n;
   double complex k0_square, centre, shift; /* k_c, κ0 */
+  double goal, growth;                     /* of residuals: wanted; allowed in a step */
   double complex *work, *other;            /* [n] each */
 } solve;
 
@@ -199,8 +205,8 @@ static picket_status refine(solve *s, double complex guess, pair *w, pk_channel_
     mode->k = s->centre + w->kappa;
     mode->residual =
         pk_channel_residual_of(s->channel, mode->k, s->k0_square, false, mode->right, s->work);
-    bool stalled = mode->residual < STALLED && mode->residual > 0.5 * before;
-    if (mode->residual < GOAL || stalled || step == REFINEMENTS) {
+    bool stalled = mode->residual > before * (mode->residual < STALLED ? 0.5 : s->growth);
+    if (mode->residual < s->goal || stalled || step == REFINEMENTS) {
       break;
     }
     before = mode->residual;
@@ -225,6 +231,9 @@ static picket_status take_mode(solve *s, double complex guess, double complex q,
   if (w.even && w.odd && mode->right) {
     memcpy(s->other, u, (size_t)s->n * sizeof *u);
     pk_channel_scale(s->channel, s->other);
+    if (fabs(cimag(q)) < REAL_ENOUGH * cabs(q)) {
+      pk_channel_make_real(s->channel, s->other);
+    }
     split(s, s->other, w.even, w.odd);
     status = refine(s, guess, &w, mode);
   }
@@ -254,7 +263,11 @@ static picket_status run_arnoldi(solve *s, int wanted, const double complex *sta
   if (start) {
     weigh(s, 1 / s->shift, first);
   }
-  pk_eigen_request request = {.n = s->n, .wanted = wanted, .tolerance = TOLERANCE, .start = first};
+  pk_eigen_request request = {.n = s->n,
+                              .wanted = wanted,
+                              .basis = wanted > 1 ? 0 : BASIS_ONE,
+                              .tolerance = TOLERANCE,
+                              .start = first};
   picket_status status =
       pk_eigen_complex(s->context, &request, apply, s, values, vectors, found, NULL);
   if (status == PICKET_OK && *found == 0) {
@@ -306,6 +319,8 @@ picket_status pk_channel_waves_mirrored(pk_channel *c, double k0, double complex
   s.centre = -PI * (2 * c->low + c->count - 1) / c->pitch;
   s.shift = shift_for(&s, guess);
   wanted = wanted > c->n ? (int)c->n : wanted;
+  s.goal = wanted > 1 ? GOAL_MANY : GOAL_ONE;
+  s.growth = wanted > 1 ? 1 : INFINITY;
   int count = 0;
   pk_channel_mode *fresh = PK_NEW(c->context, wanted, pk_channel_mode);
   s.work = PK_NEW(c->context, c->n, double complex);

@@ -107,13 +107,16 @@ static void set_start(krylov *k, const pk_eigen_request *request) {
   const size_t length = (size_t)k->n * k->width;
   const double *guess = request->start;
   uint64_t state = request->seed;
-  double largest = 0.0;
+  double largest = 0.0, imaginary = 0.0;
   for (size_t i = 0; guess && i < length; i++) {
     largest = fmax(largest, fabs(guess[i]));
+    imaginary = i % k->width == 1 ? fmax(imaginary, fabs(guess[i])) : imaginary;
   }
   const double noise = largest > 0.0 ? GUESS_NOISE * largest : 1.0;
+  const bool real = largest > 0.0 && imaginary == 0.0; /* a real guess of a complex vector */
   for (size_t i = 0; i < length; i++) {
-    k->residual[i] = noise * next_random(&state) + (largest > 0.0 ? guess[i] : 0.0);
+    double own = noise * next_random(&state);
+    k->residual[i] = (real && i % k->width == 1 ? 0.0 : own) + (largest > 0.0 ? guess[i] : 0.0);
   }
 }
 

@@ -37,15 +37,14 @@ typedef struct work {
 
 /* The wave between the edges that decays slowest, of the polarization, at a frequency. */
 static picket_status decay_at(const work *w, pk_channel_level *level, double k0, double guess,
-                              double *decay) {
+                              int wanted, double *decay) {
   picket_context *context = level->context;
   double k = PI / w->look.survey.problem->channel.pitch_um;
   pk_channel_mode found[DECAY_CANDIDATES] = {{0}};
   int count = 0;
   picket_status status = pk_channel_media_set(&level->media, k0, level->channel);
   if (status == PICKET_OK) {
-    status =
-        pk_channel_waves(level->channel, k0, k + I * guess, DECAY_CANDIDATES, NULL, found, &count);
+    status = pk_channel_waves(level->channel, k0, k + I * guess, wanted, NULL, found, &count);
   }
   *decay = NAN;
   for (int i = 0; status == PICKET_OK && i < count; i++) {
@@ -79,11 +78,14 @@ static double largest(const double square[2]) {
 }
 
 static picket_status find_decay(const work *w, pk_channel_level *level, double k0, double guess,
-                                double *decay) {
+                                bool known, double *decay) {
   picket_status status = PICKET_OK;
   *decay = NAN;
+  if (known) { /* from another grid: the wave nearest to it is the one */
+    status = decay_at(w, level, k0, guess, 1, decay);
+  }
   for (int i = 0; status == PICKET_OK && isnan(*decay) && i < DECAY_GUESSES; i++) {
-    status = decay_at(w, level, k0, GUESS_PART[i] * guess, decay);
+    status = decay_at(w, level, k0, GUESS_PART[i] * guess, DECAY_CANDIDATES, decay);
   }
   return status;
 }
@@ -96,7 +98,7 @@ static picket_status attenuation(work *w, pk_channel_level *level, const pk_chan
   for (int i = 0; status == PICKET_OK && i < 2; i++) {
     double t = INSIDE[i], decay = NAN;
     double guess = w->decay[i] > 0 ? w->decay[i] : 1.6 * index * width * sqrt(t * (1 - t));
-    status = find_decay(w, level, pair->k0[PK_LONG] + t * width, guess, &decay);
+    status = find_decay(w, level, pair->k0[PK_LONG] + t * width, guess, w->decay[i] > 0, &decay);
     square[i] = decay * decay;
     w->decay[i] = decay > 0 ? decay : w->decay[i];
   }

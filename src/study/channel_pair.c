@@ -84,12 +84,12 @@ static void keep(search *s, pk_channel_mode *mode) {
 }
 
 /* Modes nearest to a value of k0²; *covered is the highest value below which none is missed. */
-static picket_status look_at(search *s, double shift, double least, double *covered) {
+static picket_status look_at(search *s, double shift, double least, int wanted, double *covered) {
   picket_context *context = s->level->context;
   pk_channel_mode found[AT_ONCE] = {{0}};
   int count = 0;
   picket_status status =
-      pk_channel_modes_at_k(s->level->channel, s->k, shift, AT_ONCE, NULL, found, &count);
+      pk_channel_modes_at_k(s->level->channel, s->k, shift, wanted, NULL, found, &count);
   if (status == PICKET_ERROR_NUMERIC) {
     pk_message_clear(context);
     status = PICKET_OK;
@@ -126,7 +126,7 @@ static picket_status climb(search *s, double most, bool (*done)(const search *))
   double shift = least, covered = least;
   picket_status status = PICKET_OK;
   for (int i = 0; status == PICKET_OK && i < MOST_STEPS && covered < most * most; i++) {
-    status = look_at(s, shift, 0.5 * least, &covered);
+    status = look_at(s, shift, 0.5 * least, AT_ONCE, &covered);
     if (status == PICKET_OK && done(s)) {
       break;
     }
@@ -278,8 +278,9 @@ static picket_status near_one(search *s, double guess, pk_channel_mode *mode, bo
   double covered = 0;
   clear(s);
   picket_status status = pk_channel_media_set(&s->level->media, guess, s->level->channel);
-  if (status == PICKET_OK) {
-    status = look_at(s, guess * guess * (1 - SHIFT_OFFSET), 0, &covered);
+  /* Mostly the nearest mode of all is the one; where it is of the other polarization, more are. */
+  for (int wanted = 1; status == PICKET_OK && s->count == 0 && wanted <= AT_ONCE; wanted += 3) {
+    status = look_at(s, guess * guess * (1 - SHIFT_OFFSET), 0, wanted, &covered);
   }
   int i = nearest_to(s, guess);
   if (status == PICKET_OK && i < 0) {
@@ -296,7 +297,7 @@ static picket_status near_both(search *s, const pk_channel_pair *guess, pk_chann
   int chosen[2] = {-1, -1};
   picket_status status = pk_channel_media_set(&s->level->media, middle, s->level->channel);
   if (status == PICKET_OK) {
-    status = look_at(s, middle * middle, 0, &covered);
+    status = look_at(s, middle * middle, 0, AT_ONCE, &covered);
   }
   if (status == PICKET_OK && !choose(s, guess, chosen)) {
     status = pk_fail(s->level->context, PICKET_ERROR_NUMERIC,

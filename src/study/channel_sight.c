@@ -223,7 +223,7 @@ static picket_status follow_among(const pk_channel_sight *s, pk_channel_level *l
 
 picket_status pk_channel_sight_follow(const pk_channel_sight *s, pk_channel_level *level,
                                       pk_channel_mode *out) {
-  static const int wanted[] = {2, 4, CANDIDATES, 1};
+  static const int wanted[] = {1, 2, 4, CANDIDATES};
   bool done = false;
   picket_status status = PICKET_OK;
   for (size_t i = 0; status == PICKET_OK && !done && i < sizeof wanted / sizeof *wanted; i++) {
