@@ -2,6 +2,7 @@
 
 import csv
 import json
+import math
 import unittest
 
 import tool
@@ -101,6 +102,18 @@ class Modes(tool.ToolTest):
                 self.assertAlmostEqual(mode['group_index']['value'], 1.444**2 / index,
                                        delta=mode['group_index']['uncertainty'])
             self.assertEqual(len(point['modes']), 3)
+
+    def test_leaning_walls(self):
+        """A trapezoid lies between the upright wires of its narrow and of its wide end."""
+        def fundamental(text):
+            _, (point,) = self.ask(text, '--count', '1', '--accuracy', '1e-3')
+            return point['modes'][0]['index']
+        leaning = fundamental(WIRE.replace('height_nm: 220', 'height_nm: 220, wall_angle_deg: 8'))
+        half = 110 * math.tan(math.radians(8))
+        narrow, wide = (fundamental(WIRE.replace('width_nm: 450', f'width_nm: {450 + sign * 2 * half}'))
+                        for sign in (-1, 1))
+        self.assertGreater(leaning['value'] - leaning['uncertainty'], narrow['value'] + narrow['uncertainty'])
+        self.assertLess(leaning['value'] + leaning['uncertainty'], wide['value'] - wide['uncertainty'])
 
     def test_a_section_that_guides_nothing(self):
         document, (point,) = self.ask(WIRE.replace('fill: core', 'fill: oxide'))

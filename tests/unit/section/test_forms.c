@@ -191,6 +191,51 @@ static void a_pair_comes_whole(void **state) {
   plane_close(&p);
 }
 
+enum { SET = 6 };
+
+/* Power-orthonormal: |P(a, b) - δ_ab| of all modes of a guide with equal ones among them. */
+static void check_set(plane *p, double half, double reach) {
+  ruler r = {PK_END_ZERO, PK_END_ZERO, -half - reach, half + reach, half, 0.09,
+             0.25,        2,           {-half, half}};
+  lay_ruler(p->context, &r, &p->x);
+  lay_ruler(p->context, &r, &p->y);
+  pk_section *section = plane_section(p, 1, true);
+  pk_section_mode modes[SET];
+  pk_section_fields fields[SET];
+  int found = 0;
+  const double k0 = 2 * PI / 1.55;
+  assert_int_equal(pk_section_modes(section, k0, 12.1 * k0 * k0, SET, modes, &found), PICKET_OK);
+  assert_int_equal(found, SET);
+  /* The lowest pair is equal on a grid that is the same along x and y. */
+  assert_near(creal(modes[0].beta - modes[1].beta) / k0, 0, 1e-9);
+  for (int i = 0; i < SET; i++) {
+    assert_int_equal(pk_section_fields_take(section, k0, &modes[i], &fields[i]), PICKET_OK);
+  }
+  for (int a = 0; a < SET; a++) {
+    for (int b = 0; b < SET; b++) {
+      double complex product = pk_section_product(section, &fields[a], &fields[b]);
+      assert_near(cabs(product - (a == b)), 0, 1e-8);
+    }
+  }
+  for (int i = 0; i < SET; i++) {
+    pk_section_fields_clear(&fields[i]);
+  }
+  pk_section_modes_clear(p->context, found, modes);
+  pk_section_free(section);
+  plane_close(p);
+}
+
+static void sets_with_pairs_are_orthonormal(void **state) {
+  (void)state;
+  const double complex index[PLANE_MEDIA] = {1.444, 3.4757, 1};
+  plane square = plane_of(index, 0);
+  plane_rect(&square, 1, 0, 0, 0.7, 0.7);
+  check_set(&square, 0.35, 0.6);
+  plane round = plane_of(index, 0);
+  plane_disc(&round, 1, 0.8);
+  check_set(&round, 0.4, 0.6);
+}
+
 /* E_x alone in a guide of electric walls: TE01, E_x = sin(πy/b): ex_share 1, and the effective area
  * (∫sin²)²/∫sin⁴ = (ab/2)² / (3ab/8) = 2ab/3. */
 static void looks_of_a_sine(void **state) {
@@ -280,6 +325,7 @@ int main(void) {
       cmocka_unit_test(group_index_is_the_slope),
       cmocka_unit_test(pulls_and_shares),
       cmocka_unit_test(a_pair_comes_whole),
+      cmocka_unit_test(sets_with_pairs_are_orthonormal),
       cmocka_unit_test(looks_of_a_sine),
       cmocka_unit_test(short_of_memory),
   };
