@@ -23,6 +23,7 @@ static const struct {
     STRUCT(picket_edge_estimate),
     STRUCT(picket_edges_answer),
     STRUCT(picket_field_description),
+    STRUCT(picket_figure_options),
     STRUCT(picket_gap),
     STRUCT(picket_index_answer),
     STRUCT(picket_index_derivative),

@@ -31,6 +31,9 @@ GOOD = {('picket_problem_read_file', 'path'): 'e->file', ('picket_struct_size', 
         ('picket_section_field_places', 'axis'): 'PICKET_AXIS_X', (ANY, 'user'): 'NULL', (ANY, 'log'): 'NULL',
         (ANY, 'progress'): 'NULL', (ANY, 'other'): 'NULL', (ANY, 'request'): '&e->{type}'}
 
+# Structs with a size stamp besides picket_options; harness.h holds a right one and wrong ones.
+STAMPED = ('picket_sweep_request', 'picket_match_request', 'picket_context_options', 'picket_figure_options')
+
 # Long work: only what is refused before it begins is tried.
 SLOW = re.compile(r'_(find|find_resumable|compare|write)$')
 # Always right where it is asked: anything goes.
@@ -83,7 +86,7 @@ class Writer:
         """The kind of result that a function asks: picket_edges_get wants one of edges."""
         kind = re.sub(r'^picket_|_(get|count)$', '', function)
         return {'result_json': 'slab', 'result_json_get': 'slab', 'result_csv': 'slab', 'result_csv_get': 'slab',
-                'edges_comparison': 'comparison', 'summary_line': 'summary', 'sweep_path': 'sweep', 'sweep_value': 'sweep'}.get(kind, kind)
+                'edges_comparison': 'comparison', 'result_figure': 'edges', 'summary_line': 'summary', 'sweep_path': 'sweep', 'sweep_value': 'sweep'}.get(kind, kind)
 
     def good(self, f, a):
         """(declaration or '', expression, check that the output is untouched or '', how to let go of it)"""
@@ -118,11 +121,11 @@ class Writer:
             if a.base == 'char' and a.depth == 1:
                 found += [('""', False), ('e->endless', False), ('"\\xff\\xfe\\x01"', False), ('"..."', False)]
             if a.base == 'picket_result' and a.depth == 1:
-                found += [('result(e, "summary")', f.name.endswith('_get') and not re.search('json|csv', f.name)),
+                found += [('result(e, "summary")', f.name.endswith('_get') and not re.search('json|csv|figure', f.name)),
                           ('result(e, "edges")', False)]
             if a.base == 'picket_options' and a.const:
                 found += [(f'&e->wrong_options[{i}]', True) for i in range(9)]
-            if a.base in ('picket_sweep_request', 'picket_match_request', 'picket_context_options') and a.const:
+            if a.base in STAMPED and a.const:
                 found += [(f'&e->wrong_{a.base}[{i}]', True) for i in range(4)]
             return found
         if a.base == 'double':

@@ -35,6 +35,7 @@ typedef struct env {
   picket_context_options picket_context_options, wrong_picket_context_options[4];
   picket_sweep_request picket_sweep_request, wrong_picket_sweep_request[4];
   picket_match_request picket_match_request, wrong_picket_match_request[4];
+  picket_figure_options picket_figure_options, wrong_picket_figure_options[4];
   double value; /* of the sweep */
   double *room; /* [ROOM] */
   char *endless;

@@ -66,6 +66,8 @@ static void make_wrong(env *e) {
     e->wrong_picket_sweep_request[i].size = sizes[i];
     e->wrong_picket_match_request[i] = e->picket_match_request;
     e->wrong_picket_match_request[i].size = sizes[i];
+    e->wrong_picket_figure_options[i] = e->picket_figure_options;
+    e->wrong_picket_figure_options[i].size = sizes[i];
   }
 }
 
@@ -75,6 +77,7 @@ static bool make(env *e) {
   e->picket_options.count = 1;
   picket_context_options_init(&e->picket_context_options);
   picket_match_request_init(&e->picket_match_request);
+  picket_figure_options_init(&e->picket_figure_options);
   picket_sweep_request_init(&e->picket_sweep_request);
   e->picket_sweep_request.path = "cell.pitch_nm";
   e->picket_sweep_request.count = 1;
