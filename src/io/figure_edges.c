@@ -186,14 +186,29 @@ static void put_operating(pk_figure *f) {
   }
 }
 
-static void put_plot(pk_figure *f) {
-  pk_put(f, "plot keyentry with boxes fc rgb '" PK_SLATE "' title 'stop band'");
+/* The key names what there is. */
+static void put_key(pk_figure *f) {
+  bool band = false, estimate = false;
+  for (int i = 0; i < f->result->count; i++) {
+    band = band || f->result->edges[i].band_count > 0;
+    estimate = estimate || isfinite(f->result->edges[i].estimate.centre_um);
+  }
   double from = 0, to = 0;
+  pk_put(f, "plot NaN");
+  if (band) {
+    pk_put(f, ", keyentry with boxes fc rgb '" PK_SLATE "' title 'stop band'");
+  }
   if (pk_figure_light(f->problem, &from, &to)) {
     pk_put(f, ", keyentry with boxes fc rgb '" PK_SAND "' title '%s'",
            from < to ? "operating band" : "operating wavelength");
   }
-  pk_put(f, ", keyentry with points pt 13 ps 1.6 lc rgb '" PK_RUST "' title 'estimated centre'");
+  if (estimate) {
+    pk_put(f, ", keyentry with points pt 13 ps 1.6 lc rgb '" PK_RUST "' title 'estimated centre'");
+  }
+}
+
+static void put_plot(pk_figure *f) {
+  put_key(f);
   for (int i = 0; i < f->result->count; i++) {
     pk_put(f,
            ", \\\n  $edges_%d using (($3+$5)/2):1:3:5:($1-%g):($1+%g) with boxxyerror fc rgb "

@@ -73,13 +73,13 @@ bool pk_figure_light(const pk_problem *problem, double *from_nm, double *to_nm);
 
 /* ---- kinds of pictures ----
  * PICKET_ERROR_UNSUPPORTED, message set, if nothing could be drawn. */
-picket_status pk_figure_edges(pk_figure *f);       /* figure_edges.c */
-picket_status pk_figure_edges_sweep(pk_figure *f); /* figure_sweep.c */
-picket_status pk_figure_bands(pk_figure *f);       /* figure_bands.c */
-picket_status pk_figure_index(pk_figure *f);       /* figure_index.c */
-picket_status pk_figure_modes(pk_figure *f);       /* figure_modes.c */
-picket_status pk_figure_slab(pk_figure *f);        /* figure_modes.c */
-picket_status pk_figure_problem(pk_figure *f);     /* figure_map.c */
+picket_status pk_figure_edges(pk_figure *f);     /* figure_edges.c */
+picket_status pk_figure_bands(pk_figure *f);     /* figure_bands.c */
+picket_status pk_figure_index(pk_figure *f);     /* figure_index.c */
+picket_status pk_figure_modes(pk_figure *f);     /* figure_modes.c */
+picket_status pk_figure_slab(pk_figure *f);      /* figure_modes.c */
+picket_status pk_figure_problem(pk_figure *f);   /* figure_map.c */
+picket_status pk_figure_tolerance(pk_figure *f); /* figure_tolerance.c */
 
 /* ---- figure_map.c ---- */
 

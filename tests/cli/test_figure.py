@@ -135,6 +135,24 @@ cell:
         corners = [row[:2] for row in data['section_shapes'] if row[2] > 3]
         self.assertEqual(corners, [[225, 0], [225, 220], [-225, 220], [-225, 0], [225, 0]])
 
+    def test_sensitivities_are_those_of_the_table(self):
+        text = tool.stack() + '''tolerance:
+  spreads:
+    - {vary: cell.shapes.0.to_nm, from: 48, to: 53}
+    - {vary: cell.pitch_nm, sigma_nm: 1}
+  require: {quantity: clearance_nm, at_least: 200}
+'''
+        rows, data = self.draw('tolerance', text)
+        value = {row['vary'] or row['row']: float(row['value']) for row in rows}
+        # The longest on top: three standard deviations of the pitch, then the range about 50 nm.
+        for drawn, name, ends in zip(data['reach_0'], ('cell.pitch_nm', 'cell.shapes.0.to_nm'), ((-3, 3), (-2, 3))):
+            for number, end in zip(drawn[1:3], ends):
+                self.assertAlmostEqual(number, value['nominal'] + end * value[name], delta=1e-9)
+        self.assertEqual(data['worst_0'][0][1], value['worst corner'])
+        written = texts(self.folder / 'out.svg')
+        for word in ('clearance_nm (nm)', 'cell.pitch_nm', 'requirement', 'worst corner'):
+            self.assertIn(word, written)
+
     def test_map_of_a_cell(self):
         """A disc is round, and wraps where it crosses the end of the period."""
         text = tool.MATERIALS.format(name='x') + '''cell:
