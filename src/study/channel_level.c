@@ -59,10 +59,6 @@ picket_status pk_channel_survey_set_apart(pk_channel_survey *s, bool *done) {
   return status;
 }
 
-bool pk_channel_survey_is_mixed(const pk_channel_survey *s) {
-  return !s->section.mirror[0] && !s->section.mirror[1];
-}
-
 picket_status pk_channel_survey_lay(const pk_channel_survey *s, double index, double reach,
                                     bool closed, double accuracy, pk_end outer, pk_axis *x,
                                     pk_axis *y) {

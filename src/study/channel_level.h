@@ -31,9 +31,6 @@ void pk_channel_survey_clear(pk_channel_survey *survey); /* accepts zeros */
  * channel that lies below all its surroundings in index guides nothing. */
 picket_status pk_channel_survey_set_apart(pk_channel_survey *survey, bool *done);
 
-/* True if the planes of symmetry do not tell te-like from tm-like modes. */
-bool pk_channel_survey_is_mixed(const pk_channel_survey *survey);
-
 /* A base grid for modes of an index; see pk_section_wish. */
 picket_status pk_channel_survey_lay(const pk_channel_survey *survey, double index, double reach,
                                     bool closed, double accuracy, pk_end outer, pk_axis *x,
