@@ -34,7 +34,9 @@ if [ -n "$table" ]; then
 fi
 "$build/benchmark_point"
 "$build/benchmark_all_modes"
+"$build/benchmark_section"
 cmake --build "$build" --target picket_tool -j 2 >>"$build.log" 2>&1 || { cat "$build.log" >&2; exit 1; }
+/usr/bin/python3 "$here/benchmarks/wire.py" "$build/picket"
 /usr/bin/python3 "$here/benchmarks/sweep_workers.py" "$build/picket" "$here/examples/bus_section.yaml"
 if /usr/bin/python3 -c 'import scipy' 2>/dev/null; then
   /usr/bin/python3 "$here/benchmarks/compare_scipy.py" "$build/benchmark_peer"
