@@ -216,6 +216,13 @@ static int check_figure(const pk_arguments *a) {
   if (a->keep_script && !a->figure) {
     return pk_complain(PK_EXIT_WRONG, "--keep-script keeps the script of a --figure; name one");
   }
+  if (a->figure &&
+      (a->sweep.path || a->command->find == picket_aim_find || pk_is_match(a->command))) {
+    return pk_complain(
+        PK_EXIT_WRONG, "--figure has no picture of %s%s",
+        a->sweep.path ? "a sweep; set one value with --set, or take --csv" : "picket ",
+        a->sweep.path ? "" : a->command->name);
+  }
   if (a->figure && !pk_figure_format(a->figure, &format)) {
     return pk_complain(PK_EXIT_WRONG,
                        "--figure is \"%.200s\", must be the name of a file that ends in .svg, .png "
@@ -238,7 +245,8 @@ static int check_extras(const pk_arguments *a) {
   bool tolerance = a->command->find == picket_tolerance_find;
   bool taper = a->command->find == picket_taper_find;
   if (a->compare && (a->command->find != picket_edges_find || a->sweep.path)) {
-    return pk_complain(PK_EXIT_WRONG, "--compare is for picket edges of a channel, without --sweep");
+    return pk_complain(PK_EXIT_WRONG,
+                       "--compare is for picket edges of a channel, without --sweep");
   }
   if (a->resume && !index && !modes && !tolerance && !taper && !a->sweep.path) {
     return pk_complain(PK_EXIT_WRONG,

@@ -14,11 +14,11 @@ static drawer drawer_of(const picket_result *result) {
     case PK_RESULT_INDEX: return sweep ? NULL : pk_figure_index;
     case PK_RESULT_MODES: return sweep ? NULL : pk_figure_modes;
     case PK_RESULT_SLAB: return sweep ? NULL : pk_figure_slab;
+    case PK_RESULT_TAPER: return pk_figure_taper;
     case PK_RESULT_TOLERANCE: return pk_figure_tolerance;
     case PK_RESULT_SUMMARY: return pk_figure_problem;
     case PK_RESULT_AIM:
     case PK_RESULT_MATCH:
-    case PK_RESULT_TAPER:
     case PK_RESULT_EDGE_DERIVATIVES:
     case PK_RESULT_INDEX_DERIVATIVES: break;
   }

@@ -190,6 +190,18 @@ static void put_regimes(pk_figure *f, int i, const view *v, bool seen[2]) {
   }
 }
 
+/* Whether any group index is known; if not, gnuplot needs a range. */
+static bool has_group_index(const picket_result *result, int i, const view *v) {
+  reading r;
+  bool any = false;
+  for (int p = 0; p < v->points(result, i); p++) {
+    for (int m = 0; v->read(result, i, p, m, &r); m++) {
+      any = any || (r.order >= 0 && r.order < MOST_ORDERS && isfinite(r.group_index.value));
+    }
+  }
+  return any;
+}
+
 /* One panel; the key with the upper one. `column` of the data: 2 for the index, 4 for the group
  * index. */
 static void put_panel(pk_figure *f, int i, const view *v, int column, bool estimate,
@@ -245,12 +257,14 @@ static void put_column(pk_figure *f, int i, view *v, int left, int right) {
   if (v->word) {
     pk_put(f, "set label 10 '%s' at graph 0,1 offset 0,1.5 left\n", v->word(f->result, i));
   }
+  pk_figure_range(f, true);
   put_panel(f, i, v, 2, estimate, seen);
   pk_put(f, "unset label 1\nunset label 2\nunset label 10\nset key off\n");
   pk_figure_place(f, left, right, TOP + PANEL + BETWEEN, TOP + 2 * PANEL + BETWEEN);
   pk_put(f,
          "set format x '%%g'\nset xlabel 'vacuum wavelength (nm)' offset 0,0.2\n"
          "set ylabel 'group index (1)' offset 1,0\n");
+  pk_figure_range(f, has_group_index(f->result, i, v));
   put_panel(f, i, v, 4, false, seen);
   pk_put(f, "unset object\n");
 }
@@ -264,7 +278,7 @@ static picket_status draw(pk_figure *f, view *v, const char *shows) {
   double from = v->from_nm, to = v->to_nm;
   pk_figure_open(f, shows, TOP + 2 * PANEL + BETWEEN + AXIS);
   pk_put(f,
-         "set multiplot\nset xrange [%.10g:%.10g]\nset yrange [*:*]\n"
+         "set multiplot\nset xrange [%.10g:%.10g]\n"
          "set offsets 0,0,graph 0.08,graph 0.08\n",
          from, to);
   int width = (RIGHT - LEFT - APART * (columns - 1)) / columns;

@@ -179,6 +179,13 @@ void pk_figure_say(pk_figure *f, int rows, const char *text) {
   f->line++;
 }
 
+void pk_figure_range(pk_figure *f, bool any) {
+  pk_put(f,
+         any ? "set yrange [*:*]\nunset label 90\n"
+             : "set yrange [0:1]\nset label 90 'no values' at graph 0.5,0.5 center textcolor rgb "
+               "'" PK_FAINT "'\n");
+}
+
 void pk_figure_place(pk_figure *f, int left, int right, int top, int bottom) {
   pk_put(f,
          "set lmargin at screen %.4f\nset rmargin at screen %.4f\nset tmargin at screen %.4f\n"

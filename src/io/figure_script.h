@@ -52,6 +52,10 @@ void pk_figure_say(pk_figure *f, int rows, const char *text);
 /* Tics of an axis ("x" or "y") over `dots`, as many as have room for their numbers. */
 void pk_figure_tics(pk_figure *f, const char *axis, double from, double to, int dots);
 
+/* The vertical range of the next panel: as the data have it, or one that says there are none, for
+ * gnuplot refuses to find a range without a value. */
+void pk_figure_range(pk_figure *f, bool any);
+
 /* The place of a panel on the page, in dots from the left and the top. */
 void pk_figure_place(pk_figure *f, int left, int right, int top, int bottom);
 
@@ -79,6 +83,7 @@ picket_status pk_figure_index(pk_figure *f);     /* figure_index.c */
 picket_status pk_figure_modes(pk_figure *f);     /* figure_modes.c */
 picket_status pk_figure_slab(pk_figure *f);      /* figure_modes.c */
 picket_status pk_figure_problem(pk_figure *f);   /* figure_map.c */
+picket_status pk_figure_taper(pk_figure *f);     /* figure_taper.c */
 picket_status pk_figure_tolerance(pk_figure *f); /* figure_tolerance.c */
 
 /* ---- figure_map.c ---- */

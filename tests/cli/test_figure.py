@@ -112,6 +112,11 @@ cell:
         for word in ('Bloch index (1)', 'group index (1)', 'stop band', 'estimate'):
             self.assertIn(word, written)
 
+    def test_a_panel_without_values_says_so(self):
+        """Inside a stop band there is no group index."""
+        self.draw('index', tool.stack().replace('[1500, 1580]', '1000'))
+        self.assertIn('no values', texts(self.folder / 'out.svg'))
+
     def test_film_modes_are_those_of_the_table(self):
         rows, data = self.draw('slab', tool.film())
         names = ['wavelength_nm', 'index', 'index_uncertainty', 'group_index', 'group_index_uncertainty']
@@ -152,6 +157,21 @@ cell:
         written = texts(self.folder / 'out.svg')
         for word in ('clearance_nm (nm)', 'cell.pitch_nm', 'requirement', 'worst corner'):
             self.assertIn(word, written)
+
+    def test_teeth_are_those_of_the_table(self):
+        text = tool.stack().replace('polarization: ey', 'polarization: both') + '''taper:
+  teeth: 4
+  at_nm: 1550
+  changes:
+    - {vary: cell.shapes.0.to_nm, from: 0, to: 60, law: cosine}
+'''
+        rows, data = self.draw('taper', text)
+        drawn = data['taper_0'] + data['taper_1']
+        for line, row in zip(drawn, rows, strict=True):
+            self.assert_equal_numbers(line[:-1], row, ['tooth', 'bloch_index', 'bloch_index_uncertainty',
+                                                       'mode_size_um', 'mode_size_uncertainty_um', 'overlap_next',
+                                                       'overlap_next_uncertainty'])
+        self.assertIn('mode size, 4σ (µm)', texts(self.folder / 'out.svg'))
 
     def test_map_of_a_cell(self):
         """A disc is round, and wraps where it crosses the end of the period."""
@@ -292,6 +312,8 @@ cell:
         self.assert_refused('edges', path, '--figure', 'e.bmp', says=['e.bmp', '.svg, .png or .pdf'])
         self.assert_refused('edges', path, '--figure', '.svg', says=['.svg, .png or .pdf'])
         self.assert_refused('edges', path, '--keep-script', says=['--figure'])
+        self.assert_refused('aim', path, '--figure', 'e.svg', says=['no picture of picket aim'])
+        self.assert_refused('edges', path, '--figure', 'e.svg', '--sweep', 'cell.pitch_nm=190,200', says=['a sweep'])
 
     def test_nothing_to_draw(self):
         done = self.run_tool('check', self.write(tool.film()), '--figure', 'e.svg', status=2)
