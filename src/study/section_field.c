@@ -259,7 +259,8 @@ static picket_status solve_family(finder *f, const pk_section_family *family) {
     status = pk_section_member_open(&f->survey, &x, &y, m, &section);
   }
   if (status == PICKET_OK) {
-    status = pk_section_member_solve(&f->survey, &x, &closed_y, m, section, family->count, modes);
+    status =
+        pk_section_member_solve(&f->survey, &closed_x, &closed_y, m, section, family->count, modes);
     solved = status == PICKET_OK ? family->count : 0;
   }
   for (int i = 0; status == PICKET_OK && i < solved; i++) {

@@ -26,6 +26,16 @@ section:
 '''
 # Light leaks into silicon below.
 LEAKY = WIRE + '    - stripe: {fill: silicon, across: y, from_nm: -.inf, to_nm: -700}\n'
+# A core of the surrounding glass behind a moat of air: light leaks on all sides.
+MOAT = tool.MATERIALS.format(name='moat') + '''  glass: {constant: {index: 1.5}}
+  air: {constant: {index: 1}}
+light: {wavelength_nm: 1000}
+section:
+  cladding: glass
+  shapes:
+    - rect: {fill: air, width_nm: 2400, height_nm: 2000}
+    - rect: {fill: glass, width_nm: 1400, height_nm: 1000}
+'''
 # One medium between electric walls.
 BOX = tool.MATERIALS.format(name='metal box') + '''light: {wavelength_nm: 1000}
 section:
@@ -188,6 +198,17 @@ class Fields(tool.ToolTest):
         self.assertEqual(high, mode.places['y_lines_um'][-1])
         self.assertGreater(mode.about['index'].imag, 0)
         self.assertAlmostEqual(mode.power(), 1, delta=1e-12)
+
+    def test_leaking_on_all_sides(self):
+        path = self.write(MOAT)
+        done = self.run_tool('modes', '--fields', 'f.h5', '--json', '--count=1', '--accuracy=1e-3', path)
+        answer = tool.document(done.stdout, 'modes')['results'][0]['points'][0]['modes'][0]
+        with h5py.File(self.folder / 'f.h5') as file:
+            index = file['section/1000nm/mode0'].attrs['index']
+        # One coarse grid: 1e-4 measured, and 3 % of the loss; a wave of the surroundings has 1.499 and 70 times that.
+        self.assertAlmostEqual(index.real / answer['index']['value'], 1, delta=1e-3)
+        loss = 20 / np.log(10) * 2 * np.pi * index.imag * 1e4  # dB per cm; the wavelength is 1 um
+        self.assertAlmostEqual(loss / answer['loss_db_per_cm']['value'], 1, delta=0.1)
 
     def test_indices_are_near_the_answer(self):
         path = self.write(WIRE)
