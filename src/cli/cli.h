@@ -161,6 +161,6 @@ typedef struct pk_csv_file pk_csv_file;
 int pk_csv_open(const char *path, pk_csv_file **out);
 int pk_csv_finish(pk_csv_file *file, const char *text); /* writes, renames and frees */
 int pk_csv_finish_bytes(pk_csv_file *file, const char *bytes, size_t length);
-void pk_csv_drop(pk_csv_file *file);                    /* leaves nothing behind; accepts null */
+void pk_csv_drop(pk_csv_file *file); /* leaves nothing behind; accepts null */
 
 #endif

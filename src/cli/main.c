@@ -153,8 +153,7 @@ static int answer(const pk_arguments *a, picket_context *context) {
   if (status == PK_EXIT_DONE || status == PK_EXIT_SHORT) { /* short: there may be indices still */
     /* A picture that could not be written is said at once, and does not stop the numbers. */
     int figure = a->figure ? pk_figure_probe(a) : PK_EXIT_DONE;
-    int answered =
-        ask_and_deliver(a, context, problem, csv, a->figure && figure == PK_EXIT_DONE);
+    int answered = ask_and_deliver(a, context, problem, csv, a->figure && figure == PK_EXIT_DONE);
     answered = figure == PK_EXIT_DONE || answered == PK_EXIT_INTERRUPTED ? answered : figure;
     status = status == PK_EXIT_DONE ? answered : status;
   } else {

@@ -184,6 +184,14 @@ static double highest_of(const picket_result *result) {
   return highest;
 }
 
+static bool has_gaps(const picket_result *result) {
+  int gaps = 0;
+  for (int i = 0; i < result->count; i++) {
+    gaps += result->bands[i].gap_count;
+  }
+  return gaps > 0;
+}
+
 static void put_plot(pk_figure *f, int i, const path *p, double top) {
   const picket_bands_answer *answer = &f->result->bands[i];
   double from = 0, to = 0;
@@ -201,6 +209,10 @@ static void put_plot(pk_figure *f, int i, const path *p, double top) {
            ", \\\n  $gaps_%d using (0):(0):(-1e9):(1e9):2:4 with boxxyerror fc rgb '" PK_SLATE
            "' fs transparent pattern 4 border lc rgb '" PK_SLATE "' title 'gap'",
            i);
+  }
+  if (answer->gap_count == 0 && has_gaps(f->result)) { /* the key holds for all panels */
+    pk_put(f, ", keyentry with boxes fc rgb '" PK_SLATE
+              "' fs transparent pattern 4 border lc rgb '" PK_SLATE "' title 'gap'");
   }
   pk_put(f, ", \\\n  $light_line_%d using 1:2 with lines lc rgb '" PK_FAINT "' dt (6,4) lw 1.2", i);
   for (int b = 0; b < answer->band_count; b++) {
@@ -242,11 +254,14 @@ static picket_status draw(pk_figure *f, double top) {
     put_places(f, answer, &p, width);
     pk_put(f, "set label 10 '%s' at graph 0,1 offset 0,0.8 left\n",
            pk_word_polarization(answer->polarization));
-    pk_put(f, "set key at screen %.4f,%.4f right center horizontal samplen 1.6\n",
-           (double)RIGHT / PK_FIGURE_WIDTH, 1 - 47.0 / f->height);
+    if (i == 0) {
+      pk_put(f, "set key at screen %.4f,%.4f right center horizontal samplen 1.6\n",
+             (double)RIGHT / PK_FIGURE_WIDTH, 1 - 47.0 / f->height);
+    }
     status = put_data(f, i, &p);
     put_plot(f, i, &p, top);
-    pk_put(f, "set key off\nunset label 1\nunset label 2\n");
+    pk_put(f, "set key off\n");
+    pk_figure_said(f);
   }
   pk_put(f, "unset multiplot\n");
   return status;

@@ -179,6 +179,14 @@ void pk_figure_say(pk_figure *f, int rows, const char *text) {
   f->line++;
 }
 
+void pk_figure_said(pk_figure *f) {
+  pk_put(f, "unset label 1\nunset label 2\n");
+  for (int i = 0; i < f->line; i++) {
+    pk_put(f, "unset label %d\n", 100 + i);
+  }
+  f->line = 0;
+}
+
 void pk_figure_range(pk_figure *f, bool any) {
   pk_put(f,
          any ? "set yrange [*:*]\nunset label 90\n"

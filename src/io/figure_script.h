@@ -49,6 +49,9 @@ void pk_figure_open(pk_figure *f, const char *shows, int height);
 /* A faint line of text at the bottom of the page, from `rows` lines above its end downwards. */
 void pk_figure_say(pk_figure *f, int rows, const char *text);
 
+/* Forgets the lines of text that were drawn with the first panel of several. */
+void pk_figure_said(pk_figure *f);
+
 /* Tics of an axis ("x" or "y") over `dots`, as many as have room for their numbers. */
 void pk_figure_tics(pk_figure *f, const char *axis, double from, double to, int dots);
 

@@ -10,11 +10,11 @@
 #include "io/figure_script.h"
 
 enum {
-  TOP = 92,
+  TOP = 110,
   ROW = 34,
   LEFT = 262,
   RIGHT = 868,
-  AXIS = 76, /* under a panel: numbers, label, and the heading of the next */
+  AXIS = 88, /* under a panel: numbers, label, and the heading of the next */
   MOST_ROWS = 12,
   PATH_LETTERS = 29
 };
@@ -177,7 +177,8 @@ static void draw_panel(pk_figure *f, int i, int top) {
            (double)RIGHT / PK_FIGURE_WIDTH, 1 - 76.0 / f->height);
   }
   put_plot(f, i);
-  pk_put(f, "set key off\nunset object\nunset arrow\nunset label 1\nunset label 2\n");
+  pk_put(f, "set key off\nunset object\nunset arrow\n");
+  pk_figure_said(f);
 }
 
 picket_status pk_figure_tolerance(pk_figure *f) {
