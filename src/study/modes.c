@@ -9,6 +9,7 @@
 
 #include "base/memory.h"
 #include "study/modes.h"
+#include "study/section_bend.h"
 #include "study/section_look.h"
 
 enum { MOST_MODES = 20 };
@@ -53,6 +54,22 @@ static int compare_modes(const void *a, const void *b) {
   return (x < y) - (x > y);
 }
 
+/* Walls that are given may push a weak mode below the index of what goes on beyond them once the
+ * grids are fine: the coarse look had it above. It is none that the guide holds by itself. The
+ * list is in falling order. */
+static void drop_pushed_out(const work *w, picket_modes_point *point) {
+  const double *span = w->survey.block->span_um;
+  if ((!(span[0] > 0) && !(span[1] > 0)) || pk_section_bent(&w->survey)) {
+    return;
+  }
+  while (point->mode_count > 0 &&
+         point->modes[point->mode_count - 1].index.value <= w->survey.cut) {
+    point->mode_count--;
+    pk_free(w->problem->context, (void *)point->modes[point->mode_count].confinement);
+  }
+  point->note = point->mode_count == 0 ? NO_MODE : point->note;
+}
+
 /* All families' modes in one list. */
 static picket_status fill_modes(work *w, int total, picket_modes_point *point) {
   picket_section_mode *modes = PK_NEW(w->problem->context, total, picket_section_mode);
@@ -69,6 +86,9 @@ static picket_status fill_modes(work *w, int total, picket_modes_point *point) {
     }
   }
   qsort(modes, (size_t)point->mode_count, sizeof *modes, compare_modes);
+  if (status == PICKET_OK) {
+    drop_pushed_out(w, point);
+  }
   for (int i = 0; i < point->mode_count; i++) {
     modes[i].order = i;
   }

@@ -115,6 +115,15 @@ class Modes(tool.ToolTest):
         self.assertGreater(leaning['value'] - leaning['uncertainty'], narrow['value'] + narrow['uncertainty'])
         self.assertLess(leaning['value'] + leaning['uncertainty'], wide['value'] - wide['uncertainty'])
 
+    def test_a_mode_pushed_out_by_its_window(self):
+        # The third mode of the wire, 1.450, is at 1.4437 between walls 1180 nm apart: below the cladding.
+        text = WIRE.replace(', at_nm: [0, 110]', '') + '  span_nm: [2600, 1180]\n'
+        _, (point,) = self.ask(text, '--accuracy', '1e-2', status=1)
+        self.assertEqual([mode['order'] for mode in point['modes']], [0, 1])
+        _, (point,) = self.ask(text.replace('1180', '1300'), '--accuracy', '1e-2', status=1)
+        self.assertEqual(len(point['modes']), 3)
+        self.assertGreater(point['modes'][2]['index']['value'], 1.444)
+
     def test_a_section_that_guides_nothing(self):
         document, (point,) = self.ask(WIRE.replace('fill: core', 'fill: oxide'))
         self.assertEqual(point['modes'], [])
