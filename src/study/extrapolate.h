@@ -36,8 +36,9 @@ double pk_extrapolated(const pk_error_law *law, int count, const int *m, const d
  * Corners (three or four grids; exponents 2, 4 - 2α, 4): also without the finest of four grids, and
  * never below a share of what the extrapolation adds to the finest grid, see CORNER_SHARE_THREE.
  * Scattered values: least squares with h² on all grids; the bar is the step from the finest grid to
- * the value, SCATTER_MISFIT times the largest misfit, and the law's share. A NaN among the values
- * gives NaN. */
+ * the value, SCATTER_MISFIT times the largest misfit, and the law's share. Curved sections on more
+ * than three grids: least squares with h² and h³, a part of that step, and what h³ changed. A NaN
+ * among the values gives NaN. */
 picket_quantity pk_extrapolate(const pk_error_law *law, int count, const int *m,
                                const double *values);
 

@@ -98,6 +98,46 @@ static void scattered_values_are_fitted(void **state) {
   }
 }
 
+/* Errors of the index of HE11, HE21 and TM01 of a rod of 1.5 in air (diameter 1.2, wavelength 1.0)
+ * against the roots of its closed form, on members 5 to 8 of a base grid of 0.12 with a line at the
+ * end of the rod. The whole step would be a bar of 4 to 6e-5 and more. */
+static void values_of_a_rod_lie_within_narrow_bars(void **state) {
+  (void)state;
+  const pk_error_law law = {.count = 2, .exponent = {2, 4}, .smooth = 0, .curved = 1};
+  const int m[4] = {5, 6, 7, 8};
+  const double scaled[3][4] = {{-0.003658, -0.003668, -0.003678, -0.003694},
+                               {-0.005448, -0.005674, -0.005895, -0.006125},
+                               {-0.002955, -0.002978, -0.003007, -0.003046}};
+  for (int mode = 0; mode < 3; mode++) {
+    double values[4];
+    for (int i = 0; i < 4; i++) {
+      values[i] = 1.3 + scaled[mode][i] / (m[i] * m[i]);
+    }
+    picket_quantity q = pk_extrapolate(&law, 4, m, values);
+    assert_true(fabs(q.value - 1.3) <= q.uncertainty);
+    assert_true(fabs(q.value - 1.3) <= 1.3e-5);
+    assert_true(q.uncertainty < 3.5e-5);
+  }
+}
+
+/* With h² and h³ only, the value is exact and the bar not below the share of the step. */
+static void curved_sections_take_the_cubic_term(void **state) {
+  (void)state;
+  pk_error_law law = {.count = 2, .exponent = {2, 4}, .smooth = 0, .curved = 1};
+  double values[4];
+  for (int i = 0; i < 4; i++) {
+    values[i] = 2 + 0.3 / (M[i] * M[i]) + 0.1 / pow(M[i], 3);
+  }
+  picket_quantity q = pk_extrapolate(&law, 4, M, values);
+  assert_near(q.value, 2, 1e-12);
+  assert_true(q.uncertainty > 0.2 * fabs(values[3] - 2));
+  law.curved = 2; /* oblique corners: h² alone, and the whole step */
+  picket_quantity corners = pk_extrapolate(&law, 4, M, values);
+  assert_true(fabs(corners.value - 2) > 1e-6);
+  assert_true(fabs(corners.value - 2) < corners.uncertainty);
+  assert_true(corners.uncertainty > q.uncertainty);
+}
+
 /* Values on a clean line leave the step to the finest grid and the share of the law. */
 static void the_share_of_the_law_is_added(void **state) {
   (void)state;
@@ -158,6 +198,8 @@ int main(void) {
       cmocka_unit_test(bars_cover_terms_beyond_the_law),
       cmocka_unit_test(bars_never_fall_below_rounding),
       cmocka_unit_test(scattered_values_are_fitted),
+      cmocka_unit_test(values_of_a_rod_lie_within_narrow_bars),
+      cmocka_unit_test(curved_sections_take_the_cubic_term),
       cmocka_unit_test(the_share_of_the_law_is_added),
       cmocka_unit_test(the_answer_is_linear_in_the_values),
       cmocka_unit_test(missing_values_give_nothing),
