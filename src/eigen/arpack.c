@@ -113,7 +113,7 @@ static void set_start(krylov *k, const pk_eigen_request *request) {
     imaginary = i % k->width == 1 ? fmax(imaginary, fabs(guess[i])) : imaginary;
   }
   const double noise = largest > 0.0 ? GUESS_NOISE * largest : 1.0;
-  const bool real = largest > 0.0 && imaginary == 0.0; /* a real guess of a complex vector */
+  const bool real = largest > 0.0 ? imaginary == 0.0 : request->real_start;
   for (size_t i = 0; i < length; i++) {
     double own = noise * next_random(&state);
     k->residual[i] = (real && i % k->width == 1 ? 0.0 : own) + (largest > 0.0 ? guess[i] : 0.0);

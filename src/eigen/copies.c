@@ -118,7 +118,8 @@ static picket_status gather(deflation *d, const pk_eigen_request *request, doubl
   const double exact = request->tolerance > 0.0 ? request->tolerance : PK_EIGEN_TOLERANCE;
   picket_status status = PICKET_OK;
   while (status == PICKET_OK && d->count < d->capacity) {
-    pk_eigen_request one = {.n = request->n, .wanted = 1, .seed = request->seed + 1};
+    pk_eigen_request one = {
+        .n = request->n, .wanted = 1, .seed = request->seed + 1, .real_start = request->real_start};
     double value[2] = {0.0, 0.0};
     int found = 0;
     one.basis = ESTIMATE_BASIS;

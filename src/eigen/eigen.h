@@ -24,6 +24,8 @@ typedef struct pk_eigen_request {
   double tolerance;  /* relative, of the Ritz values; 0: 1e-10 */
   uint64_t seed;     /* of the start vector: same seed, same digits */
   const void *start; /* null, or n values of the operator's scalar: a guess of the eigenvector */
+  bool real_start;   /* complex operators: begin with a real vector, which an operator that is real
+                        in truth then keeps real; a guess is real if it has no imaginary part */
   bool every_copy;   /* see below */
 } pk_eigen_request;
 
