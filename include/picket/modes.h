@@ -69,9 +69,9 @@ typedef struct picket_modes_answer {
  * `options->count` by index, all of them (up to 20) if that is 0. Mirror planes are used where the
  * section has them. The window is chosen from how fast the modes decay unless the section gives
  * one, whose border is then an electric wall. If nothing varies along x or y in a window that is
- * given, its walls there are the guide's own and every mode between them counts; otherwise it is cut
- * out of surroundings that go on, only modes above their index count, and the bars hold what the
- * walls may do.
+ * given, its walls there are the guide's own and every mode between them counts; otherwise it is
+ * cut out of surroundings that go on, only modes above their index count, and the bars hold what
+ * the walls may do.
  *
  * `index` and `group_index` are refined until their bars are below options->accuracy. Modes above
  * the highest index that a wave can have far out are guided. If there is none because a side (a
