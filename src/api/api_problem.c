@@ -7,7 +7,6 @@
 #include "api/border.h"
 #include "api/problem_private.h"
 #include "base/memory.h"
-#include "dense/dense.h"
 #include "io/number.h"
 #include "io/read.h"
 
@@ -22,7 +21,6 @@ static picket_status wrap(picket_context *context, pk_document *document, picket
   }
   problem->context = pk_context_hold(context);
   problem->document = document;
-  pk_dense_warm_up(); /* before the first solve: one BLAS thread, and its workspace is there */
   *out = problem;
   return PICKET_OK;
 }

@@ -184,6 +184,7 @@ static picket_status best_cut(picket_context *context, const pk_column_blocks *b
 
 picket_status pk_columns_reduce(picket_context *context, const pk_operator *op, pk_phase phase,
                                 double k0, pk_columns **out) {
+  pk_dense_warm_up();
   pk_column_blocks blocks;
   picket_status status = pk_column_blocks_take(context, op, phase, k0, &blocks);
   if (status == PICKET_OK) {

@@ -19,6 +19,7 @@
 #include <umfpack.h>
 
 #include "base/memory.h"
+#include "dense/dense.h"
 #include "sparse/sparse.h"
 
 _Static_assert(sizeof(SuiteSparse_long) == sizeof(int64_t), "patterns are handed over as they are");
@@ -113,6 +114,7 @@ static picket_status analyse(pk_factor *factor) {
 
 picket_status pk_factor_create(picket_context *context, const pk_pattern *pattern, pk_scalar scalar,
                                pk_factor **out) {
+  pk_dense_warm_up(); /* UMFPACK calls BLAS: one thread, and its workspace is there */
   assert(pattern->n > 0);
   picket_status status = PICKET_ERROR_MEMORY;
   const size_t n = (size_t)pattern->n;
