@@ -8,18 +8,6 @@
 
 static const double TWO_PI = 6.283185307179586477;
 
-static void take_range(pk_media *media) {
-  media->shortest_um = 0;
-  media->longest_um = INFINITY;
-  for (int m = 0; m < media->count; m++) {
-    if (media->used[m]) {
-      pk_material_range range = pk_materials_range(media->materials, m);
-      media->shortest_um = fmax(media->shortest_um, range.shortest_um);
-      media->longest_um = fmin(media->longest_um, range.longest_um);
-    }
-  }
-}
-
 picket_status pk_media_open(picket_context *context, const pk_materials *materials,
                             double temperature_c, const pk_operator *op, pk_media *out) {
   pk_media media = {.context = context, .materials = materials, .temperature_c = temperature_c};
@@ -35,7 +23,9 @@ picket_status pk_media_open(picket_context *context, const pk_materials *materia
     media.used[m] = pk_operator_uses(op, m);
     media.permittivity[m] = 1;
   }
-  take_range(&media);
+  pk_material_range known = pk_materials_common_range(materials, media.used);
+  media.shortest_um = known.shortest_um;
+  media.longest_um = known.longest_um;
   *out = media;
   return PICKET_OK;
 }

@@ -145,13 +145,22 @@ picket_status pk_channel_judge(const pk_channel *channel, const pk_channel_mode 
 void pk_channel_make_real(const pk_channel *c, double complex *e);
 void pk_channel_start(const pk_channel *channel, const double complex *guess, double complex *out);
 
-/* waves_mirrored.c, waves_general.c: see modes.h */
-picket_status pk_channel_waves_mirrored(pk_channel *channel, double k0, double complex guess,
-                                        int wanted, const double complex *start,
-                                        pk_channel_mode *modes, int *found);
-picket_status pk_channel_waves_general(pk_channel *channel, double k0, double complex guess,
-                                       int wanted, const double complex *start,
-                                       pk_channel_mode *modes, int *found);
+/* Ground that both ways to waves work on. */
+typedef struct pk_channel_wave_work {
+  double k0_square;
+  double complex *work, *other; /* [n] each */
+} pk_channel_wave_work;
+
+/* waves_mirrored.c, waves_general.c: up to `wanted` waves into modes, in any order; *found counts
+ * those that need clearing, on failure too. */
+picket_status pk_channel_waves_mirrored(pk_channel *channel, const pk_channel_wave_work *ground,
+                                        double complex guess, int wanted,
+                                        const double complex *start, pk_channel_mode *modes,
+                                        int *found);
+picket_status pk_channel_waves_general(pk_channel *channel, const pk_channel_wave_work *ground,
+                                       double complex guess, int wanted,
+                                       const double complex *start, pk_channel_mode *modes,
+                                       int *found);
 
 /* factor.c: LU factors of T(k), real where they can be, and solves with them. */
 picket_status pk_channel_factor(pk_channel *channel, double complex k, double complex k0_square);

@@ -190,16 +190,6 @@ static picket_status run_arnoldi(solve *s, int wanted, const double complex *sta
   return status;
 }
 
-static void sort_modes(double complex guess, int count, pk_channel_mode *modes) {
-  for (int i = 1; i < count; i++) {
-    for (int k = i; k > 0 && cabs(modes[k].k - guess) < cabs(modes[k - 1].k - guess); k--) {
-      pk_channel_mode swap = modes[k];
-      modes[k] = modes[k - 1];
-      modes[k - 1] = swap;
-    }
-  }
-}
-
 static picket_status run(solve *s, double complex guess, int wanted, const double complex *start,
                          pk_channel_mode *modes, int *found) {
   double complex *values = PK_NEW(s->context, wanted, double complex);
@@ -219,29 +209,16 @@ static picket_status run(solve *s, double complex guess, int wanted, const doubl
   return status;
 }
 
-picket_status pk_channel_waves_general(pk_channel *c, double k0, double complex guess, int wanted,
+picket_status pk_channel_waves_general(pk_channel *c, const pk_channel_wave_work *ground,
+                                       double complex guess, int wanted,
                                        const double complex *start, pk_channel_mode *modes,
                                        int *found) {
-  solve s = {.context = c->context, .channel = c, .n = c->n, .k0_square = k0 * k0};
+  solve s = {.context = c->context,
+             .channel = c,
+             .n = c->n,
+             .k0_square = ground->k0_square,
+             .work = ground->work,
+             .other = ground->other};
   s.unit = PI / c->pitch;
-  wanted = wanted > c->n ? (int)c->n : wanted;
-  int count = 0;
-  pk_channel_mode *fresh = PK_NEW(c->context, wanted, pk_channel_mode);
-  s.work = PK_NEW(c->context, c->n, double complex);
-  s.other = PK_NEW(c->context, c->n, double complex);
-  picket_status status = PICKET_ERROR_MEMORY;
-  if (fresh && s.work && s.other) {
-    status = run(&s, guess, wanted, start, fresh, &count);
-  }
-  if (status == PICKET_OK) {
-    sort_modes(guess, count, fresh);
-    memcpy(modes, fresh, (size_t)count * sizeof *modes);
-    *found = count;
-  } else {
-    pk_channel_modes_clear(c->context, count, fresh);
-  }
-  pk_free(c->context, fresh);
-  pk_free(c->context, s.work);
-  pk_free(c->context, s.other);
-  return status;
+  return run(&s, guess, wanted, start, modes, found);
 }

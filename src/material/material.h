@@ -37,6 +37,9 @@ const char *pk_materials_name(const pk_materials *materials, int material);
 /* One line for people: model, source, range; borrowed. */
 const char *pk_materials_source(const pk_materials *materials, int material);
 pk_material_range pk_materials_range(const pk_materials *materials, int material);
+/* Where all materials marked in used [count] are known; 0 to infinity if none is marked, shortest
+ * above longest where they have nothing in common. */
+pk_material_range pk_materials_common_range(const pk_materials *materials, const bool *used);
 
 /* Adding materials. Each takes a new unique `name` and the `place` it was defined (for messages at
  * evaluation), and on success the new material has the number pk_materials_count() - 1.

@@ -82,6 +82,18 @@ pk_material_range pk_materials_range(const pk_materials *materials, int material
   return item_of(materials, material)->range;
 }
 
+pk_material_range pk_materials_common_range(const pk_materials *materials, const bool *used) {
+  pk_material_range common = {.shortest_um = 0, .longest_um = INFINITY};
+  for (int m = 0; m < pk_materials_count(materials); m++) {
+    if (used[m]) {
+      pk_material_range range = pk_materials_range(materials, m);
+      common.shortest_um = fmax(common.shortest_um, range.shortest_um);
+      common.longest_um = fmin(common.longest_um, range.longest_um);
+    }
+  }
+  return common;
+}
+
 picket_status pk_material_begin(pk_materials *materials, pk_place place, const char *name,
                                 pk_material *item) {
   picket_context *context = materials->context;

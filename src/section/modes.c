@@ -18,10 +18,6 @@ static const uint64_t START_SEED = 45022;
 /* Modes with a larger residual get a step of inverse iteration. */
 static const double PURIFY_ABOVE = 1e-12;
 
-/* A part of a vector this much smaller than the other is rounding of restarts in complex
- * arithmetic, and not solved for. */
-static const double PART_ROUNDING = 1e-13;
-
 /* A real matrix has real β² or conjugate pairs; a smaller imaginary part is none. */
 static const double ROUNDING = 1e-9;
 
@@ -70,38 +66,12 @@ static picket_status solve_open(solve *k) {
   return pk_factor_real(k->factor, k->real_values);
 }
 
-/* Largest entry of one part of complex numbers. */
-static double size_of(int64_t n, const double *part) {
-  double most = 0;
-  for (int64_t p = 0; p < n; p++) {
-    most = fmax(most, fabs(part[2 * p]));
-  }
-  return most;
-}
-
 static picket_status apply(void *user, const double complex *x, double complex *y) {
   solve *k = user;
   if (k->values) {
     return pk_factor_solve_complex(k->factor, x, y);
   }
-  const double *parts = (const double *)x;
-  double *results = (double *)y;
-  double size[2] = {size_of(k->n, parts), size_of(k->n, parts + 1)};
-  picket_status status = PICKET_OK;
-  for (int c = 0; c < 2 && status == PICKET_OK; c++) {
-    bool vanishes = size[c] <= PART_ROUNDING * size[1 - c];
-    for (int64_t p = 0; p < k->n; p++) {
-      k->part[p] = parts[2 * p + c];
-      k->part[k->n + p] = 0;
-    }
-    if (!vanishes) {
-      status = pk_factor_solve_real(k->factor, k->part, k->part + k->n);
-    }
-    for (int64_t p = 0; p < k->n; p++) {
-      results[2 * p + c] = k->part[k->n + p];
-    }
-  }
-  return status;
+  return pk_factor_solve_parts(k->factor, k->n, x, y, k->part);
 }
 
 void pk_section_modes_clear(picket_context *context, int count, pk_section_mode *modes) {

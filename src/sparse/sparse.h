@@ -53,6 +53,12 @@ picket_status pk_factor_complex(pk_factor *factor, const double complex *values)
 
 /* x = A⁻¹ b, no refinement (residuals are checked where eigenpairs are). x may equal b: no. */
 picket_status pk_factor_solve_real(pk_factor *factor, const double *b, double *x);
+/* The same for a complex b and a real factor, real and imaginary part by themselves; a part that is
+ * rounding beside the other (below 1e-13 of it) is taken for zero and costs nothing.
+ *   n     order
+ *   work  [2n]; x may equal b: yes */
+picket_status pk_factor_solve_parts(pk_factor *factor, int64_t n, const double complex *b,
+                                    double complex *x, double *work);
 picket_status pk_factor_solve_complex(pk_factor *factor, const double complex *b,
                                       double complex *x);
 /* x = A⁻ᵀ b (plain transpose). */

@@ -19,13 +19,9 @@ void pk_channel_outlook_clear(pk_channel_outlook *look) {
 
 /* A wavelength moved to where every material of the channel is known. */
 static double into_range(const pk_problem *problem, double wavelength_um) {
-  for (int m = 0; m < pk_materials_count(problem->materials); m++) {
-    if (problem->channel.outline.used[m]) {
-      pk_material_range range = pk_materials_range(problem->materials, m);
-      wavelength_um = fmin(fmax(wavelength_um, range.shortest_um), range.longest_um);
-    }
-  }
-  return wavelength_um;
+  pk_material_range known =
+      pk_materials_common_range(problem->materials, problem->channel.outline.used);
+  return fmin(fmax(wavelength_um, known.shortest_um), known.longest_um);
 }
 
 static picket_status search(pk_channel_outlook *look, double index) {

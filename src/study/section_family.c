@@ -192,6 +192,19 @@ static picket_quantity judge(const run *r, const int *m, int count, int number) 
   return q;
 }
 
+static const char NOTE_ALL_AROUND[] =
+    "no error bar: the guide leaks on all sides, and what the absorbing layers add to so small a "
+    "loss "
+    "is not measured";
+
+/* A fibre of six holes came out 1.4 % off its published loss with grids that agreed to 0.7 %. */
+static void judge_leakage(const pk_section_survey *s, picket_quantity *loss) {
+  if (s->leaks[0] && s->leaks[1] && s->leaks[2] && s->leaks[3]) {
+    loss->uncertainty = NAN;
+    loss->note = NOTE_ALL_AROUND;
+  }
+}
+
 /* The largest bar of an index or group index as a multiple of what was asked. */
 static double judge_all(run *r, const int *m, int count) {
   double worst = 0;
@@ -200,6 +213,7 @@ static double judge_all(run *r, const int *m, int count) {
     for (int k = 0; k < PK_NUMBERS; k++) {
       *pk_section_quantity(mode, k) = judge(r, m, count, i * PK_NUMBERS + k);
     }
+    judge_leakage(r->survey, &mode->loss_db_per_cm);
     pk_section_bend_judge(r->family, i, mode);
     const picket_quantity *held[2] = {&mode->index, &mode->group_index};
     for (int k = 0; k < 2; k++) {
